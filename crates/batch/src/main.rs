@@ -1,0 +1,2 @@
+//! The scan sheet without a browser.
+fn main() {}

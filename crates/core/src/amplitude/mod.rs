@@ -1,0 +1,4 @@
+//! Amplitudes: partial-wave resonances with backgrounds; tree-level diagrams.
+
+pub mod born;
+pub mod hypothesis;

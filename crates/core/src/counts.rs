@@ -1,0 +1,1 @@
+//! Counts: expected numbers, times, p-values.

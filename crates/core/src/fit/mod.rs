@@ -1,0 +1,1 @@
+//! Fits: likelihoods, minimiser, intervals.

@@ -1,0 +1,1 @@
+//! Two-body kinematics: lambda, break-up momentum, Mandelstam variables.

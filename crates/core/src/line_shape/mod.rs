@@ -1,0 +1,1 @@
+//! Line shape: Born, then radiation, then spread.

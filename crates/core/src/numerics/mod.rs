@@ -1,0 +1,1 @@
+//! Numerical routines shared by the rooms.

@@ -1,0 +1,1 @@
+//! Where the next hour of beam is worth most.

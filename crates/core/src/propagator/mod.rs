@@ -1,0 +1,1 @@
+//! Propagators Delta(s): one file a form.

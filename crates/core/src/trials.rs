@@ -1,0 +1,1 @@
+//! Pseudo-experiments: seeded, order-independent.

@@ -1,0 +1,1 @@
+//! The WebAssembly surface: thin and typed.

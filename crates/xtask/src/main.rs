@@ -1,0 +1,2 @@
+//! Every command of the repository.
+fn main() {}
