@@ -119,7 +119,7 @@ pub enum Body {
     /// A sheet and what is wrong with it.
     Sheet {
         /// The sheet.
-        sheet: Sheet,
+        sheet: Box<Sheet>,
         /// Problems; empty if it can be computed with.
         problems: Vec<Refusal>,
         /// Warnings.
@@ -134,12 +134,201 @@ pub enum Body {
     },
     /// Rows read from a table.
     Rows {
+        /// How each column of the table was understood.
+        columns: Vec<ColumnReading>,
         /// Rows.
         rows: Vec<Row>,
+        /// What is wrong with single cells; `field` is `rows[3].counts`.
+        problems: Vec<Refusal>,
+    },
+    /// Known particles, limits and units.
+    Tables {
+        /// Particles that a beam can be made of.
+        particles: Vec<KnownParticle>,
+        /// What every parameter may be.
+        limits: Vec<KnownLimit>,
+        /// Units understood, as written.
+        units: Vec<String>,
+    },
+    /// Everything at one W.
+    Cursor {
+        /// True W, GeV.
+        w_gev: f64,
+        /// The number to dial, with unit.
+        dial: String,
+        /// Named values there: observed, radiated, born, contributions, rate, ...
+        values: Vec<Named>,
+    },
+    /// One setting in every kind.
+    Convert {
+        /// (kind, value with unit).
+        settings: Vec<(crate::doc::Dial, String)>,
+        /// Named values that belong to it: sigma_W, break-up momentum, dW/dsetting, ...
+        values: Vec<Named>,
+    },
+    /// Every row of data, in the sheet's order.
+    Points {
+        /// Points.
+        points: Vec<PointReading>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// A fit.
+    Fit {
+        /// Fitted parameters, in the order of `fit.free`.
+        parameters: Vec<FittedParameter>,
+        /// Their correlation, row by row.
+        correlation: Vec<Vec<f64>>,
+        /// 2 NLL (BC form for counts, chi2 for cross sections) at the minimum, without constraints' part hidden.
+        statistic: f64,
+        /// Points and constraints minus free parameters.
+        degrees_of_freedom: u32,
+        /// Probability of a larger value, where it can be told.
+        p_value: Option<f64>,
+        /// Pull of each point in use: (row id, pull).
+        pulls: Vec<(String, f64)>,
+        /// Nuisances: name, pull and its error.
+        nuisances: Vec<Nuisance>,
+        /// Why it stopped, one sentence.
+        stopped: String,
+        /// Whether it converged.
+        converged: bool,
+        /// Iterations used.
+        iterations: u32,
+        /// Warnings.
+        warnings: Vec<Warning>,
     },
     /// Text of a file.
     Text {
         /// Text.
         text: String,
     },
+}
+
+/// A number with its name and unit.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct Named {
+    /// Name as shown.
+    pub name: String,
+    /// Value.
+    pub value: f64,
+    /// Unit of the value.
+    pub unit: String,
+}
+
+/// A particle of the table.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct KnownParticle {
+    /// Name, as a sheet uses it.
+    pub name: String,
+    /// Mass, GeV.
+    pub mass_gev: f64,
+    /// Spin ("0", "1/2", "1").
+    pub spin: String,
+    /// Width, GeV, where it is not negligible.
+    pub width_gev: Option<f64>,
+}
+
+/// What a parameter may be.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct KnownLimit {
+    /// Path in the sheet, indices as `[]`: `model.resonances[].width`.
+    pub field: String,
+    /// Name of the parameter.
+    pub name: String,
+    /// Unit of the two limits.
+    pub unit: String,
+    /// Least value.
+    pub least: f64,
+    /// Largest value.
+    pub largest: f64,
+    /// What is allowed and why, one sentence.
+    pub why: String,
+}
+
+/// How a column of a table was understood.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct ColumnReading {
+    /// Header as in the file.
+    pub header: String,
+    /// Field of a row it goes to ("counts", "luminosity", ...); empty: kept, means nothing to us.
+    pub meaning: String,
+    /// Unit that its bare numbers take.
+    pub unit: String,
+    /// Not empty: it must be answered before the rows count ("beam energy or W?").
+    pub question: String,
+    /// Answers that can be given to the question.
+    pub choices: Vec<String>,
+}
+
+/// One row of data as the chain understands it.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct PointReading {
+    /// The row's id.
+    pub id: String,
+    /// True W, GeV; absent if the row cannot be understood.
+    pub w_gev: Option<f64>,
+    /// Its own error, GeV.
+    pub w_error_gev: f64,
+    /// The number to dial, with unit.
+    pub dial: String,
+    /// Measured cross section on the scale of the observed curve, nb (counts: (n - background)/(L eps B)).
+    pub sigma_nb: Option<f64>,
+    /// Its error, nb.
+    pub sigma_error_nb: f64,
+    /// Luminosity that counts, 1/nb, dead time taken off.
+    pub luminosity_nbinv: Option<f64>,
+    /// Live time, h.
+    pub live_time_h: Option<f64>,
+    /// Counts (or cross section in nb) expected so far.
+    pub expected: Option<f64>,
+    /// Seen.
+    pub seen: Option<f64>,
+    /// Pull of seen against expected.
+    pub pull: Option<f64>,
+    /// Two-sided p-value of seen.
+    pub p_value: Option<f64>,
+    /// Expected rate, counts per hour.
+    pub rate_per_h: Option<f64>,
+    /// Hours to a relative error of 10 % on the signal; absent: never, or unknown.
+    pub hours_to_tenth: Option<f64>,
+}
+
+/// One fitted parameter.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct FittedParameter {
+    /// Id, e.g. `r1.mass`.
+    pub id: String,
+    /// Name as shown.
+    pub name: String,
+    /// Value in `unit`.
+    pub value: f64,
+    /// Curvature error in `unit`; absent if it could not be determined.
+    pub error: Option<f64>,
+    /// Unit (that of the sheet's text).
+    pub unit: String,
+    /// The text that the sheet would hold with this value.
+    pub text: String,
+    /// Path of that text in the sheet.
+    pub field: String,
+    /// Stands at the edge of what is allowed.
+    pub at_limit: bool,
+}
+
+/// A nuisance of the fit.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct Nuisance {
+    /// Name.
+    pub name: String,
+    /// Pull, in its own errors.
+    pub pull: f64,
+    /// Error of the pull.
+    pub error: f64,
 }
