@@ -1,1 +1,5 @@
 //! Numerical routines shared by the rooms.
+
+pub mod minimise;
+pub mod probability;
+pub mod random;
