@@ -325,7 +325,7 @@ fn solve_damped(matrix: &DMatrix<f64>, right: &DVector<f64>, damping: f64) -> DV
             }
         }
         ridge *= 100.0;
-        if !(ridge < 1e12) {
+        if ridge > 1e12 {
             return DVector::zeros(right.len());
         }
     }
