@@ -1,1 +1,0 @@
-//! Counts: expected numbers, times, p-values.
