@@ -118,15 +118,35 @@ pub struct Point {
     pub start_h: Option<f64>,
 }
 
-/// Errors common to all points; each is a nuisance that acts on the model.
+/// Errors common to points; each is a nuisance with a unit Gaussian constraint that acts on the
+/// model, never on a covariance of measured values. 0 (or `None`): no such error.
 #[derive(Debug, Clone, Default, PartialEq, Serialize, Deserialize)]
+#[serde(default)]
 pub struct CommonErrors {
     /// Energy offset common to all points, GeV.
     pub energy_gev: f64,
-    /// Relative scale error (luminosity, efficiency) common to all points.
-    pub scale: f64,
+    /// Energy slope r common to all points: W becomes W (1 + r eta).
+    pub energy_slope: f64,
     /// Energy error common to a fill or group, GeV.
     pub group_energy_gev: f64,
+    /// Covariance of the points' energies, GeV^2, row by row, in the points' order.
+    pub energy_covariance_gev2: Option<Vec<f64>>,
+    /// Relative scale error of the signal common to all points.
+    pub scale: f64,
+    /// Relative scale error of the signal common to a fill or group.
+    pub group_scale: f64,
+    /// Relative luminosity error common to all points (signal and background cross section).
+    pub luminosity: f64,
+    /// Relative luminosity error common to a fill or group.
+    pub group_luminosity: f64,
+    /// Error of d ln(efficiency)/dW, 1/GeV, about the mean W of the points.
+    pub efficiency_slope_per_gev: f64,
+    /// Relative error of sigma_W common to all points (do not use beside a constraint on `spread`).
+    pub spread: f64,
+    /// Relative error of sigma_W of each point on its own.
+    pub point_spread: f64,
+    /// Scale factors are 1 + delta eta (Gaussian) instead of exp(delta eta) (log-normal).
+    pub gaussian_factors: bool,
 }
 
 /// The whole scan.
