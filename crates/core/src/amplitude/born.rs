@@ -58,6 +58,11 @@ pub enum Feature {
 pub trait Born {
     /// The larger of the beams' and the final state's threshold, GeV.
     fn threshold_gev(&self) -> f64;
+    /// Last W at which the model is known (a tabulated width ends), GeV: the chain refuses
+    /// energies above it; values there are held, not extrapolated.
+    fn upper_limit_gev(&self) -> f64 {
+        f64::INFINITY
+    }
     /// Peaks and kinks that quadrature must know.
     fn features(&self) -> Vec<Feature>;
     /// Names of the contributions, fixed for this model; their sum is the total.
