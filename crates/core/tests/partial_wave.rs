@@ -128,7 +128,15 @@ fn born_peaks_of_three_invented_scenarios() {
         phase_rad: (-130.0_f64).to_radians(),
     });
     let a = prepare(a, &pair("e", M_ELECTRON_GEV));
-    let peak = a.sigma_nb(Energy::at(2.8742));
+    // The continuum moves the maximum off M.
+    let peak = (-1000..1000)
+        .map(|i| {
+            a.sigma_nb(Energy {
+                reference_gev: 2.8742,
+                offset_gev: f64::from(i) * 1e-6,
+            })
+        })
+        .fold(0.0, f64::max);
     assert!((peak - 55.7).abs() < 0.06, "{peak}");
 
     let strength = Strength::Branchings {
@@ -308,7 +316,7 @@ fn phi_model() -> PartialWave {
 fn phi_to_neutral_kaons_describes_the_published_scan() {
     // CMD-3, PLB 760 (2016) 314, Born cross sections (table in tests/reference). An independent
     // refit gives chi2 = 12.42 at these parameters and 66.0 without the background (M = 1019.427).
-    let text = include_str!("../../../tests/reference/cmd3_2016_kskl_phi_scan.csv");
+    let text = include_str!("../../../tests/reference/data/cmd3_2016_kskl_phi_scan.csv");
     let chi2 = |model: &dyn Born| -> f64 {
         text.lines()
             .filter(|line| line.starts_with("10"))
