@@ -2,4 +2,5 @@
 
 pub mod minimise;
 pub mod probability;
+pub mod quadrature;
 pub mod random;
