@@ -10,12 +10,22 @@ use widthwise_sheet::requests::{Column, Reply, Request};
 pub fn answer(request: &Request, _progress: &mut dyn FnMut(u32, u32)) -> Result<Reply, Refusal> {
     let name = format!("{request:?}");
     let name = name.split([' ', '{']).next().unwrap_or_default();
-    Err(Refusal::new("", name, "", "This request has no answer yet."))
+    Err(Refusal::new(
+        "",
+        name,
+        "",
+        "This request has no answer yet.",
+    ))
 }
 
 /// What to say about a request that is not one of ours.
 pub fn unreadable(error: &serde_wasm_bindgen::Error) -> Refusal {
-    Refusal::new("", "", "a request of this version", format!("The request could not be read: {error}."))
+    Refusal::new(
+        "",
+        "",
+        "a request of this version",
+        format!("The request could not be read: {error}."),
+    )
 }
 
 /// A refusal as a plain object.
@@ -36,7 +46,10 @@ fn column_to_js(column: &Column) -> Result<JsValue, JsValue> {
     object(&[
         ("name", JsValue::from_str(&column.name)),
         ("unit", JsValue::from_str(&column.unit)),
-        ("values", Float64Array::from(column.values.as_slice()).into()),
+        (
+            "values",
+            Float64Array::from(column.values.as_slice()).into(),
+        ),
     ])
 }
 

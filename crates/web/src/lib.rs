@@ -24,8 +24,10 @@ pub fn start() {
 pub fn run(id: f64, request: JsValue) -> Result<JsValue, JsValue> {
     let request: Request = serde_wasm_bindgen::from_value(request)
         .map_err(|error| answer::refused(&answer::unreadable(&error)))?;
-    let reply = answer::answer(&request, &mut |done, total| scope::post_progress(id, done, total))
-        .map_err(|refusal| answer::refused(&refusal))?;
+    let reply = answer::answer(&request, &mut |done, total| {
+        scope::post_progress(id, done, total)
+    })
+    .map_err(|refusal| answer::refused(&refusal))?;
     answer::reply_to_js(reply)
 }
 
