@@ -1,1 +1,16 @@
 //! Where the next hour of beam is worth most.
+//!
+//! Two layers. The *relaxed* problem spreads hours over candidate energies without regard to
+//! dwell steps, settling and order; it is convex, and [`relaxed`] solves it with a certificate
+//! ([`certificate`]) that no allocation can beat by more than the stated margin. The *timetable*
+//! lays whole visits into the machine's fills; its efficiency is quoted against the
+//! relaxed optimum and is therefore a lower bound.
+//!
+//! The relaxed layer knows only arrays: per candidate energy a rate, its gradient and what a
+//! visit's own errors cost ([`problem`]). How they were made does not matter to it.
+
+pub mod certificate;
+pub mod criterion;
+pub mod elfving;
+pub mod problem;
+pub mod relaxed;
