@@ -32,7 +32,7 @@ pub(crate) fn optimise(problem: &Problem, criterion: &Scaled, wanted: f64) -> Op
     }
     let p = problem.parameters;
     let goal = DVector::from_column_slice(c.column(0).as_slice());
-    let (basis, y, rounds) = simplex(&draw.roots, p, &goal)?;
+    let Solution { basis, y, pivots } = simplex(&draw.roots, p, &goal)?;
     let reach = draw
         .roots
         .chunks_exact(p)
@@ -61,7 +61,7 @@ pub(crate) fn optimise(problem: &Problem, criterion: &Scaled, wanted: f64) -> Op
             .collect(),
     };
     (efficiency >= wanted)
-        .then(|| finish(problem, criterion, hours, certificate, 0.0, rounds, wanted))
+        .then(|| finish(problem, criterion, hours, certificate, 0.0, pivots, wanted))
 }
 
 fn dot(h: &[f64], y: &DVector<f64>) -> f64 {
@@ -75,12 +75,16 @@ enum Column {
     Artificial(usize, f64),
 }
 
-/// Basic solution (candidate, signed x), dual y and number of pivots.
-fn simplex(
-    roots: &[f64],
-    p: usize,
-    c: &DVector<f64>,
-) -> Option<(Vec<(usize, f64)>, DVector<f64>, usize)> {
+/// Solution of the programme.
+struct Solution {
+    /// (candidate, signed x).
+    basis: Vec<(usize, f64)>,
+    /// Dual.
+    y: DVector<f64>,
+    pivots: usize,
+}
+
+fn simplex(roots: &[f64], p: usize, c: &DVector<f64>) -> Option<Solution> {
     let norm = c.norm();
     // A small fixed perturbation breaks ties between bases (degenerate optima are the rule
     // here: singular designs); the answer is recomputed with the true goal at the end.
@@ -121,7 +125,11 @@ fn simplex(
                     Column::Artificial(..) => {}
                 }
             }
-            return Some((solution, y, pivot));
+            return Some(Solution {
+                basis: solution,
+                y,
+                pivots: pivot,
+            });
         };
         let column = DVector::from_fn(p, |i, _| sign * roots[j * p + i]);
         let d = lu.solve(&column)?;

@@ -239,7 +239,7 @@ fn draw(
             || (truth.slope_per_h_gev.is_empty() && errors.energy_gev == 0.0))
         && truth.prior.nrows() == p
         && truth.prior.ncols() == p;
-    if !lengths_fit || !(truth.weight > 0.0 && total_weight.is_finite()) {
+    if !(lengths_fit && truth.weight > 0.0 && total_weight.is_finite()) {
         return Err(refuse(
             "plan",
             "",

@@ -90,7 +90,7 @@ pub fn optimise(problem: &Problem, criterion: &Criterion, wanted: f64) -> Answer
 /// criterion does not fit the problem.
 #[must_use]
 pub fn evaluate(problem: &Problem, criterion: &Criterion, hours: &[f64]) -> Option<Relaxed> {
-    if hours.len() != problem.candidates || hours.iter().any(|t| !(*t >= 0.0)) {
+    if hours.len() != problem.candidates || hours.iter().any(|t| t.is_nan() || *t < 0.0) {
         return None;
     }
     let scaled = Scaled::new(criterion, problem).ok()?;
