@@ -25,9 +25,8 @@ fn rates(roots: &[Vec<f64>], n: usize, shift: f64, prior: f64) -> Rates {
         let x = (last * j as f64 / (n - 1) as f64 - shift).clamp(0.0, last);
         let i = (x as usize).min(roots.len() - 2);
         let f = x - i as f64;
-        for k in 0..5 {
-            gradient.push(roots[i][k] * (1.0 - f) + roots[i + 1][k] * f);
-        }
+        let pairs = roots[i].iter().zip(&roots[i + 1]);
+        gradient.extend(pairs.map(|(a, b)| a * (1.0 - f) + b * f));
     }
     let mut information = DMatrix::zeros(5, 5);
     information[(4, 4)] = prior;
