@@ -1,7 +1,7 @@
 """Writes plan_cvxpy.json: 20 random planning problems and their optima by cvxpy (general-purpose convex solver),
 and plan_benchmark.json: the two benchmark problems (400 energies, 5 parameters) with cvxpy's criterion and time.
 
-Needs numpy 2.3.5, cvxpy 1.7.5 (Clarabel). Run: python make_plan_cvxpy.py
+Run: python make_plan_cvxpy.py (packages: requirements.txt)
 The curve of the random problems is a Breit-Wigner interfering with a flat amplitude over a flat incoherent
 background, smeared by a Gaussian on a fine grid; derivatives by central differences. Only the arrays matter.
 """
@@ -143,7 +143,7 @@ def benchmark(path):
 if __name__ == "__main__":
     cases = [random_case(i) for i in range(20)]
     text = ",\n".join(json.dumps(c, separators=(",", ":")) for c in cases)
-    (HERE / "plan_cvxpy.json").write_text('{"source":"make_plan_cvxpy.py, cvxpy 1.7.5, Clarabel","cases":[\n' + text + "\n]}\n")
+    (HERE / "plan_cvxpy.json").write_text('{"source":"make_plan_cvxpy.py, cvxpy with Clarabel","cases":[\n' + text + "\n]}\n")
     bench = HERE / "plan_benchmark.json"
     if bench.exists():
         print(json.dumps(benchmark(bench), indent=1))

@@ -1,6 +1,8 @@
 //! The convex problem against a general-purpose convex solver (tests/reference/make_plan_cvxpy.py),
 //! and the certificate against every design at hand.
 
+#![allow(clippy::unwrap_used)]
+
 use nalgebra::DMatrix;
 use proptest::prelude::*;
 use serde::Deserialize;

@@ -1,5 +1,7 @@
 //! Optimal designs known in closed form. Sources beside each.
 
+#![allow(clippy::unwrap_used)]
+
 use nalgebra::DMatrix;
 use widthwise_core::math;
 use widthwise_core::plan::criterion::Criterion;
@@ -124,7 +126,7 @@ fn c_optimal_extrapolation() {
     assert!((math::exp(plan.criterion) - 49.0).abs() < 1e-4);
 }
 
-/// Singular c-optimal design: the slope of a line through... estimating the response at an
+/// Singular c-optimal design: estimating the response at an
 /// interior point of a quadratic needs that point alone, variance 1 (Elfving 1952).
 #[test]
 fn c_optimal_may_be_singular() {
