@@ -1,0 +1,38 @@
+/** The page: a bar, what must be seen at a glance, the axis with its lanes and points, and the rooms beside it. */
+import type { JSX } from "preact";
+import { DataTable } from "./data/table";
+import { Bar } from "./header/bar";
+import { Strip } from "./header/strip";
+import { Stripe } from "./header/stripe";
+import { Lanes } from "./lanes/lanes";
+import { Rooms } from "./rooms/rooms";
+import { opened } from "./state/sheet";
+
+/** Everything that is seen once a sheet is open. */
+export function App(): JSX.Element {
+  if (!opened.value) {
+    return (
+      <main class="starting">
+        <p class="brand">Widthwise</p>
+        <p role="status">Starting…</p>
+      </main>
+    );
+  }
+  return (
+    <>
+      <a class="skip" href="#scan">
+        To the scan
+      </a>
+      <Bar />
+      <Strip />
+      <Stripe />
+      <main class="desk" id="scan" tabIndex={-1}>
+        <div class="axis">
+          <Lanes />
+          <DataTable />
+        </div>
+        <Rooms />
+      </main>
+    </>
+  );
+}

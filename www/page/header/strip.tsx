@@ -1,0 +1,178 @@
+/** What must be seen at a glance, from two metres, without a click. */
+import type { JSX } from "preact";
+import { digits, hours, pValue, signed, THIN, withError } from "../format/number";
+import { Quantity } from "../parts/quantity";
+import * as answers from "../state/answers";
+import { calibrationAge, needsAttention } from "../state/health";
+import { planned } from "../state/plan";
+import { room } from "../state/prefs";
+import { sheet } from "../state/sheet";
+
+/** The strip. */
+export function Strip(): JSX.Element {
+  return (
+    <section class="strip" aria-label="At a glance">
+      <Dial />
+      <Running />
+      <Results />
+      <Next />
+      <Left />
+    </section>
+  );
+}
+
+function Cell(props: { name: string; children: preact.ComponentChildren; kind?: string }): JSX.Element {
+  return (
+    <div class={`cell ${props.kind ?? ""}`}>
+      <h3>{props.name}</h3>
+      {props.children}
+    </div>
+  );
+}
+
+function Dial(): JSX.Element {
+  const running = answers.runningPoint.value;
+  const last = answers.points.value.at(-1) ?? null;
+  const here = running ?? last;
+  const age = calibrationAge.value;
+  return (
+    <Cell name={running === null && last !== null ? "Last on the dial" : "On the dial"} kind="cell-dial">
+      {here === null ? (
+        <p class="figure quiet">–</p>
+      ) : (
+        <>
+          <p class="figure">
+            <Quantity text={here.dial} />
+          </p>
+          <p class="note">
+            <span class="sym">W</span> <Quantity text={wText(here.w)} /> · {age}
+          </p>
+        </>
+      )}
+    </Cell>
+  );
+}
+
+function wText(w: number): string {
+  return w < 12 ? `${(w * 1e3).toFixed(2)} MeV` : `${w.toFixed(4)} GeV`;
+}
+
+function Running(): JSX.Element {
+  const here = answers.runningPoint.value;
+  if (here === null) {
+    return (
+      <Cell name="Running point">
+        <p class="figure quiet">none</p>
+        <p class="note">Flag the row that is running in the table.</p>
+      </Cell>
+    );
+  }
+  const row = sheet.value.data.rows.find((entry) => entry.id === here.id);
+  return (
+    <Cell name={`Running, ${here.id}`} kind={needsAttention.value.some((note) => note.code === "p-value") ? "cell-warn" : ""}>
+      <p class="figure">
+        {here.seen === null ? "–" : digits(here.seen, 6)}
+        <span class="beside">
+          {" "}
+          of {here.expected === null ? "–" : digits(here.expected, here.expected >= 100 ? 3 : 2)} expected
+        </span>
+      </p>
+      <p class="note">
+        {row?.luminosity ? (
+          <>
+            <span class="sym">L</span> <Quantity text={row.luminosity} />
+          </>
+        ) : (
+          "no luminosity yet"
+        )}
+        {here.p !== null && <> · p {pValue(here.p)}</>}
+        {timeLeft(here.id, here.time)}
+      </p>
+    </Cell>
+  );
+}
+
+function timeLeft(id: string, done: number): string {
+  const stop = planned.value.find((entry) => entry.id === id);
+  if (stop === undefined || !(stop.hours > done)) return "";
+  return ` · ${hours(stop.hours - done)} left`;
+}
+
+/** At most three results: mass, width, strength of the first resonance, or whatever is free first. */
+function Results(): JSX.Element {
+  const fit = answers.fit.value;
+  if (fit === null) {
+    return (
+      <Cell name="Result">
+        <p class="figure quiet">{answers.fitting.value ? "…" : "–"}</p>
+        <p class="note">{answers.fitRefused.value || "Choose in Fit what is left free."}</p>
+      </Cell>
+    );
+  }
+  const before = answers.fitBefore.value;
+  const shown = fit.parameters.slice(0, 3);
+  return (
+    <div class="cell cell-results" aria-busy={answers.fitting.value}>
+      <h3 class="unseen">Results</h3>
+      <dl>
+        {shown.map((parameter) => {
+          const text = withError(parameter.value, parameter.error, { unit: parameter.unit, per: 1 });
+          const old = before?.parameters.find((entry) => entry.id === parameter.id);
+          const moved = old === undefined || parameter.error === null ? null : (parameter.value - old.value) / parameter.error;
+          return (
+            <div key={parameter.id}>
+              <dt class="sym">{parameter.symbol}</dt>
+              <dd>
+                <button type="button" class="why" aria-label={`${parameter.name}: where this comes from`} onClick={() => (room.value = "fit")}>
+                  <span class="figure">{text.value}</span>
+                </button>
+                <span class="unit"> {parameter.unit}</span>
+                <p class="note">
+                  {text.error === "" ? "no error" : `±${THIN}${text.error}`}
+                  {moved !== null && Math.abs(moved) >= 0.05 && <> · moved {signed(moved, 1)} σ</>}
+                </p>
+              </dd>
+            </div>
+          );
+        })}
+      </dl>
+    </div>
+  );
+}
+
+function Next(): JSX.Element {
+  const next = planned.value.find((stop) => stop.next);
+  return (
+    <Cell name="Next setting" kind="cell-next">
+      {next === undefined ? (
+        <>
+          <p class="figure quiet">–</p>
+          <p class="note">
+            <button type="button" class="link" onClick={() => (room.value = "plan")}>
+              Ask the plan
+            </button>
+          </p>
+        </>
+      ) : (
+        <>
+          <p class="figure">
+            <Quantity text={next.dial} />
+          </p>
+          <p class="note">
+            {hours(next.hours)} · {next.why}
+          </p>
+        </>
+      )}
+    </Cell>
+  );
+}
+
+function Left(): JSX.Element {
+  const left = sheet.value.plan.hours;
+  return (
+    <Cell name="Beam time left" kind="cell-left">
+      <p class="figure">{left ? <Quantity text={left} /> : <span class="quiet">–</span>}</p>
+      <p class="note">{left ? "as entered in Plan" : "Enter it in Plan."}</p>
+    </Cell>
+  );
+}

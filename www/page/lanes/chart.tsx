@@ -1,0 +1,138 @@
+/** One lane's plot: uPlot for scales, axes and lines; marks and bands are drawn over and under them. */
+import type { JSX } from "preact";
+import { useLayoutEffect, useRef } from "preact/hooks";
+import { effect } from "@preact/signals";
+import uPlot from "uplot";
+import "uplot/dist/uPlot.min.css";
+import { theme } from "../state/prefs";
+import { view } from "../state/view";
+import { GUTTER, MARGIN, tickTexts } from "./axis";
+import { ink, plotFont } from "./ink";
+
+/** One line of a lane. */
+export interface Trace {
+  values: ArrayLike<number | null>;
+  colour: string;
+  width: number;
+  dash: number[];
+}
+
+/** What a lane draws. */
+export interface Drawing {
+  /** Energies of the traces, GeV. */
+  w: ArrayLike<number>;
+  traces: Trace[];
+  /** Range of values shown. */
+  low: number;
+  high: number;
+  under?: (plot: uPlot) => void;
+  over?: (plot: uPlot) => void;
+}
+
+interface ChartProps {
+  height: number;
+  /** Whether this lane carries the tick labels of the energy axis. */
+  labelled: boolean;
+  /** Reads signals; called again whenever one of them changes. */
+  draw: () => Drawing;
+}
+
+/** The canvas of one lane. */
+export function Chart({ height, labelled, draw }: ChartProps): JSX.Element {
+  const box = useRef<HTMLDivElement>(null);
+
+  useLayoutEffect(() => {
+    const host = box.current;
+    if (host === null) return;
+    let plot: uPlot | null = null;
+    let drawing: Drawing | null = null;
+    let shape = "";
+    let frame = 0;
+
+    const build = (): void => {
+      if (drawing === null || host.clientWidth < 80) return;
+      plot?.destroy();
+      plot = new uPlot(options(host.clientWidth, height, labelled, () => drawing), data(drawing), host);
+    };
+    const commit = (): void => {
+      frame = 0;
+      if (drawing === null) return;
+      const now = drawing.traces.map((trace) => `${trace.colour}${trace.width}${trace.dash.join()}`).join();
+      if (plot === null || now !== shape) {
+        shape = now;
+        build();
+      } else plot.setData(data(drawing), true);
+    };
+    const stop = effect(() => {
+      void view.value;
+      void theme.value;
+      drawing = draw();
+      if (frame === 0) frame = requestAnimationFrame(commit);
+    });
+    const resized = new ResizeObserver(() => {
+      if (plot === null) build();
+      else if (plot.width !== host.clientWidth) plot.setSize({ width: host.clientWidth, height });
+    });
+    resized.observe(host);
+    return () => {
+      stop();
+      resized.disconnect();
+      cancelAnimationFrame(frame);
+      plot?.destroy();
+    };
+  }, [height, labelled, draw]);
+
+  return <div class={labelled ? "chart chart-labelled" : "chart"} ref={box} aria-hidden="true" />;
+}
+
+function data(drawing: Drawing): uPlot.AlignedData {
+  return [drawing.w, ...drawing.traces.map((trace) => trace.values)] as uPlot.AlignedData;
+}
+
+function options(width: number, height: number, labelled: boolean, now: () => Drawing | null): uPlot.Options {
+  const axis = {
+    stroke: () => ink("--ink-2"),
+    grid: { stroke: () => ink("--c-grid"), width: 1 },
+    ticks: { stroke: () => ink("--edge"), width: 1, size: 5 },
+    border: { show: true, stroke: () => ink("--edge"), width: 1 },
+    font: plotFont(),
+  };
+  return {
+    width,
+    height,
+    padding: [6, MARGIN, labelled ? 0 : 6, 0],
+    legend: { show: false },
+    cursor: { show: false },
+    scales: {
+      x: { time: false, range: () => [view.peek().from, view.peek().to] },
+      y: { range: () => [now()?.low ?? 0, now()?.high ?? 1] },
+    },
+    axes: [
+      {
+        ...axis,
+        size: labelled ? 26 : 0,
+        gap: 3,
+        space: 88,
+        values: (_plot, splits) => (labelled ? tickTexts(splits, view.peek()) : splits.map(() => "")),
+      },
+      { ...axis, size: GUTTER, gap: 4, space: 30, values: (_plot, splits) => splits.map(plain) },
+    ],
+    series: [
+      {},
+      ...(now()?.traces ?? []).map((trace) => ({
+        stroke: () => ink(trace.colour),
+        width: trace.width,
+        dash: trace.dash,
+        points: { show: false },
+      })),
+    ],
+    hooks: {
+      drawClear: [(plot) => now()?.under?.(plot)],
+      draw: [(plot) => now()?.over?.(plot)],
+    },
+  };
+}
+
+function plain(value: number): string {
+  return String(Number(value.toPrecision(6))).replace("-", "−");
+}

@@ -1,0 +1,172 @@
+/** Stacked lanes over the one energy axis, with one cursor through all of them. */
+import type { JSX } from "preact";
+import { useLayoutEffect, useRef } from "preact/hooks";
+import { useSignal } from "@preact/signals";
+import { axisScale } from "../format/number";
+import { Icon } from "../parts/icon";
+import { lanes, traces } from "../state/prefs";
+import { atCursor, points } from "../state/answers";
+import { cursor, isZoomed, showAll, slide, view, zoomAt } from "../state/view";
+import { GUTTER, MARGIN, shareOf } from "./axis";
+import { drawBeamTime } from "./beam-time";
+import { Chart, type Drawing } from "./chart";
+import { drawLineShape } from "./line-shape";
+import { Legend } from "./legend";
+import { listen, marked } from "./pointer";
+import { drawPulls } from "./pulls";
+import { ReadOut, readOutText } from "./read-out";
+
+interface Lane {
+  id: string;
+  title: string;
+  unit: string;
+  height: number;
+  draw: () => Drawing;
+}
+
+/** The lanes there are, top to bottom. A new lane is one entry here. */
+const LANES: readonly Lane[] = [
+  { id: "line-shape", title: "Cross section", unit: "nb", height: 300, draw: drawLineShape },
+  { id: "pulls", title: "Residuals", unit: "errors", height: 104, draw: drawPulls },
+  { id: "beam-time", title: "Beam time", unit: "h", height: 84, draw: drawBeamTime },
+];
+
+/** The lanes with their controls. */
+export function Lanes(): JSX.Element {
+  const box = useRef<HTMLDivElement>(null);
+  useLayoutEffect(() => (box.current === null ? undefined : listen(box.current)), []);
+  const shown = LANES.filter((lane) => lanes.value[lane.id] !== false);
+  const { from, to } = view.value;
+  return (
+    <section class="lanes" aria-labelledby="lanes-title">
+      <div class="lanes-bar">
+        <h2 id="lanes-title" class="unseen">
+          Scan
+        </h2>
+        <Legend />
+        <div class="tools" role="group" aria-label="Energy axis">
+          <button type="button" class="tool" aria-label="Zoom out" onClick={() => zoomAt((from + to) / 2, 1.6)}>
+            <Icon name="minus" />
+          </button>
+          <button type="button" class="tool" aria-label="Zoom in" onClick={() => zoomAt((from + to) / 2, 1 / 1.6)}>
+            <Icon name="plus" />
+          </button>
+          <button type="button" class="tool" aria-label="Whole scan" disabled={!isZoomed.value} onClick={showAll}>
+            <Icon name="whole" />
+          </button>
+        </div>
+      </div>
+      <ReadOut />
+      <div class="lanes-box" ref={box}>
+        {shown.map((lane, i) => (
+          <LaneView key={lane.id} lane={lane} last={i === shown.length - 1} />
+        ))}
+        <Cursor />
+      </div>
+      <p class="axis-name" aria-hidden="true">
+        <span class="sym">W</span> ({axisScale(from, to).unit})
+      </p>
+      <LaneChoice />
+    </section>
+  );
+}
+
+function LaneView({ lane, last }: { lane: Lane; last: boolean }): JSX.Element {
+  return (
+    <figure class="lane" data-lane={lane.id}>
+      <figcaption>
+        {lane.title} <span class="quiet">({lane.unit})</span>
+        {lane.id === "line-shape" && traces.value["observed"] === false && <span class="quiet"> · observed hidden</span>}
+      </figcaption>
+      <Chart height={lane.height + (last ? 26 : 0)} labelled={last} draw={lane.draw} />
+    </figure>
+  );
+}
+
+/** The cursor line; a slider for the keyboard and for whoever listens to the page. */
+function Cursor(): JSX.Element {
+  const range = view.value;
+  const w = cursor.value ?? atCursor.value?.w ?? null;
+  const share = w === null ? -1 : shareOf(w, range);
+  const stretch = marked.value;
+  const onKeyDown = (event: KeyboardEvent): void => {
+    const step = (range.to - range.from) * (event.shiftKey ? 0.05 : 0.0025);
+    const here = w ?? (range.from + range.to) / 2;
+    const keys: Record<string, () => void> = {
+      ArrowRight: () => (cursor.value = here + step),
+      ArrowLeft: () => (cursor.value = here - step),
+      ArrowUp: () => (cursor.value = neighbour(here, 1)),
+      ArrowDown: () => (cursor.value = neighbour(here, -1)),
+      Home: () => (cursor.value = range.from),
+      End: () => (cursor.value = range.to),
+      "+": () => zoomAt(here, 1 / 1.6),
+      "=": () => zoomAt(here, 1 / 1.6),
+      "-": () => zoomAt(here, 1.6),
+      PageUp: () => slide(0.5),
+      PageDown: () => slide(-0.5),
+      "0": showAll,
+      Escape: () => (cursor.value = null),
+    };
+    const act = keys[event.key];
+    if (act === undefined || event.ctrlKey || event.metaKey || event.altKey) return;
+    event.preventDefault();
+    act();
+  };
+  return (
+    <div class="overlay" style={{ left: `${GUTTER}px`, right: `${MARGIN}px` }}>
+      {stretch !== null && (
+        <div
+          class="stretch"
+          style={{ left: `${stretch.from * 100}%`, width: `${(stretch.to - stretch.from) * 100}%` }}
+        />
+      )}
+      <div
+        class={cursor.value === null ? "cursor cursor-rest" : "cursor"}
+        role="slider"
+        tabIndex={0}
+        aria-label="Cursor on the energy axis"
+        aria-valuemin={range.from}
+        aria-valuemax={range.to}
+        aria-valuenow={w ?? range.from}
+        aria-valuetext={readOutText()}
+        hidden={share < 0 || share > 1}
+        style={{ left: `${share * 100}%` }}
+        onKeyDown={onKeyDown}
+      />
+    </div>
+  );
+}
+
+/** The measured point next to an energy, up or down the axis. */
+function neighbour(w: number, way: 1 | -1): number {
+  const ahead = points
+    .peek()
+    .map((point) => point.w)
+    .filter((other) => (other - w) * way > 1e-9)
+    .sort((a, b) => (a - b) * way);
+  return ahead[0] ?? w;
+}
+
+function LaneChoice(): JSX.Element {
+  const open = useSignal(false);
+  return (
+    <div class="lane-choice">
+      <button type="button" class="link" aria-expanded={open.value} onClick={() => (open.value = !open.value)}>
+        Lanes
+      </button>
+      {open.value &&
+        LANES.map((lane) => (
+          <label class="switch" key={lane.id}>
+            <input
+              type="checkbox"
+              checked={lanes.value[lane.id] !== false}
+              onChange={(event) => {
+                lanes.value = { ...lanes.value, [lane.id]: event.currentTarget.checked };
+              }}
+            />
+            <span>{lane.title}</span>
+          </label>
+        ))}
+    </div>
+  );
+}

@@ -1,0 +1,95 @@
+/** Marks of measured points. Shape tells what colour also tells: full = used, hollow = left out, triangle = running. */
+import type uPlot from "uplot";
+import { ink } from "./ink";
+
+/** One mark in data units. */
+export interface Mark {
+  x: number;
+  y: number;
+  low: number;
+  high: number;
+  kind: "used" | "out" | "running";
+  /** Half width of a horizontal error bar, GeV. */
+  wide?: number;
+}
+
+/** Draws marks with error bars on a plot's canvas. */
+export function drawMarks(plot: uPlot, marks: readonly Mark[]): void {
+  const { ctx } = plot;
+  const ratio = devicePixelRatio;
+  const size = 3.6 * ratio;
+  const { left, top, width, height } = plot.bbox;
+  ctx.save();
+  ctx.beginPath();
+  ctx.rect(left - size, top, width + 2 * size, height);
+  ctx.clip();
+  ctx.lineWidth = 1.25 * ratio;
+  ctx.lineJoin = "round";
+  for (const mark of marks) {
+    const x = plot.valToPos(mark.x, "x", true);
+    if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
+    const colour = ink(mark.kind === "out" ? "--c-off" : "--c-data");
+    ctx.strokeStyle = colour;
+    ctx.fillStyle = mark.kind === "out" ? ink("--paper") : colour;
+    const y = plot.valToPos(mark.y, "y", true);
+    ctx.beginPath();
+    ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
+    ctx.lineTo(x, plot.valToPos(mark.high, "y", true));
+    if (mark.wide !== undefined && mark.wide > 0) {
+      ctx.moveTo(plot.valToPos(mark.x - mark.wide, "x", true), y);
+      ctx.lineTo(plot.valToPos(mark.x + mark.wide, "x", true), y);
+    }
+    ctx.stroke();
+    ctx.beginPath();
+    if (mark.kind === "running") {
+      ctx.moveTo(x, y - size * 1.5);
+      ctx.lineTo(x + size * 1.4, y + size);
+      ctx.lineTo(x - size * 1.4, y + size);
+      ctx.closePath();
+    } else ctx.arc(x, y, size, 0, 2 * Math.PI);
+    ctx.fill();
+    ctx.stroke();
+  }
+  ctx.restore();
+}
+
+/** Draws bars from zero: `solid` for what has been done, hatched outline for what is planned. */
+export function drawBars(plot: uPlot, bars: readonly { x: number; y: number; solid: boolean; base: number }[]): void {
+  const { ctx } = plot;
+  const ratio = devicePixelRatio;
+  const half = 4 * ratio;
+  ctx.save();
+  ctx.beginPath();
+  ctx.rect(plot.bbox.left, plot.bbox.top, plot.bbox.width, plot.bbox.height);
+  ctx.clip();
+  for (const bar of bars) {
+    const x = plot.valToPos(bar.x, "x", true);
+    const top = plot.valToPos(bar.base + bar.y, "y", true);
+    const bottom = plot.valToPos(bar.base, "y", true);
+    if (bar.solid) {
+      ctx.fillStyle = ink("--c-observed");
+      ctx.fillRect(x - half, top, 2 * half, bottom - top);
+    } else {
+      ctx.strokeStyle = ink("--c-radiated");
+      ctx.lineWidth = 1.25 * ratio;
+      ctx.strokeRect(x - half, top, 2 * half, bottom - top);
+      ctx.beginPath();
+      for (let y = bottom; y > top; y -= 4 * ratio) {
+        ctx.moveTo(x - half, y);
+        ctx.lineTo(x + half, Math.max(top, y - 2 * half));
+      }
+      ctx.stroke();
+    }
+  }
+  ctx.restore();
+}
+
+/** Shades a band between two values over the whole width. */
+export function drawBand(plot: uPlot, low: number, high: number, colour: string): void {
+  const top = plot.valToPos(high, "y", true);
+  const bottom = plot.valToPos(low, "y", true);
+  plot.ctx.save();
+  plot.ctx.fillStyle = ink(colour);
+  plot.ctx.fillRect(plot.bbox.left, top, plot.bbox.width, bottom - top);
+  plot.ctx.restore();
+}

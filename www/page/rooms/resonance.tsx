@@ -1,0 +1,183 @@
+/** One resonance: mass, width, strength, phase on sliders; form, vertices and channels below. */
+import type { JSX } from "preact";
+import { Choice, Field } from "../parts/field";
+import { around, Slider, within } from "../parts/slider";
+import { typed, unitOf } from "../format/typed";
+import { change, setField } from "../state/sheet";
+import type { Channel, Form, Resonance, Shape, Strength, Vertex } from "../state/types";
+
+const FORMS = [
+  ["constant_width", "Constant width"],
+  ["massless_channels", "Massless channels, Γ·s/M²"],
+  ["running_width", "Running width"],
+] as const satisfies readonly (readonly [Form, string])[];
+
+const STRENGTHS = [
+  ["gamma_in_bf", "Γ_in · B_f"],
+  ["bin_bf", "B_in · B_f"],
+  ["branchings", "B_in and B_f"],
+  ["partial_widths", "Γ_in and Γ_f"],
+] as const satisfies readonly (readonly [Strength["kind"], string])[];
+
+type VertexKind = "default" | Vertex["kind"];
+const VERTICES = [
+  ["default", "As the form has it"],
+  ["constant", "Constant"],
+  ["one_photon", "One photon, M²/s"],
+  ["massless", "Massless, s/M²"],
+  ["running", "Running, two bodies"],
+] as const satisfies readonly (readonly [VertexKind, string])[];
+
+const SHAPES = [
+  ["constant", "Constant"],
+  ["massless", "Massless, s/M²"],
+  ["two_body", "Two bodies"],
+  ["tabulated", "Tabulated"],
+] as const satisfies readonly (readonly [Shape["kind"], string])[];
+
+/** The card of one resonance. */
+export function ResonanceCard(props: { index: number; resonance: Resonance; only: boolean }): JSX.Element {
+  const { index, resonance } = props;
+  const path = `model.resonances[${index}]`;
+  const who = resonance.name || `resonance ${index + 1}`;
+  const width = typed(resonance.width);
+  const sameUnit = unitOf(resonance.width) === unitOf(resonance.mass);
+  const reach = width !== null && sameUnit ? Math.max(width.value * 5, 1e-9) : null;
+  return (
+    <fieldset>
+      <legend>{who}</legend>
+      <div class="fields">
+        <Field path={`${path}.name`} label="Name" />
+        <Choice label="Form" value={resonance.form} options={FORMS} onChange={(form) => setField(`${path}.form`, form, `form of ${who}`)} />
+        <div class="with-slider">
+          <Field path={`${path}.mass`} label={<span>Mass <span class="sym">M</span></span>} name={`mass of ${who}`} />
+          <Slider
+            path={`${path}.mass`}
+            name={`Mass of ${who}`}
+            reach={(value) => {
+              const half = reach ?? value * 0.001;
+              const step = 10 ** Math.floor(Math.log10(half / 200));
+              return within(half, step)(value);
+            }}
+          />
+        </div>
+        <div class="with-slider">
+          <Field path={`${path}.width`} label={<span>Width <span class="sym">Γ</span></span>} name={`width of ${who}`} />
+          <Slider path={`${path}.width`} name={`Width of ${who}`} reach={around(5)} />
+        </div>
+        <StrengthFields path={`${path}.strength`} strength={resonance.strength} who={who} />
+        {index > 0 && (
+          <div class="with-slider">
+            <Field optional path={`${path}.phase`} label={<span>Phase <span class="sym">φ</span></span>} name={`phase of ${who}`} example="0 deg" />
+            <Slider path={`${path}.phase`} name={`Phase of ${who}`} reach={within(180, 0.5)} />
+          </div>
+        )}
+      </div>
+      {resonance.form === "running_width" && <Channels path={`${path}.channels`} list={resonance.channels ?? []} />}
+      <details>
+        <summary>Vertices{resonance.entrance || resonance.exit ? ", chosen" : ""}</summary>
+        <div class="fields">
+          <VertexFields path={`${path}.entrance`} label="Entrance" vertex={resonance.entrance ?? null} />
+          <VertexFields path={`${path}.exit`} label="Exit" vertex={resonance.exit ?? null} />
+        </div>
+      </details>
+      {!props.only && (
+        <p>
+          <button type="button" class="link" onClick={() => remove(index)}>
+            Remove {who}
+          </button>
+        </p>
+      )}
+    </fieldset>
+  );
+}
+
+function StrengthFields({ path, strength, who }: { path: string; strength: Strength; who: string }): JSX.Element {
+  const make: Record<Strength["kind"], () => Strength> = {
+    gamma_in_bf: () => ({ kind: "gamma_in_bf", value: "1 eV" }),
+    bin_bf: () => ({ kind: "bin_bf", value: "1e-6" }),
+    branchings: () => ({ kind: "branchings", b_in: "1e-4", b_f: "10 %" }),
+    partial_widths: () => ({ kind: "partial_widths", gamma_in: "1 keV", gamma_f: "0.1 MeV" }),
+  };
+  const texts: [string, string][] =
+    strength.kind === "branchings"
+      ? [["b_in", "B_in"], ["b_f", "B_f"]]
+      : strength.kind === "partial_widths"
+        ? [["gamma_in", "Γ_in"], ["gamma_f", "Γ_f"]]
+        : [["value", strength.kind === "bin_bf" ? "B_in · B_f" : "Γ_in · B_f"]];
+  return (
+    <>
+      <Choice label="Strength given as" value={strength.kind} options={STRENGTHS} onChange={(kind) => setField(path, make[kind](), `strength of ${who}`)} />
+      {texts.map(([key, label]) => (
+        <div class="with-slider" key={key}>
+          <Field path={`${path}.${key}`} label={label} name={`strength of ${who}`} />
+          <Slider path={`${path}.${key}`} name={`${label} of ${who}`} reach={around(4)} />
+        </div>
+      ))}
+    </>
+  );
+}
+
+function VertexFields({ path, label, vertex }: { path: string; label: string; vertex: Vertex | null }): JSX.Element {
+  const make: Record<VertexKind, () => Vertex | undefined> = {
+    default: () => undefined,
+    constant: () => ({ kind: "constant" }),
+    one_photon: () => ({ kind: "one_photon" }),
+    massless: () => ({ kind: "massless" }),
+    running: () => ({ kind: "running", m1: "139.570 MeV", m2: "139.570 MeV", l: 1 }),
+  };
+  return (
+    <>
+      <Choice<VertexKind> wide label={label} value={vertex?.kind ?? "default"} options={VERTICES} onChange={(kind) => setField(path, make[kind](), `${label.toLowerCase()} vertex`)} />
+      {vertex?.kind === "running" && <TwoBodies path={path} l={vertex.l} />}
+    </>
+  );
+}
+
+function TwoBodies({ path, l }: { path: string; l: number }): JSX.Element {
+  return (
+    <>
+      <Field path={`${path}.m1`} label="Mass 1" />
+      <Field path={`${path}.m2`} label="Mass 2" />
+      <Choice label="Orbital momentum l" value={String(l)} options={[["0", "0"], ["1", "1"], ["2", "2"], ["3", "3"], ["4", "4"]]} onChange={(value) => setField(`${path}.l`, Number(value), "orbital momentum")} />
+      <Field optional path={`${path}.radius`} label="Barrier radius" example="none" />
+    </>
+  );
+}
+
+function Channels({ path, list }: { path: string; list: readonly Channel[] }): JSX.Element {
+  const make: Record<Shape["kind"], () => Shape> = {
+    constant: () => ({ kind: "constant" }),
+    massless: () => ({ kind: "massless" }),
+    two_body: () => ({ kind: "two_body", m1: "139.570 MeV", m2: "139.570 MeV", l: 1 }),
+    tabulated: () => ({ kind: "tabulated", rows: [] }),
+  };
+  return (
+    <div class="channels">
+      <h3>Width channels</h3>
+      {list.map((channel, i) => (
+        <div class="fields channel" key={i}>
+          <Field path={`${path}[${i}].name`} label="Channel" />
+          <Field path={`${path}[${i}].fraction`} label="Share of Γ at M" example="50 %" />
+          <Choice label="Runs as" value={channel.shape.kind} options={SHAPES} onChange={(kind) => setField(`${path}[${i}].shape`, make[kind](), "shape of a channel")} />
+          {channel.shape.kind === "two_body" && <TwoBodies path={`${path}[${i}].shape`} l={channel.shape.l} />}
+          <div class="field field-buttons">
+            <button type="button" class="link" onClick={() => setField(path, list.filter((_, j) => j !== i), "remove a channel")}>
+              Remove {channel.name || `channel ${i + 1}`}
+            </button>
+          </div>
+        </div>
+      ))}
+      <button type="button" class="button" onClick={() => setField(path, [...list, { name: `channel ${list.length + 1}`, fraction: list.length === 0 ? "100 %" : "0 %", shape: { kind: "constant" } } satisfies Channel], "add a channel")}>
+        Add a channel
+      </button>
+    </div>
+  );
+}
+
+function remove(index: number): void {
+  change("remove a resonance", (before) => ({
+    ...before,
+    model: { ...before.model, resonances: before.model.resonances.filter((_, i) => i !== index) },
+  }));
+}

@@ -1,0 +1,87 @@
+/** Files, clipboard and links: everything that leaves the page or comes in does so by a person's hand. */
+import { deflateSync, inflateSync, strFromU8, strToU8 } from "fflate";
+import { Refused } from "../bridge/failures";
+import { savedFile } from "./saved";
+import { open, sheet } from "./sheet";
+import type { Sheet, Table } from "./types";
+import { ask } from "./work";
+
+/** Gives a file to the person; the name keeps to letters that every system takes. */
+export function download(name: string, content: Blob): void {
+  const url = URL.createObjectURL(content);
+  const link = document.createElement("a");
+  link.href = url;
+  link.download = name;
+  link.click();
+  setTimeout(() => URL.revokeObjectURL(url), 10_000);
+}
+
+/** Name of a file of this sheet. */
+export function fileName(what: string, ending: string): string {
+  const title = sheet.peek().title.normalize("NFKD").replace(/[^\w-]+/g, "-").replace(/^-+|-+$/g, "").slice(0, 40) || "scan";
+  return `${title.toLowerCase()}${what === "" ? "" : `-${what}`}.${ending}`;
+}
+
+/** Saves the sheet as a file. */
+export function saveSheet(): void {
+  const name = fileName("", "json");
+  download(name, new Blob([`${JSON.stringify(sheet.peek(), null, 1)}\n`], { type: "application/json" }));
+  savedFile.value = { name, at: Date.now() };
+}
+
+/** Opens a sheet from text; returns what is wrong, or "". Nothing changes if something is. */
+export async function openText(text: string, did: string): Promise<string> {
+  try {
+    const { body } = await ask({ kind: "open", text });
+    if (body.kind !== "sheet") return "This is not a scan sheet.";
+    open(body.sheet, did);
+    return "";
+  } catch (reason) {
+    return reason instanceof Refused ? reason.refusal.message : String(reason);
+  }
+}
+
+/** A table as CSV, or the lines for an electronic log. */
+export async function tableText(table: Table): Promise<string> {
+  const { body } = await ask({ kind: "write_table", sheet: sheet.peek(), table });
+  return body.kind === "text" ? body.text : "";
+}
+
+/** A link that carries the sheet in its fragment; nothing of it is sent anywhere. */
+export function linkOf(now: Sheet): string {
+  const packed = deflateSync(strToU8(JSON.stringify(now)), { level: 9 });
+  const text = btoa(Array.from(packed, (byte) => String.fromCharCode(byte)).join(""))
+    .replace(/\+/g, "-")
+    .replace(/\//g, "_")
+    .replace(/=+$/, "");
+  return `${location.href.split("#")[0]}#sheet=${text}`;
+}
+
+/** Text of the sheet in the page's own address, or `null`. */
+export function sheetInLink(hash: string): string | null {
+  const text = /^#sheet=([\w-]+)$/.exec(hash)?.[1];
+  if (text === undefined) return null;
+  try {
+    const bytes = Uint8Array.from(atob(text.replace(/-/g, "+").replace(/_/g, "/")), (char) => char.charCodeAt(0));
+    return strFromU8(inflateSync(bytes));
+  } catch {
+    return "";
+  }
+}
+
+/** Puts text on the clipboard; `false` where the browser does not allow it. */
+export async function copy(text: string): Promise<boolean> {
+  try {
+    await navigator.clipboard.writeText(text);
+    return true;
+  } catch {
+    const box = document.createElement("textarea");
+    box.value = text;
+    box.className = "unseen";
+    document.body.append(box);
+    box.select();
+    const done = document.execCommand("copy");
+    box.remove();
+    return done;
+  }
+}

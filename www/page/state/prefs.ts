@@ -1,0 +1,63 @@
+/** How this person likes the page: kept apart from the sheet, and never needed to read one. */
+import { effect, signal } from "@preact/signals";
+
+/** Themes; "" follows the system. */
+export type Theme = "" | "light" | "dark" | "dim";
+/** Rooms beside the axis, in the order of the work. */
+export type Room = "shift" | "beam" | "model" | "detection" | "fit" | "plan" | "look-up" | "sheet";
+
+const KEY = "widthwise.prefs.1";
+
+interface Prefs {
+  theme: Theme;
+  room: Room;
+  lanes: Record<string, boolean>;
+  traces: Record<string, boolean>;
+}
+
+function stored(): Partial<Prefs> {
+  try {
+    const text = localStorage.getItem(KEY);
+    const value: unknown = text === null ? {} : JSON.parse(text);
+    return value !== null && typeof value === "object" ? value : {};
+  } catch {
+    return {};
+  }
+}
+
+const first = stored();
+
+export const theme = signal<Theme>(
+  first.theme === "light" || first.theme === "dark" || first.theme === "dim" ? first.theme : "",
+);
+export const room = signal<Room>("shift");
+/** Lanes that are shown, by id; absent = the lane's own default. */
+export const lanes = signal<Record<string, boolean>>(flags(first.lanes));
+/** Traces of the line-shape lane that are shown. */
+export const traces = signal<Record<string, boolean>>({
+  observed: true,
+  radiated: true,
+  born: false,
+  parts: false,
+  ...flags(first.traces),
+});
+
+function flags(value: unknown): Record<string, boolean> {
+  if (value === null || typeof value !== "object") return {};
+  return Object.fromEntries(Object.entries(value).filter((entry) => typeof entry[1] === "boolean"));
+}
+
+/** Applies and keeps the preferences; where storage is forbidden they last as long as the page. */
+export function keepPrefs(): () => void {
+  return effect(() => {
+    const root = document.documentElement;
+    if (theme.value === "") root.removeAttribute("data-theme");
+    else root.setAttribute("data-theme", theme.value);
+    const prefs: Prefs = { theme: theme.value, room: room.value, lanes: lanes.value, traces: traces.value };
+    try {
+      localStorage.setItem(KEY, JSON.stringify(prefs));
+    } catch {
+      // Forbidden or full storage: nothing that was typed is here.
+    }
+  });
+}

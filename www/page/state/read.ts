@@ -1,0 +1,116 @@
+/** Puts a reply of the worker into the page's signals. */
+import { batch } from "@preact/signals";
+import type { Reply } from "../../shared/protocol";
+import * as answers from "./answers";
+import { typed } from "../format/typed";
+import { symbolOf } from "./parameters";
+import type { Sheet } from "./types";
+import { whole } from "./view";
+
+/** A curve: the first column is W. */
+export function readCurve({ body, columns }: Reply): void {
+  const [w, ...rest] = columns;
+  if (body.kind !== "curve" || w === undefined) return;
+  answers.curve.value = { w: w.values, columns: rest, accuracy: body.accuracy };
+}
+
+/** Everything at the cursor. */
+export function readCursor({ body }: Reply): void {
+  if (body.kind !== "cursor") return;
+  answers.atCursor.value = { w: body.w_gev, dial: body.dial, values: body.values };
+}
+
+/** Every row of data; also the range that the axis shows when it shows everything. */
+export function readPoints({ body }: Reply, sheet: Sheet): void {
+  if (body.kind !== "points") return;
+  const rows = new Map(sheet.data.rows.map((row) => [row.id, row]));
+  const read: answers.PointView[] = [];
+  for (const point of body.points) {
+    const row = rows.get(point.id);
+    if (row === undefined || point.w_gev === null || point.w_gev === undefined) continue;
+    read.push({
+      id: point.id,
+      w: point.w_gev,
+      wError: point.w_error_gev,
+      dial: point.dial,
+      used: row.left_out !== true,
+      running: row.running === true,
+      sigma: point.sigma_nb ?? null,
+      sigmaError: point.sigma_error_nb,
+      luminosity: point.luminosity_nbinv ?? 0,
+      time: point.live_time_h ?? 0,
+      expected: point.expected ?? null,
+      seen: point.seen ?? null,
+      pull: point.pull ?? null,
+      p: point.p_value ?? null,
+    });
+  }
+  batch(() => {
+    answers.points.value = read;
+    const range = rangeOf(sheet, read);
+    const before = whole.peek();
+    if (range !== null && (range.from !== before.from || range.to !== before.to)) whole.value = range;
+  });
+}
+
+/** A fit, and the one before it for comparison. */
+export function readFit({ body }: Reply, sheet: Sheet): void {
+  if (body.kind !== "fit") return;
+  const parameters = body.parameters.map((parameter) => ({
+    id: parameter.id,
+    name: parameter.name,
+    symbol: symbolOf(parameter.id, sheet),
+    value: parameter.value,
+    error: parameter.error ?? null,
+    unit: parameter.unit,
+    atLimit: parameter.at_limit,
+  }));
+  batch(() => {
+    const last = answers.fit.peek();
+    if (last !== null && last.dataKey !== sheet.data) answers.fitBefore.value = last;
+    answers.fit.value = {
+      parameters,
+      dataKey: sheet.data,
+      correlation: body.correlation,
+      statistic: body.statistic,
+      degrees: body.degrees_of_freedom,
+      p: body.p_value ?? null,
+      why: body.stopped,
+      converged: body.converged,
+      pulls: body.pulls,
+      nuisances: body.nuisances,
+      texts: Object.fromEntries(body.parameters.map((parameter) => [parameter.field, parameter.text])),
+      warnings: body.warnings,
+    };
+  });
+}
+
+/** Room on both sides of what there is to see, as a share of it. */
+const ROOM = 0.06;
+
+/** The stretch that holds every point; without two of them, a few widths of each resonance. */
+function rangeOf(sheet: Sheet, read: readonly answers.PointView[]): { from: number; to: number } | null {
+  const energies = read.map((point) => point.w);
+  if (energies.length < 2 || Math.max(...energies) === Math.min(...energies)) {
+    for (const resonance of sheet.model.resonances) {
+      const mass = gev(resonance.mass);
+      const width = gev(resonance.width) ?? 0;
+      if (mass === null) continue;
+      const reach = Math.max(8 * width, 1.5e-3 * mass);
+      energies.push(mass - reach, mass + reach);
+    }
+  }
+  if (energies.length === 0) return null;
+  const [from, to] = [Math.min(...energies), Math.max(...energies)];
+  const room = (to - from) * ROOM;
+  return { from: from - room, to: to + room };
+}
+
+const PER: Record<string, number> = { eV: 1e-9, keV: 1e-6, MeV: 1e-3, GeV: 1, TeV: 1e3 };
+
+/** Only to place the first view; what a number means is decided by the core. */
+function gev(text: string): number | null {
+  const parts = typed(text);
+  const per = PER[parts?.rest.trim().split("/")[0] ?? ""];
+  return parts === null || per === undefined ? null : parts.value * per;
+}

@@ -1,0 +1,145 @@
+/**
+ * Autosave in this browser. Every tab writes versions of its own and never touches another tab's, so that two
+ * tabs cannot overwrite each other. Where IndexedDB is forbidden, localStorage holds the newest version; where
+ * that is forbidden too, the page says so and asks for a file.
+ */
+import { effect, signal } from "@preact/signals";
+import { saveTrouble, savedAt, unsaved } from "./saved";
+import { opened, revision, sheet } from "./sheet";
+import type { Sheet } from "./types";
+
+/** One saved version. */
+export interface Version {
+  key: number;
+  /** ms since 1970. */
+  at: number;
+  /** Which tab wrote it. */
+  tab: string;
+  title: string;
+  text: string;
+}
+
+const DATABASE = "widthwise";
+const STORE = "versions";
+const FALLBACK = "widthwise.newest.1";
+const STILL_MS = 400;
+/** One version at least this often is kept for good (up to KEPT); those between replace each other. */
+const STEP_MS = 120_000;
+const KEPT = 200;
+
+/** This tab. */
+const TAB = Math.random().toString(36).slice(2, 10);
+
+/** Saved versions, newest first, without their text's meaning. */
+export const versions = signal<Version[]>([]);
+/** Another tab has saved a sheet since this one was opened: its newest version. */
+export const otherTab = signal<Version | null>(null);
+
+let database: IDBDatabase | null = null;
+let current: Version | null = null;
+const channel = typeof BroadcastChannel === "undefined" ? null : new BroadcastChannel("widthwise");
+
+/** Opens the store and returns the newest version, if there is one. */
+export async function openStore(): Promise<Version | null> {
+  try {
+    database = await openDatabase();
+    versions.value = await all(database);
+  } catch {
+    database = null;
+    const text = readFallback();
+    versions.value = text === null ? [] : [text];
+  }
+  channel?.addEventListener("message", (event: MessageEvent<Version>) => {
+    if (event.data.tab !== TAB) otherTab.value = event.data;
+  });
+  return versions.value[0] ?? null;
+}
+
+/** Saves the sheet whenever it has been still for a moment, and at once when the page is left. */
+export function keepSaving(): () => void {
+  let timer = 0;
+  let first = true;
+  const stop = effect(() => {
+    void revision.value;
+    if (!opened.value) return;
+    const now = sheet.value;
+    if (first) {
+      first = false;
+      return;
+    }
+    unsaved.value = true;
+    clearTimeout(timer);
+    timer = window.setTimeout(() => void save(now), STILL_MS);
+  });
+  const leave = (): void => {
+    if (!unsaved.peek()) return;
+    clearTimeout(timer);
+    void save(sheet.peek());
+  };
+  addEventListener("pagehide", leave);
+  document.addEventListener("visibilitychange", leave);
+  return () => {
+    stop();
+    removeEventListener("pagehide", leave);
+    document.removeEventListener("visibilitychange", leave);
+  };
+}
+
+async function save(now: Sheet): Promise<void> {
+  const at = Date.now();
+  const fresh = current === null || at - current.key > STEP_MS;
+  const version: Version = { key: fresh ? at : (current?.key ?? at), at, tab: TAB, title: now.title, text: JSON.stringify(now) };
+  try {
+    if (database !== null) await put(database, version);
+    else localStorage.setItem(FALLBACK, JSON.stringify(version));
+    current = version;
+    savedAt.value = at;
+    unsaved.value = false;
+    saveTrouble.value = "";
+    versions.value = [version, ...versions.peek().filter((other) => other.key !== version.key || other.tab !== TAB)].slice(0, KEPT);
+    channel?.postMessage(version);
+  } catch (reason) {
+    const full = reason instanceof DOMException && reason.name === "QuotaExceededError";
+    saveTrouble.value = full
+      ? "The storage of this browser is full: nothing more is saved here. Save the sheet to a file."
+      : "This browser does not let the page save anything. Save the sheet to a file before you close it.";
+  }
+}
+
+function openDatabase(): Promise<IDBDatabase> {
+  return new Promise((resolve, reject) => {
+    const request = indexedDB.open(DATABASE, 1);
+    request.onupgradeneeded = () => request.result.createObjectStore(STORE, { keyPath: ["key", "tab"] });
+    request.onsuccess = () => resolve(request.result);
+    request.onerror = () => reject(request.error ?? new Error("storage refused"));
+    request.onblocked = () => reject(new Error("storage blocked"));
+  });
+}
+
+function all(from: IDBDatabase): Promise<Version[]> {
+  return new Promise((resolve, reject) => {
+    const request = from.transaction(STORE).objectStore(STORE).getAll();
+    request.onsuccess = () => resolve((request.result as Version[]).sort((a, b) => b.at - a.at));
+    request.onerror = () => reject(request.error ?? new Error("storage refused"));
+  });
+}
+
+function put(into: IDBDatabase, version: Version): Promise<void> {
+  return new Promise((resolve, reject) => {
+    const work = into.transaction(STORE, "readwrite");
+    const store = work.objectStore(STORE);
+    store.put(version);
+    for (const old of versions.peek().slice(KEPT)) store.delete([old.key, old.tab]);
+    work.oncomplete = () => resolve();
+    work.onabort = () => reject(work.error ?? new Error("storage refused"));
+  });
+}
+
+function readFallback(): Version | null {
+  try {
+    const text = localStorage.getItem(FALLBACK);
+    return text === null ? null : (JSON.parse(text) as Version);
+  } catch {
+    return null;
+  }
+}

@@ -1,0 +1,130 @@
+/** Keeps the answers up to date: watches sheet, axis and cursor, and asks the worker for what has become old. */
+import { effect } from "@preact/signals";
+import { Refused, Trapped } from "../bridge/failures";
+import type { Reply } from "../../shared/protocol";
+import * as answers from "./answers";
+import { readCursor, readCurve, readFit, readPoints } from "./read";
+import { Line } from "./line";
+import { opened, revision, sheet } from "./sheet";
+import type { Request } from "./types";
+import { cursor, view, whole } from "./view";
+
+/** What asks: the pool of workers, or a stand-in of a test. */
+export interface Bridge {
+  run(request: Request, options?: { background?: boolean; signal?: AbortSignal }): Promise<Reply>;
+}
+
+/** Energies of the curve on the screen; a pixel or two each. */
+const CURVE_POINTS = 700;
+/** A fit starts when the sheet has been still this long, ms. */
+const STILL_MS = 120;
+
+let bridge: Bridge | null = null;
+
+/** Asks one question outside the running work (a look-up, a file). */
+export function ask(request: Request): Promise<Reply> {
+  if (bridge === null) return Promise.reject(new Error("the engine has not started yet"));
+  return bridge.run(request);
+}
+
+/** Starts the work on a bridge; returns what stops it. */
+export function work(on: Bridge): () => void {
+  bridge = on;
+  const live = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["curve", "cursor", "check", "points"]);
+  const failed = (reason: unknown): void => {
+    if (reason instanceof Refused) return;
+    answers.broken.value = reason instanceof Trapped ? reason.message : String(reason);
+  };
+
+  const stops = [
+    effect(() => {
+      if (!opened.value) return;
+      const now = sheet.value;
+      live.put(
+        "check",
+        { kind: "check", sheet: now },
+        ({ body }) => {
+          if (body.kind !== "sheet") return;
+          answers.problems.value = body.problems;
+          answers.warnings.value = body.warnings;
+        },
+        failed,
+      );
+      live.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), failed);
+    }),
+    effect(() => {
+      if (!opened.value) return;
+      const { from, to } = view.value;
+      live.put(
+        "curve",
+        { kind: "curve", sheet: sheet.value, from_gev: from, to_gev: to, points: CURVE_POINTS },
+        readCurve,
+        (reason) => {
+          if (reason instanceof Refused) answers.curve.value = null;
+          else failed(reason);
+        },
+      );
+    }),
+    effect(() => {
+      if (!opened.value) return;
+      const w = cursor.value ?? answers.runningPoint.value?.w ?? middleOfInterest();
+      live.put("cursor", { kind: "cursor", sheet: sheet.value, w_gev: w }, readCursor, (reason) => {
+        if (reason instanceof Refused) answers.atCursor.value = null;
+        else failed(reason);
+      });
+    }),
+    keepFitting(on, failed),
+  ];
+  return () => {
+    for (const stop of stops) stop();
+    bridge = null;
+  };
+}
+
+function middleOfInterest(): number {
+  return (whole.value.from + whole.value.to) / 2;
+}
+
+function keepFitting(on: Bridge, failed: (reason: unknown) => void): () => void {
+  let timer = 0;
+  let running: AbortController | null = null;
+  const stop = effect(() => {
+    void revision.value;
+    if (!opened.value) return;
+    const now = sheet.value;
+    clearTimeout(timer);
+    running?.abort();
+    running = null;
+    if (now.fit.free.length === 0) {
+      answers.fit.value = null;
+      answers.fitting.value = false;
+      answers.fitRefused.value = "";
+      return;
+    }
+    answers.fitting.value = true;
+    timer = window.setTimeout(() => {
+      const own = new AbortController();
+      running = own;
+      on.run({ kind: "fit", sheet: now }, { background: true, signal: own.signal }).then(
+        (reply) => {
+          if (own.signal.aborted) return;
+          readFit(reply, now);
+          answers.fitting.value = false;
+          answers.fitRefused.value = "";
+        },
+        (reason: unknown) => {
+          if (own.signal.aborted) return;
+          answers.fitting.value = false;
+          answers.fit.value = null;
+          if (reason instanceof Refused) answers.fitRefused.value = reason.message;
+          else failed(reason);
+        },
+      );
+    }, STILL_MS);
+  });
+  return () => {
+    stop();
+    clearTimeout(timer);
+    running?.abort();
+  };
+}
