@@ -1,29 +1,13 @@
-import { signal } from "@preact/signals";
-import { render } from "preact";
 import { boot } from "./bridge/boot";
-import "./style.css";
-
-const state = signal("starting");
-
-function App() {
-  return (
-    <main>
-      <h1>Widthwise</h1>
-      <p id="state">{state}</p>
-    </main>
-  );
-}
+import { start } from "./start";
+import "./style/index.css";
 
 const root = document.getElementById("app");
-if (root) render(<App />, root);
+const pool = boot();
 
-boot().then(
-  (pool) => {
-    // Reachable from the console and from the browser tests.
-    Object.assign(globalThis, { widthwise: { pool } });
-    state.value = "ready";
-  },
-  (error: unknown) => {
-    state.value = String(error);
-  },
+// Reachable from the console and from the browser tests.
+pool.then(
+  (ready) => Object.assign(globalThis, { widthwise: { pool: ready } }),
+  () => undefined,
 );
+if (root !== null) void start(root, pool);

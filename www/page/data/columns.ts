@@ -12,19 +12,19 @@ export interface ColumnView {
 }
 
 const COLUMNS: readonly (ColumnView & { always?: boolean })[] = [
-  { field: "id", title: "Point", number: false, width: 5, always: true },
-  { field: "group", title: "Fill", number: false, width: 5 },
-  { field: "setting", title: "Dial", number: true, width: 13 },
-  { field: "w", title: "W", number: true, width: 13 },
-  { field: "w_error", title: "Error of W", number: true, width: 8 },
+  { field: "id", title: "Point", number: false, width: 4, always: true },
+  { field: "group", title: "Fill", number: false, width: 6 },
+  { field: "setting", title: "Dial", number: true, width: 11 },
+  { field: "w", title: "W", number: true, width: 11 },
+  { field: "w_error", title: "Error of W", number: true, width: 7 },
   { field: "sigma_w", title: "σ of W", number: true, width: 8 },
-  { field: "luminosity", title: "Luminosity", number: true, width: 12 },
+  { field: "luminosity", title: "Luminosity", number: true, width: 10 },
   { field: "luminosity_error", title: "its error", number: true, width: 9 },
-  { field: "live_time", title: "Live time", number: true, width: 8 },
+  { field: "live_time", title: "Live time", number: true, width: 5 },
   { field: "live_fraction", title: "Live", number: true, width: 7 },
   { field: "efficiency", title: "Efficiency", number: true, width: 8 },
   { field: "efficiency_error", title: "its error", number: true, width: 7 },
-  { field: "counts", title: "Counts", number: true, width: 8 },
+  { field: "counts", title: "Counts", number: true, width: 6 },
   { field: "off_counts", title: "Off region", number: true, width: 8 },
   { field: "tau", title: "τ", number: true, width: 5 },
   { field: "cross_section", title: "Cross section", number: true, width: 12 },
@@ -32,7 +32,7 @@ const COLUMNS: readonly (ColumnView & { always?: boolean })[] = [
   { field: "channel", title: "Channel", number: false, width: 9 },
   { field: "start", title: "Start", number: false, width: 24 },
   { field: "stop", title: "Stop", number: false, width: 24 },
-  { field: "comment", title: "Comment", number: false, width: 22, always: true },
+  { field: "comment", title: "Comment", number: false, width: 18, always: true },
 ];
 
 /** The columns that a table of these rows shows. */

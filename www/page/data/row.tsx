@@ -1,6 +1,6 @@
 /** One row: a switch for its use, cells as typed, and what the chain makes of it. */
 import type { JSX } from "preact";
-import { digits, signed } from "../format/number";
+import { count, signed } from "../format/number";
 import { Icon } from "../parts/icon";
 import { problemAt, type PointView } from "../state/answers";
 import { removeRow, setCell, swapLuminosity, toggleRunning, toggleUse } from "../state/rows";
@@ -30,11 +30,10 @@ export function RowView({ row, index, columns, point }: RowProps): JSX.Element {
           <input type="checkbox" checked={!row.left_out} aria-label={`Use ${row.id}`} onChange={() => toggleUse(index)} />
         </label>
       </td>
-      {columns.map((column) => (
-        <Cell key={column.field} row={row} index={index} column={column} />
-      ))}
-      <td class="number told">{point?.expected === null || point === null ? "" : digits(point.expected, point.expected < 10 ? 2 : point.expected < 100 ? 3 : 4)}</td>
+      {columns.map((column) => column.field !== "comment" && <Cell key={column.field} row={row} index={index} column={column} />)}
+      <td class="number told">{point?.expected === null || point === null ? "" : count(point.expected)}</td>
       <td class={`number told ${Math.abs(point?.pull ?? 0) > 3 ? "bad" : ""}`}>{point?.pull === null || point === null ? "" : signed(point.pull, 2)}</td>
+      {columns.map((column) => column.field === "comment" && <Cell key={column.field} row={row} index={index} column={column} />)}
       <td class="row-actions">
         <button type="button" class={row.running ? "tool tool-on" : "tool"} aria-pressed={row.running === true} aria-label={`${row.id} is running`} title="Running now" onClick={() => toggleRunning(index)}>
           <Icon name="next" />
@@ -61,7 +60,7 @@ function Cell({ row, index, column }: { row: Row; index: number; column: ColumnV
         type="text"
         autocomplete="off"
         spellcheck={false}
-        size={column.width}
+        style={{ width: `${column.width + 1.5}ch` }}
         value={row[column.field] ?? ""}
         data-path={`data.rows[${index}].${column.field}`}
         aria-label={`${column.title} of ${row.id}`}

@@ -67,7 +67,7 @@ export function DataTable(): JSX.Element {
             <thead>
               <tr>
                 <th scope="col">Use</th>
-                {columns.map((column) => (
+                {columns.filter((column) => column.field !== "comment").map((column) => (
                   <th scope="col" key={column.field} class={column.number ? "number" : ""}>
                     {column.title}
                   </th>
@@ -78,6 +78,7 @@ export function DataTable(): JSX.Element {
                 <th scope="col" class="number">
                   Pull
                 </th>
+                <th scope="col">Comment</th>
                 <th scope="col">
                   <span class="unseen">Actions</span>
                 </th>

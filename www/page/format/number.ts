@@ -41,14 +41,10 @@ export function axisScale(from: number, to: number): Scale {
   return to < 12 || span < 0.05 ? { unit: "MeV", per: 1e-3 } : { unit: "GeV", per: 1 };
 }
 
-/** Decimals to which an error is quoted: two digits up to 35, else one (PDG rule: 100-354, 355-949, 950-999). */
+/** Decimals to which an error is quoted: two significant digits, so that 44 and 46 keV stay apart. */
 export function decimalsOfError(error: number): number {
   if (!(error > 0) || !Number.isFinite(error)) return 0;
-  const exponent = Math.floor(Math.log10(error));
-  const lead = Math.round(error / 10 ** (exponent - 2));
-  if (lead <= 354) return Math.max(0, 1 - exponent);
-  if (lead <= 949) return Math.max(0, -exponent);
-  return Math.max(0, -exponent);
+  return Math.max(0, 1 - Math.floor(Math.log10(Number(error.toPrecision(2)))));
 }
 
 /** Fixed decimals with a true minus sign. */
@@ -68,6 +64,12 @@ export function digits(value: number, count = 4): string {
     return `${mantissa}·10${superscript(exponent)}`;
   }
   return fixed(value, Math.max(0, count - 1 - exponent));
+}
+
+/** A count: whole where it is whole, else (an expectation) to about a tenth of its own fluctuation. */
+export function count(value: number): string {
+  if (Number.isInteger(value)) return fixed(value, 0);
+  return fixed(value, value >= 100 ? 0 : value >= 10 ? 1 : 2);
 }
 
 /** Value and error in one unit, rounded together. */

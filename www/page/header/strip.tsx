@@ -1,7 +1,8 @@
 /** What must be seen at a glance, from two metres, without a click. */
 import type { JSX } from "preact";
-import { digits, hours, pValue, signed, THIN, withError } from "../format/number";
+import { count, hours, pValue, signed, THIN, withError } from "../format/number";
 import { Quantity } from "../parts/quantity";
+import { Sym } from "../parts/sym";
 import * as answers from "../state/answers";
 import { calibrationAge, needsAttention } from "../state/health";
 import { planned } from "../state/plan";
@@ -45,7 +46,9 @@ function Dial(): JSX.Element {
             <Quantity text={here.dial} />
           </p>
           <p class="note">
-            <span class="sym">W</span> <Quantity text={wText(here.w)} /> · {age}
+            <span class="sym">W</span> <Quantity text={wText(here.w)} />
+            <br />
+            {age}
           </p>
         </>
       )}
@@ -71,13 +74,13 @@ function Running(): JSX.Element {
   return (
     <Cell name={`Running, ${here.id}`} kind={needsAttention.value.some((note) => note.code === "p-value") ? "cell-warn" : ""}>
       <p class="figure">
-        {here.seen === null ? "–" : digits(here.seen, 6)}
-        <span class="beside">
-          {" "}
-          of {here.expected === null ? "–" : digits(here.expected, here.expected >= 100 ? 3 : 2)} expected
-        </span>
+        {here.seen === null ? "–" : count(here.seen)}
+        <span class="beside"> seen</span>
       </p>
       <p class="note">
+        {here.expected !== null && <>{count(here.expected)} expected</>}
+        {here.p !== null && <> · p {pValue(here.p)}</>}
+        <br />
         {row?.luminosity ? (
           <>
             <span class="sym">L</span> <Quantity text={row.luminosity} />
@@ -85,7 +88,6 @@ function Running(): JSX.Element {
         ) : (
           "no luminosity yet"
         )}
-        {here.p !== null && <> · p {pValue(here.p)}</>}
         {timeLeft(here.id, here.time)}
       </p>
     </Cell>
@@ -121,7 +123,9 @@ function Results(): JSX.Element {
           const moved = old === undefined || parameter.error === null ? null : (parameter.value - old.value) / parameter.error;
           return (
             <div key={parameter.id}>
-              <dt class="sym">{parameter.symbol}</dt>
+              <dt>
+                <Sym text={parameter.symbol} />
+              </dt>
               <dd>
                 <button type="button" class="why" aria-label={`${parameter.name}: where this comes from`} onClick={() => (room.value = "fit")}>
                   <span class="figure">{text.value}</span>

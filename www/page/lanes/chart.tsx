@@ -9,6 +9,9 @@ import { view } from "../state/view";
 import { GUTTER, MARGIN, tickTexts } from "./axis";
 import { ink, plotFont } from "./ink";
 
+/** Height kept free for the lane's caption, so that it never covers a point. */
+const CAPTION = 22;
+
 /** One line of a lane. */
 export interface Trace {
   values: ArrayLike<number | null>;
@@ -93,14 +96,14 @@ function options(width: number, height: number, labelled: boolean, now: () => Dr
   const axis = {
     stroke: () => ink("--ink-2"),
     grid: { stroke: () => ink("--c-grid"), width: 1 },
-    ticks: { stroke: () => ink("--edge"), width: 1, size: 5 },
+    ticks: { stroke: () => ink("--edge"), width: 1, size: 4 },
     border: { show: true, stroke: () => ink("--edge"), width: 1 },
     font: plotFont(),
   };
   return {
     width,
     height,
-    padding: [6, MARGIN, labelled ? 0 : 6, 0],
+    padding: [CAPTION, MARGIN, labelled ? 0 : 6, 0],
     legend: { show: false },
     cursor: { show: false },
     scales: {
@@ -113,6 +116,7 @@ function options(width: number, height: number, labelled: boolean, now: () => Dr
         size: labelled ? 26 : 0,
         gap: 3,
         space: 88,
+        ticks: { ...axis.ticks, show: labelled },
         values: (_plot, splits) => (labelled ? tickTexts(splits, view.peek()) : splits.map(() => "")),
       },
       { ...axis, size: GUTTER, gap: 4, space: 30, values: (_plot, splits) => splits.map(plain) },

@@ -26,9 +26,9 @@ interface Lane {
 
 /** The lanes there are, top to bottom. A new lane is one entry here. */
 const LANES: readonly Lane[] = [
-  { id: "line-shape", title: "Cross section", unit: "nb", height: 300, draw: drawLineShape },
-  { id: "pulls", title: "Residuals", unit: "errors", height: 104, draw: drawPulls },
-  { id: "beam-time", title: "Beam time", unit: "h", height: 84, draw: drawBeamTime },
+  { id: "line-shape", title: "Cross section", unit: "nb", height: 310, draw: drawLineShape },
+  { id: "pulls", title: "Residuals", unit: "errors", height: 112, draw: drawPulls },
+  { id: "beam-time", title: "Beam time", unit: "h", height: 96, draw: drawBeamTime },
 ];
 
 /** The lanes with their controls. */
@@ -63,11 +63,28 @@ export function Lanes(): JSX.Element {
         ))}
         <Cursor />
       </div>
-      <p class="axis-name" aria-hidden="true">
-        <span class="sym">W</span> ({axisScale(from, to).unit})
-      </p>
+      <div class="axis-foot">
+        <Outside side="left" />
+        <p class="axis-name" aria-hidden="true">
+          <span class="sym">W</span> ({axisScale(from, to).unit})
+        </p>
+        <Outside side="right" />
+      </div>
       <LaneChoice />
     </section>
+  );
+}
+
+/** Says how many points lie outside what is seen; brings them in. */
+function Outside({ side }: { side: "left" | "right" }): JSX.Element {
+  const { from, to } = view.value;
+  const count = points.value.filter((point) => (side === "left" ? point.w < from : point.w > to)).length;
+  if (count === 0) return <span />;
+  const what = count === 1 ? "1 point" : `${count} points`;
+  return (
+    <button type="button" class="link outside" onClick={showAll} aria-label={`${what} outside to the ${side}: show the whole scan`}>
+      {side === "left" ? `← ${what}` : `${what} →`}
+    </button>
   );
 }
 

@@ -6,7 +6,8 @@ import * as answers from "../state/answers";
 import { parametersOf } from "../state/parameters";
 import { textAt, withAt } from "../state/path";
 import { change, setField, sheet } from "../state/sheet";
-import { units } from "../parts/quantity";
+import { Quantity, units } from "../parts/quantity";
+import { Sym } from "../parts/sym";
 
 /** The room. */
 export function FitRoom(): JSX.Element {
@@ -52,9 +53,11 @@ function Free(): JSX.Element {
                   </label>
                 </td>
                 <th scope="row">
-                  <span class="sym">{parameter.symbol}</span> <span class="quiet small">{parameter.name}</span>
+                  <Sym text={parameter.symbol} /> <span class="quiet small">{parameter.name}</span>
                 </th>
-                <td class="number">{units(textAt(now, parameter.path))}</td>
+                <td class="number">
+                  <Quantity text={textAt(now, parameter.path)} />
+                </td>
                 <td>
                   <input
                     type="text"
@@ -130,7 +133,7 @@ function Outcome(): JSX.Element {
             return (
               <tr key={parameter.id}>
                 <th scope="row">
-                  <span class="sym">{parameter.symbol}</span>
+                  <Sym text={parameter.symbol} />
                 </th>
                 <td class="number strong">{text.value}</td>
                 <td class="number">{text.error === "" ? "–" : `±${THIN}${text.error}`}</td>
@@ -218,8 +221,8 @@ function Correlation({ fit }: { fit: answers.FitView }): JSX.Element | null {
           <tr>
             <td />
             {fit.parameters.map((parameter) => (
-              <th scope="col" class="number sym" key={parameter.id}>
-                {parameter.symbol}
+              <th scope="col" class="number" key={parameter.id}>
+                <Sym text={parameter.symbol} />
               </th>
             ))}
           </tr>
@@ -227,8 +230,8 @@ function Correlation({ fit }: { fit: answers.FitView }): JSX.Element | null {
         <tbody>
           {fit.parameters.map((parameter, i) => (
             <tr key={parameter.id}>
-              <th scope="row" class="sym">
-                {parameter.symbol}
+              <th scope="row">
+                <Sym text={parameter.symbol} />
               </th>
               {fit.parameters.map((other, j) => (
                 <td class="number" key={other.id}>

@@ -2,6 +2,7 @@
 import type { JSX } from "preact";
 import { Choice, Field } from "../parts/field";
 import { around, Slider, within } from "../parts/slider";
+import { Sym } from "../parts/sym";
 import { typed, unitOf } from "../format/typed";
 import { change, setField } from "../state/sheet";
 import type { Channel, Form, Resonance, Shape, Strength, Vertex } from "../state/types";
@@ -13,10 +14,10 @@ const FORMS = [
 ] as const satisfies readonly (readonly [Form, string])[];
 
 const STRENGTHS = [
-  ["gamma_in_bf", "Γ_in · B_f"],
-  ["bin_bf", "B_in · B_f"],
-  ["branchings", "B_in and B_f"],
-  ["partial_widths", "Γ_in and Γ_f"],
+  ["gamma_in_bf", "Γin · Bf"],
+  ["bin_bf", "Bin · Bf"],
+  ["branchings", "Bin and Bf"],
+  ["partial_widths", "Γin and Γf"],
 ] as const satisfies readonly (readonly [Strength["kind"], string])[];
 
 type VertexKind = "default" | Vertex["kind"];
@@ -104,14 +105,14 @@ function StrengthFields({ path, strength, who }: { path: string; strength: Stren
       ? [["b_in", "B_in"], ["b_f", "B_f"]]
       : strength.kind === "partial_widths"
         ? [["gamma_in", "Γ_in"], ["gamma_f", "Γ_f"]]
-        : [["value", strength.kind === "bin_bf" ? "B_in · B_f" : "Γ_in · B_f"]];
+        : [["value", strength.kind === "bin_bf" ? "B_in·B_f" : "Γ_in·B_f"]];
   return (
     <>
       <Choice label="Strength given as" value={strength.kind} options={STRENGTHS} onChange={(kind) => setField(path, make[kind](), `strength of ${who}`)} />
       {texts.map(([key, label]) => (
         <div class="with-slider" key={key}>
-          <Field path={`${path}.${key}`} label={label} name={`strength of ${who}`} />
-          <Slider path={`${path}.${key}`} name={`${label} of ${who}`} reach={around(4)} />
+          <Field path={`${path}.${key}`} label={<Sym text={label} />} name={`strength of ${who}`} />
+          <Slider path={`${path}.${key}`} name={`${label.replace(/_/g, "")} of ${who}`} reach={around(4)} />
         </div>
       ))}
     </>

@@ -2,13 +2,13 @@
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
 import { useId } from "preact/hooks";
-import { digits, hours, pValue, signed } from "../format/number";
+import { count, digits, hours, pValue, signed } from "../format/number";
 import { Fraction, Why } from "../parts/why";
 import { Quantity, units } from "../parts/quantity";
 import * as answers from "../state/answers";
 import { planned } from "../state/plan";
 import { room } from "../state/prefs";
-import { addRow, closeRow, columnUnit, setCell, withUnit } from "../state/rows";
+import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
 import { sheet } from "../state/sheet";
 import type { Row } from "../state/types";
 
@@ -28,6 +28,7 @@ function RunningForm({ row, index }: { row: Row; index: number }): JSX.Element {
   const id = useId();
   const comment = useSignal("");
   const unit = columnUnit("luminosity");
+  const bare = withoutUnit(row.luminosity ?? "", unit);
   const here = answers.points.value.find((point) => point.id === row.id) ?? null;
   const enter = (form: HTMLFormElement): void => {
     const values = new FormData(form);
@@ -59,7 +60,7 @@ function RunningForm({ row, index }: { row: Row; index: number }): JSX.Element {
           <label for={`${id}l`}>
             Luminosity <span class="sym">L</span> <span class="quiet">({units(unit)})</span>
           </label>
-          <input id={`${id}l`} class="big" name="l" type="text" inputMode="decimal" autocomplete="off" defaultValue={row.luminosity ?? ""} key={`l${row.luminosity ?? ""}`} aria-invalid={lumiProblem ? "true" : undefined} aria-describedby={`${id}p`} />
+          <input id={`${id}l`} class="big" name="l" type="text" inputMode="decimal" autocomplete="off" defaultValue={bare} key={`l${row.luminosity ?? ""}`} aria-invalid={lumiProblem ? "true" : undefined} aria-describedby={`${id}p`} />
         </div>
         <button type="submit" class="button button-main">
           Enter
@@ -87,7 +88,7 @@ function Health({ point }: { point: answers.PointView }): JSX.Element {
     <dl class="trio">
       <div>
         <dt>Seen</dt>
-        <dd>{point.seen === null ? "–" : digits(point.seen, 6)}</dd>
+        <dd>{point.seen === null ? "–" : count(point.seen)}</dd>
       </div>
       <div>
         <dt>Expected so far</dt>
@@ -95,7 +96,7 @@ function Health({ point }: { point: answers.PointView }): JSX.Element {
           {point.expected === null ? (
             "–"
           ) : (
-            <Why title="Counts expected so far" value={digits(point.expected, 4)}>
+            <Why title="Counts expected so far" value={count(point.expected)}>
               <math display="block">
                 <mi>μ</mi>
                 <mo>=</mo>

@@ -11,10 +11,10 @@ export interface Parameter {
 }
 
 const STRENGTH = {
-  gamma_in_bf: { key: "value", symbol: "Γₑ·B", name: "strength" },
-  bin_bf: { key: "value", symbol: "B·B", name: "strength" },
-  branchings: { key: "b_in", symbol: "B", name: "strength" },
-  partial_widths: { key: "gamma_in", symbol: "Γᵢ", name: "strength" },
+  gamma_in_bf: { key: "value", symbol: "Γ_in·B_f", name: "strength" },
+  bin_bf: { key: "value", symbol: "B_in·B_f", name: "strength" },
+  branchings: { key: "b_in", symbol: "B_in", name: "strength" },
+  partial_widths: { key: "gamma_in", symbol: "Γ_in", name: "strength" },
 } as const;
 
 /** All parameters of a sheet, in the order of the chain. */

@@ -5,7 +5,7 @@ import * as answers from "./answers";
 import { typed } from "../format/typed";
 import { symbolOf } from "./parameters";
 import type { Sheet } from "./types";
-import { whole } from "./view";
+import { usual, whole, type Range } from "./view";
 
 /** A curve: the first column is W. */
 export function readCurve({ body, columns }: Reply): void {
@@ -47,9 +47,10 @@ export function readPoints({ body }: Reply, sheet: Sheet): void {
   }
   batch(() => {
     answers.points.value = read;
-    const range = rangeOf(sheet, read);
-    const before = whole.peek();
-    if (range !== null && (range.from !== before.from || range.to !== before.to)) whole.value = range;
+    const energies = energiesOf(sheet, read);
+    if (energies.length === 0) return;
+    put(whole, withRoom(energies));
+    put(usual, withRoom(withoutStragglers(energies)));
   });
 }
 
@@ -87,23 +88,42 @@ export function readFit({ body }: Reply, sheet: Sheet): void {
 
 /** Room on both sides of what there is to see, as a share of it. */
 const ROOM = 0.06;
+/** A point further off than this many times the length of all the others stands on its own. */
+const ALONE = 1.2;
 
-/** The stretch that holds every point; without two of them, a few widths of each resonance. */
-function rangeOf(sheet: Sheet, read: readonly answers.PointView[]): { from: number; to: number } | null {
-  const energies = read.map((point) => point.w);
-  if (energies.length < 2 || Math.max(...energies) === Math.min(...energies)) {
-    for (const resonance of sheet.model.resonances) {
-      const mass = gev(resonance.mass);
-      const width = gev(resonance.width) ?? 0;
-      if (mass === null) continue;
-      const reach = Math.max(8 * width, 1.5e-3 * mass);
-      energies.push(mass - reach, mass + reach);
-    }
+/** Every point's energy; without two of them, a few widths of each resonance. */
+function energiesOf(sheet: Sheet, read: readonly answers.PointView[]): number[] {
+  const energies = read.map((point) => point.w).sort((a, b) => a - b);
+  if (energies.length >= 2 && energies[0] !== energies.at(-1)) return energies;
+  for (const resonance of sheet.model.resonances) {
+    const mass = gev(resonance.mass);
+    const width = gev(resonance.width) ?? 0;
+    if (mass === null) continue;
+    const reach = Math.max(8 * width, 1.5e-3 * mass);
+    energies.push(mass - reach, mass + reach);
   }
-  if (energies.length === 0) return null;
-  const [from, to] = [Math.min(...energies), Math.max(...energies)];
+  return energies.sort((a, b) => a - b);
+}
+
+/** Leaves out one point at each end if it lies far off on its own. */
+function withoutStragglers(sorted: readonly number[]): readonly number[] {
+  if (sorted.length < 5) return sorted;
+  const inner = sorted.slice(1, -1);
+  const length = (inner.at(-1) ?? 0) - (inner[0] ?? 0);
+  const first = (inner[0] ?? 0) - (sorted[0] ?? 0) > ALONE * length ? 1 : 0;
+  const last = (sorted.at(-1) ?? 0) - (inner.at(-1) ?? 0) > ALONE * length ? 1 : 0;
+  return sorted.slice(first, sorted.length - last);
+}
+
+function withRoom(sorted: readonly number[]): Range {
+  const [from = 0, to = 1] = [sorted[0], sorted.at(-1)];
   const room = (to - from) * ROOM;
   return { from: from - room, to: to + room };
+}
+
+function put(where: { value: Range; peek(): Range }, range: Range): void {
+  const before = where.peek();
+  if (range.to > range.from && (range.from !== before.from || range.to !== before.to)) where.value = range;
 }
 
 const PER: Record<string, number> = { eV: 1e-9, keV: 1e-6, MeV: 1e-3, GeV: 1, TeV: 1e3 };

@@ -115,6 +115,11 @@ export function withUnit(text: string, unit: string): string {
   return parts !== null && parts.rest.trim() === "" && unit !== "" ? `${text.trim()} ${unit}` : text.trim();
 }
 
+/** The text without its unit where that is the one shown beside the field. */
+export function withoutUnit(text: string, unit: string): string {
+  return unitOf(text) === unit ? text.slice(0, text.length - unit.length).trim() : text;
+}
+
 /** The unit that a column has had so far. */
 export function columnUnit(field: "luminosity" | "setting" | "w"): string {
   const rows = sheet.peek().data.rows;

@@ -25,7 +25,8 @@ export const savedWords = computed(() => {
   const file = savedFile.value;
   const inFile = file === null ? "in no file yet" : `in ${file.name} since ${clock(file.at)}`;
   if (saveTrouble.value !== "") return `Not saved in this browser; ${inFile}`;
-  if (unsaved.value || savedAt.value === 0) return `Saving… ${inFile}`;
+  if (unsaved.value) return `Saving… ${inFile}`;
+  if (savedAt.value === 0) return "As opened, nothing to save";
   return `Saved in this browser only ${ago(Date.now() - savedAt.value)}; ${inFile}`.replace(
     file === null ? "" : " only",
     "",

@@ -9,12 +9,14 @@ export interface Range {
 
 /** The whole range worth looking at: data, hypothesis, or both. */
 export const whole = signal<Range>({ from: 0, to: 1 });
-const zoomed = signal<Range | null>(null);
+/** Where most of it happens: the whole without points far off on their own. Seen first. */
+export const usual = signal<Range>({ from: 0, to: 1 });
+const chosen = signal<Range | null>(null);
 
 /** What is seen now. */
-export const view = computed<Range>(() => zoomed.value ?? whole.value);
-/** Whether the axis is zoomed in or out. */
-export const isZoomed = computed(() => zoomed.value !== null);
+export const view = computed<Range>(() => chosen.value ?? usual.value);
+/** Whether something lies outside what is seen, or the axis is not as it was at first. */
+export const isZoomed = computed(() => view.value.from > whole.value.from || view.value.to < whole.value.to || chosen.value !== null);
 
 /** Where a person has put the cursor; `null`: nowhere. */
 export const cursor = signal<number | null>(null);
@@ -26,12 +28,13 @@ const NARROWEST = 1e-9;
 export function show(range: Range): void {
   const middle = (range.from + range.to) / 2;
   if (!(range.to - range.from > middle * NARROWEST) || !(range.from > 0)) return;
-  zoomed.value = range;
+  chosen.value = range;
 }
 
-/** Shows everything. */
+/** Shows everything; once more: back to where most of it happens. */
 export function showAll(): void {
-  zoomed.value = null;
+  const { from, to } = view.peek();
+  chosen.value = from === whole.peek().from && to === whole.peek().to ? null : whole.peek();
 }
 
 /** Zooms by a factor around an energy. */
