@@ -4,8 +4,10 @@
 //! B are decay fractions of the final state's particles, sigma_bg and r_bg detector
 //! background that is never radiated.
 
+mod rates;
 mod times;
 
+pub use rates::{Rates, rate_and_gradient};
 pub use times::{Floor, HoursTo, SignalRates, hours_to_relative_error};
 
 use crate::numerics::probability::poisson_p_value;

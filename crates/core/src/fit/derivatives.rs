@@ -173,12 +173,9 @@ pub fn differentiate(
         let (Some(low), Some(high)) = (curves.get(2 * i + 1), curves.get(2 * i + 2)) else {
             continue;
         };
-        let first = |f0: f64, fa: f64, fb: f64| {
-            ((fa - f0) * (b / a) - (fb - f0) * (a / b)) / (b - a)
-        };
-        let pure = |f0: f64, fa: f64, fb: f64| {
-            2.0 * ((fb - f0) / b - (fa - f0) / a) / (b - a)
-        };
+        let first =
+            |f0: f64, fa: f64, fb: f64| ((fa - f0) * (b / a) - (fb - f0) * (a / b)) / (b - a);
+        let pure = |f0: f64, fa: f64, fb: f64| 2.0 * ((fb - f0) / b - (fa - f0) / a) / (b - a);
         if !(d == k && need.w) {
             fill(&mut out.d_sigma[d], centre, low, high, Curve::sigma, first);
         }
@@ -186,9 +183,23 @@ pub fn differentiate(
             fill(&mut out.d_slope[d], centre, low, high, Curve::slope, first);
         }
         if second {
-            fill(&mut out.dd_sigma[pair(d, d)], centre, low, high, Curve::sigma, pure);
+            fill(
+                &mut out.dd_sigma[pair(d, d)],
+                centre,
+                low,
+                high,
+                Curve::sigma,
+                pure,
+            );
             if need.slope {
-                fill(&mut out.dd_slope[pair(d, d)], centre, low, high, Curve::slope, pure);
+                fill(
+                    &mut out.dd_slope[pair(d, d)],
+                    centre,
+                    low,
+                    high,
+                    Curve::slope,
+                    pure,
+                );
             }
         }
     }
@@ -201,13 +212,15 @@ pub fn differentiate(
                 };
                 next += 2;
                 let singles = [2 * i + 1, 2 * i + 2, 2 * j + 1, 2 * j + 2].map(|at| &curves[at]);
-                let mut mixed = |target: &mut Vec<f64>, get: fn(&Curve) -> &[f64]| {
+                let mixed = |target: &mut Vec<f64>, get: fn(&Curve) -> &[f64]| {
                     let f0 = get(centre);
                     for (p, slot) in target.iter_mut().enumerate() {
                         // Each corner gives f_ab - f_a - f_b + f_0 = a b f'' (1 + O(h)); the mean of the
                         // two opposite corners removes the odd order where the steps are symmetric.
-                        let one = (get(low)[p] - get(singles[0])[p] - get(singles[2])[p] + f0[p]) / (a * a2);
-                        let two = (get(high)[p] - get(singles[1])[p] - get(singles[3])[p] + f0[p]) / (b * b2);
+                        let one = (get(low)[p] - get(singles[0])[p] - get(singles[2])[p] + f0[p])
+                            / (a * a2);
+                        let two = (get(high)[p] - get(singles[1])[p] - get(singles[3])[p] + f0[p])
+                            / (b * b2);
                         *slot = 0.5 * (one + two);
                     }
                 };

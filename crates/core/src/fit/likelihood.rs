@@ -418,8 +418,9 @@ impl Likelihood {
                 }
             }
             if observed {
-                self.add_second(&mut out.curvature, &d, p, (fs, fl), bg, |s, b| {
-                    term.first * (datum.signal * s + datum.luminosity_nbinv * b)
+                let sigma = (d.sigma[p], d.d_sigma.as_slice(), d.dd_sigma.as_slice());
+                self.add_second(&mut out.curvature, sigma, p, (fs, fl), bg, |s, b| {
+                    term.first * (datum.signal * s[3] + datum.luminosity_nbinv * b)
                 });
             }
         }
@@ -438,7 +439,8 @@ impl Likelihood {
             for i in 0..n {
                 for r in 0..cross {
                     effective[(r, i)] += variance_columns[(r, i)] * a[r];
-                    out.gradient[i] -= 2.0 * a[r] * columns[(r, i)] + a[r] * a[r] * variance_columns[(r, i)];
+                    out.gradient[i] -=
+                        2.0 * a[r] * columns[(r, i)] + a[r] * a[r] * variance_columns[(r, i)];
                 }
             }
             let solved = factor.solve(&effective);
@@ -451,9 +453,17 @@ impl Likelihood {
             if observed {
                 for (r, &(p, e)) in cross_data.iter().enumerate() {
                     let f = factors[p];
-                    self.add_second(&mut out.curvature, &d, p, f, bg, |s, _| -2.0 * a[r] * s);
+                    let sigma = (d.sigma[p], d.d_sigma.as_slice(), d.dd_sigma.as_slice());
+                    self.add_second(&mut out.curvature, sigma, p, f, bg, |s, _| {
+                        -2.0 * a[r] * s[3]
+                    });
                     if self.need.slope && e > 0.0 {
-                        self.add_slope_second(&mut out.curvature, &d, p, f, -a[r] * a[r] * 2.0 * e * e);
+                        let slope = (d.slope[p], d.d_slope.as_slice(), d.dd_slope.as_slice());
+                        let w = -2.0 * a[r] * a[r] * e * e;
+                        // Half the second derivative of the slope's square.
+                        self.add_second(&mut out.curvature, slope, p, f, bg, |s, _| {
+                            w * (s[1] * s[2] + s[0] * s[3])
+                        });
                     }
                 }
             }
@@ -492,17 +502,19 @@ impl Likelihood {
         }
     }
 
-    /// Adds weight(second derivative of F_s F_l sigma, of F_l sigma_bg) over all pairs of coordinates.
+    /// Adds `weight` (of F_s F_l f with its first derivatives along i and k and its second; of the second
+    /// derivative of F_l sigma_bg) over all pairs of coordinates, for f = sigma or the slope.
     fn add_second(
         &self,
         curvature: &mut DMatrix<f64>,
-        d: &Derivatives,
+        (value, first, second): (f64, &[Vec<f64>], &[Vec<f64>]),
         p: usize,
         (fs, fl): (f64, f64),
         bg: f64,
-        weight: impl Fn(f64, f64) -> f64,
+        weight: impl Fn([f64; 4], f64) -> f64,
     ) {
         let gaussian = self.problem.gaussian_factors;
+        let g = fs * fl;
         for (i, row) in self.actions.iter().enumerate() {
             let a = &row[p];
             if a.is_none() {
@@ -510,7 +522,7 @@ impl Likelihood {
             }
             let (as_, al) = factor_change(a, fs, fl, gaussian);
             let ga = as_ * fl + fs * al;
-            let sa = along(&a.directions, &d.d_sigma, p);
+            let va = along(&a.directions, first, p);
             for (k, other) in self.actions.iter().enumerate().take(i + 1) {
                 let b = &other[p];
                 if b.is_none() {
@@ -518,41 +530,22 @@ impl Likelihood {
                 }
                 let (bs, bl) = factor_change(b, fs, fl, gaussian);
                 let gb = bs * fl + fs * bl;
-                let sb = along(&b.directions, &d.d_sigma, p);
+                let vb = along(&b.directions, first, p);
                 let (ss, ll) = if gaussian {
                     (0.0, 0.0)
                 } else {
                     (a.signal * b.signal * fs, a.luminosity * b.luminosity * fl)
                 };
-                let gg = ss * fl + as_ * bl + bs * al + fs * ll;
-                let sab = along_pairs(&a.directions, &b.directions, &d.dd_sigma, p);
-                let second = gg * d.sigma[p] + ga * sb + gb * sa + fs * fl * sab;
-                let second_bg = ll * bg + al * b.background + bl * a.background;
-                curvature[(i, k)] += weight(second, second_bg);
-            }
-        }
-    }
-
-    /// Adds weight times half the second derivative of (F_s F_l slope)^2; factors' own curvature is of
-    /// higher order in a term that is already of second order in the residuals, and is left out.
-    fn add_slope_second(
-        &self,
-        curvature: &mut DMatrix<f64>,
-        d: &Derivatives,
-        p: usize,
-        (fs, fl): (f64, f64),
-        weight: f64,
-    ) {
-        let g = fs * fl;
-        let s = g * d.slope[p];
-        for (i, row) in self.actions.iter().enumerate() {
-            let a = &row[p];
-            let da = g * along(&a.directions, &d.d_slope, p);
-            for (k, other) in self.actions.iter().enumerate().take(i + 1) {
-                let b = &other[p];
-                let db = g * along(&b.directions, &d.d_slope, p);
-                let dab = g * along_pairs(&a.directions, &b.directions, &d.dd_slope, p);
-                curvature[(i, k)] += weight * (da * db + s * dab);
+                let gab = ss * fl + as_ * bl + bs * al + fs * ll;
+                let vab = along_pairs(&a.directions, &b.directions, second, p);
+                let product = [
+                    g * value,
+                    ga * value + g * va,
+                    gb * value + g * vb,
+                    gab * value + ga * vb + gb * va + g * vab,
+                ];
+                let background = ll * bg + al * b.background + bl * a.background;
+                curvature[(i, k)] += weight(product, background);
             }
         }
     }
@@ -586,10 +579,7 @@ fn impossible(point: &str, mu: f64) -> Refusal {
 
 #[inline]
 fn along(directions: &[(usize, f64)], table: &[Vec<f64>], p: usize) -> f64 {
-    directions
-        .iter()
-        .map(|(d, size)| size * table[*d][p])
-        .sum()
+    directions.iter().map(|(d, size)| size * table[*d][p]).sum()
 }
 
 #[inline]
@@ -610,5 +600,117 @@ fn factor_change(a: &Action, fs: f64, fl: f64, gaussian: bool) -> (f64, f64) {
         (a.signal, a.luminosity)
     } else {
         (a.signal * fs, a.luminosity * fl)
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::super::settings::{Constraint, FitSettings};
+    use super::super::stand_in::{BreitWigner, counting_scan};
+    use super::*;
+    use crate::scan::{Measured, Scan};
+
+    const FREE: [&str; 4] = ["r1.mass", "r1.width", "r1.strength", "incoherent.0"];
+
+    fn everything(gaussian: bool) -> Scan {
+        let w: Vec<f64> = (0..9).map(|i| 2.999 + 0.25e-3 * f64::from(i)).collect();
+        let n = [40.0, 52.0, 90.0, 170.0, 310.0, 180.0, 77.0, 60.0, 44.0];
+        let mut scan = counting_scan(&w, &n, 5.0);
+        scan.detection.efficiency = 0.8;
+        scan.common.energy_gev = 0.1e-3;
+        scan.common.energy_slope = 1e-5;
+        scan.common.scale = 0.02;
+        scan.common.luminosity = 0.03;
+        scan.common.group_energy_gev = 0.05e-3;
+        scan.common.group_luminosity = 0.01;
+        scan.common.efficiency_slope_per_gev = 20.0;
+        scan.common.gaussian_factors = gaussian;
+        for (i, p) in scan.points.iter_mut().enumerate() {
+            p.group = Some(format!("fill {}", i / 3));
+            p.w_error_gev = 0.02e-3;
+            p.luminosity_error_nbinv = 0.05;
+            if i == 3 {
+                p.measured = Measured::Counts {
+                    n: 170.0,
+                    off: Some((31.0, 2.0)),
+                };
+            }
+            if i > 6 {
+                p.measured = Measured::CrossSection {
+                    sigma_nb: 12.0,
+                    error_nb: 1.0,
+                };
+            }
+        }
+        scan
+    }
+
+    fn likelihood(scan: &Scan, free_background: bool) -> Likelihood {
+        let mut settings = FitSettings {
+            free: FREE.map(String::from).to_vec(),
+            constraints: vec![Constraint {
+                parameter: "r1.width".into(),
+                value: 0.7e-3,
+                error: 0.1e-3,
+            }],
+            ..FitSettings::default()
+        };
+        if free_background {
+            settings.free.push("background.cross_section".into());
+            settings.free.push("background.rate".into());
+        }
+        let model = BreitWigner::new([3.0, 0.8e-3, 70.0, 9.0], &FREE);
+        Likelihood::new(Problem::new(scan, &settings, Rc::new(model)).unwrap())
+    }
+
+    /// Gradient and observed curvature against differences of value and gradient, with every kind of
+    /// datum, nuisance and constraint at once.
+    #[test]
+    fn derivatives_are_those_of_the_value() {
+        for (gaussian, background) in [(false, false), (true, true), (false, true)] {
+            let mut likelihood = likelihood(&everything(gaussian), background);
+            let mut x = likelihood.problem().start();
+            for (i, v) in x.iter_mut().enumerate().skip(4) {
+                *v = 0.3 * crate::math::sin(i as f64) + if background && i < 6 { 1.0 } else { 0.0 };
+            }
+            // Small steps: the stand-in is exact.
+            for (f, s) in likelihood
+                .first_steps
+                .iter_mut()
+                .zip(&mut likelihood.second_steps)
+            {
+                *f *= 0.01;
+                *s *= 0.01;
+            }
+            let here = likelihood.full(&x, true).unwrap();
+            for i in 0..x.len() {
+                let h = 1e-3 * likelihood.problem().coordinates[i].scale.min(1.0);
+                let (mut up, mut down) = (x.clone(), x.clone());
+                up[i] += h;
+                down[i] -= h;
+                let (up, down) = (
+                    likelihood.full(&up, false).unwrap(),
+                    likelihood.full(&down, false).unwrap(),
+                );
+                let slope = (up.value - down.value) / (2.0 * h);
+                let size = here.curvature[(i, i)].sqrt();
+                assert!(
+                    (slope - here.gradient[i]).abs() < 1e-4 * (size + slope.abs()),
+                    "gradient {i}: {} against {slope}",
+                    here.gradient[i]
+                );
+                for k in 0..x.len() {
+                    let second = (up.gradient[k] - down.gradient[k]) / (2.0 * h);
+                    let size = (here.curvature[(i, i)] * here.curvature[(k, k)])
+                        .abs()
+                        .sqrt();
+                    assert!(
+                        (second - here.curvature[(i, k)]).abs() < 2e-3 * size,
+                        "curvature {i} {k}: {} against {second}, size {size}",
+                        here.curvature[(i, k)]
+                    );
+                }
+            }
+        }
     }
 }

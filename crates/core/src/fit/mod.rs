@@ -1,1 +1,34 @@
 //! Fits: likelihoods, minimiser, intervals.
+//!
+//! [`fit`] is the door: a scan and what is to be free in, a [`FitResult`] out. [`Fitter`] is the
+//! same in steps, for what goes on from a minimum (profiles, contours, trials).
+
+mod covariance;
+mod curve;
+mod derivatives;
+mod fitter;
+mod likelihood;
+mod nuisance;
+mod problem;
+mod result;
+mod scan_curve;
+mod settings;
+mod terms;
+mod warnings;
+
+#[cfg(test)]
+pub(crate) mod stand_in;
+
+pub use covariance::Covariance;
+pub use curve::{Curve, CurveModel, CurveParameter, Probe, Site};
+pub use derivatives::{Derivatives, Need, differentiate, pair};
+pub use fitter::{Fitter, fit};
+pub use likelihood::{Likelihood, Prediction};
+pub use nuisance::{Effect, Nuisance, NuisanceKind, nuisances};
+pub use problem::{
+    BACKGROUND_CROSS_SECTION, BACKGROUND_RATE, Coordinate, CoordinateInfo, Datum, Kind, Problem,
+};
+pub use result::{FitResult, FittedNuisance, FittedPoint, FittedValue};
+pub use scan_curve::{SPREAD, ScanCurve};
+pub use settings::{Constraint, FitSettings};
+pub use terms::{Term, counts as counts_term, on_off, profiled_background};

@@ -123,7 +123,10 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
             &name("luminosity"),
             Luminosity,
             false,
-            &only(relative(point.luminosity_error_nbinv, point.luminosity_nbinv)),
+            &only(relative(
+                point.luminosity_error_nbinv,
+                point.luminosity_nbinv,
+            )),
         );
         add(
             &name("efficiency"),
@@ -167,7 +170,9 @@ fn from_covariance(rows: &[f64], n: usize) -> Answer<Vec<Nuisance>> {
         )
     };
     if rows.len() != n * n {
-        return Err(refusal("does not have a row and a column for every point in use"));
+        return Err(refusal(
+            "does not have a row and a column for every point in use",
+        ));
     }
     let matrix = DMatrix::from_row_slice(n, n, rows);
     if !is_symmetric(&matrix) {

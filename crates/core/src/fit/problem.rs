@@ -349,7 +349,10 @@ fn data(scan: &Scan, free_background: bool) -> Answer<(Vec<Datum>, bool)> {
                         field("efficiency"),
                         e.signal_nbinv / e.luminosity_nbinv,
                         "an efficiency above 0",
-                        format!("with an efficiency of 0 point {} says nothing about the cross section: leave it out", point.id),
+                        format!(
+                            "with an efficiency of 0 point {} says nothing about the cross section: leave it out",
+                            point.id
+                        ),
                     ));
                 }
                 let mut datum = Datum {
@@ -406,9 +409,11 @@ fn covariance(scan: &Scan, data: &[Datum]) -> Answer<DMatrix<f64>> {
         .collect();
     let n = rows.len();
     let Some(given) = &scan.covariance_nb2 else {
-        return Ok(DMatrix::from_fn(n, n, |a, b| match scan.points[rows[a]].measured {
-            Measured::CrossSection { error_nb, .. } if a == b => error_nb * error_nb,
-            _ => 0.0,
+        return Ok(DMatrix::from_fn(n, n, |a, b| {
+            match scan.points[rows[a]].measured {
+                Measured::CrossSection { error_nb, .. } if a == b => error_nb * error_nb,
+                _ => 0.0,
+            }
         }));
     };
     let refusal = |what: &str| {

@@ -54,7 +54,10 @@ impl FitSettings {
                     field,
                     format!("{} +- {}", c.value, c.error),
                     "a value with an error above 0",
-                    format!("the constraint on {} needs a value and an error above 0", c.parameter),
+                    format!(
+                        "the constraint on {} needs a value and an error above 0",
+                        c.parameter
+                    ),
                 ));
             }
             if !ids.contains(&c.parameter) {

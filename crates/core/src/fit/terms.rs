@@ -59,7 +59,11 @@ pub fn on_off(n: f64, n_off: f64, tau: f64, s: f64) -> Option<Term> {
     let on = if n > 0.0 { ratio / mu } else { 0.0 };
     let second = if b > 0.0 {
         let off = n_off / (b * b);
-        if on + off > 0.0 { 2.0 * on * off / (on + off) } else { 0.0 }
+        if on + off > 0.0 {
+            2.0 * on * off / (on + off)
+        } else {
+            0.0
+        }
     } else {
         2.0 * on
     };
