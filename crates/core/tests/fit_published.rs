@@ -1,5 +1,8 @@
 //! Fits of published data through the chain.
-#![allow(clippy::unwrap_used, reason = "test helpers stop where a value is missing")]
+#![allow(
+    clippy::unwrap_used,
+    reason = "test helpers stop where a value is missing"
+)]
 
 use widthwise_core::amplitude::hypothesis::*;
 use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
