@@ -1,6 +1,8 @@
 /** Sheet: open, save, take away, hand over; versions to go back to; examples. */
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
+import { ReadCodes } from "../carry/read";
+import { ShowCodes } from "../carry/show";
 import { ago } from "../format/number";
 import { examples } from "../examples";
 import { picture } from "../lanes/picture";
@@ -61,6 +63,11 @@ export function SheetRoom(): JSX.Element {
             <Icon name="copy" /> Copy a link with this sheet in it
           </button>
         </div>
+      </fieldset>
+      <fieldset>
+        <legend>Without network or stick</legend>
+        <ShowCodes />
+        <ReadCodes />
       </fieldset>
       <fieldset>
         <legend>Take away</legend>

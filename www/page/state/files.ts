@@ -1,6 +1,6 @@
 /** Files, clipboard and links: everything that leaves the page or comes in does so by a person's hand. */
-import { deflateSync, inflateSync, strFromU8, strToU8 } from "fflate";
 import { Refused } from "../bridge/failures";
+import { fromAddress, pack, toAddress, unpack } from "../carry/pack";
 import { savedFile } from "./saved";
 import { open, sheet } from "./sheet";
 import type { Sheet, Table } from "./types";
@@ -49,21 +49,15 @@ export async function tableText(table: Table): Promise<string> {
 
 /** A link that carries the sheet in its fragment; nothing of it is sent anywhere. */
 export function linkOf(now: Sheet): string {
-  const packed = deflateSync(strToU8(JSON.stringify(now)), { level: 9 });
-  const text = btoa(Array.from(packed, (byte) => String.fromCharCode(byte)).join(""))
-    .replace(/\+/g, "-")
-    .replace(/\//g, "_")
-    .replace(/=+$/, "");
-  return `${location.href.split("#")[0]}#sheet=${text}`;
+  return `${location.href.split("#")[0]}#sheet=${toAddress(pack(JSON.stringify(now)))}`;
 }
 
-/** Text of the sheet in the page's own address, or `null`. */
+/** Text of the sheet in an address's fragment; "" if it cannot be read, `null` if there is none. */
 export function sheetInLink(hash: string): string | null {
-  const text = /^#sheet=([\w-]+)$/.exec(hash)?.[1];
+  const text = /^#sheet=(.+)$/.exec(hash)?.[1];
   if (text === undefined) return null;
   try {
-    const bytes = Uint8Array.from(atob(text.replace(/-/g, "+").replace(/_/g, "/")), (char) => char.charCodeAt(0));
-    return strFromU8(inflateSync(bytes));
+    return unpack(fromAddress(text));
   } catch {
     return "";
   }
