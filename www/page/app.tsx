@@ -1,11 +1,13 @@
 /** The page: a bar, what must be seen at a glance, the axis with its lanes and points, and the rooms beside it. */
 import type { JSX } from "preact";
 import { DataTable } from "./data/table";
+import { HandOver } from "./hand-over/hand-over";
 import { Bar } from "./header/bar";
 import { Strip } from "./header/strip";
 import { Stripe } from "./header/stripe";
 import { Lanes } from "./lanes/lanes";
 import { Rooms } from "./rooms/rooms";
+import { broken } from "./state/answers";
 import { opened } from "./state/sheet";
 
 /** Everything that is seen once a sheet is open. */
@@ -14,7 +16,7 @@ export function App(): JSX.Element {
     return (
       <main class="starting">
         <p class="brand">Widthwise</p>
-        <p role="status">Starting…</p>
+        <p role="status">{broken.value || "Starting…"}</p>
       </main>
     );
   }
@@ -33,6 +35,7 @@ export function App(): JSX.Element {
         </div>
         <Rooms />
       </main>
+      <HandOver />
     </>
   );
 }

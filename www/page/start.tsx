@@ -2,9 +2,9 @@
 import { render } from "preact";
 import { App } from "./app";
 import { examples } from "./examples";
+import { broken } from "./state/answers";
 import { openText, sheetInLink } from "./state/files";
 import { keepTime } from "./state/health";
-import { broken } from "./state/answers";
 import { keepKeys } from "./state/keys";
 import { keepPrefs } from "./state/prefs";
 import { keepSavedWords, savedAt } from "./state/saved";
@@ -16,22 +16,33 @@ import { work, type Bridge } from "./state/work";
 export async function start(root: HTMLElement, bridge: Promise<Bridge>): Promise<void> {
   keepPrefs();
   render(<App />, root);
-  const [newest, engine] = await Promise.all([openStore(), bridge]);
-  work(engine);
-  const linked = sheetInLink(location.hash);
-  const wrong =
-    linked !== null
-      ? await openText(linked, "")
-      : newest !== null
-        ? await openText(newest.text, "")
-        : await openText(examples[0]?.text ?? "", "");
-  if (wrong !== "") {
-    await openText(examples[0]?.text ?? "", "");
-    broken.value = `what was to be opened could not be: ${wrong}`;
-  } else if (linked === null && newest !== null) savedAt.value = newest.at;
+  try {
+    const [newest, engine] = await Promise.all([openStore(), bridge]);
+    work(engine);
+    await openFirst(newest?.text ?? null, newest?.at ?? 0);
+  } catch (reason) {
+    broken.value = `This browser does not start the calculation: ${reason instanceof Error ? reason.message : String(reason)}`;
+    return;
+  }
   keepSaving();
   keepTime();
   keepSavedWords();
   keepKeys();
   await loadTables();
+}
+
+/** The sheet in the link, else the newest saved one, else the invented example; what cannot be read is said. */
+async function openFirst(saved: string | null, at: number): Promise<void> {
+  const example = examples[0]?.text ?? "";
+  let wrong = "";
+  try {
+    const linked = sheetInLink(location.hash);
+    wrong = await openText(linked ?? saved ?? example, "");
+    if (wrong === "" && linked === null && saved !== null) savedAt.value = at;
+  } catch (reason) {
+    wrong = reason instanceof Error ? reason.message : String(reason);
+  }
+  if (wrong === "") return;
+  await openText(saved !== null && location.hash !== "" ? saved : example, "");
+  broken.value = `What was to be opened first could not be read: ${wrong}`;
 }

@@ -11,16 +11,16 @@ export interface ColumnView {
   width: number;
 }
 
-const COLUMNS: readonly (ColumnView & { always?: boolean })[] = [
+const COLUMNS: readonly (ColumnView & { always?: boolean; rare?: boolean })[] = [
   { field: "id", title: "Point", number: false, width: 4, always: true },
   { field: "group", title: "Fill", number: false, width: 6 },
-  { field: "setting", title: "Dial", number: true, width: 11 },
+  { field: "setting", always: true, title: "Dial", number: true, width: 11 },
   { field: "w", title: "W", number: true, width: 11 },
   { field: "w_error", title: "Error of W", number: true, width: 7 },
   { field: "sigma_w", title: "σ of W", number: true, width: 8 },
   { field: "luminosity", title: "Luminosity", number: true, width: 10 },
-  { field: "luminosity_error", title: "its error", number: true, width: 9 },
-  { field: "live_time", title: "Live time", number: true, width: 5 },
+  { field: "luminosity_error", rare: true, title: "its error", number: true, width: 9 },
+  { field: "live_time", rare: true, title: "Live time", number: true, width: 5 },
   { field: "live_fraction", title: "Live", number: true, width: 7 },
   { field: "efficiency", title: "Efficiency", number: true, width: 8 },
   { field: "efficiency_error", title: "its error", number: true, width: 7 },
@@ -30,17 +30,17 @@ const COLUMNS: readonly (ColumnView & { always?: boolean })[] = [
   { field: "cross_section", title: "Cross section", number: true, width: 12 },
   { field: "cross_section_error", title: "its error", number: true, width: 10 },
   { field: "channel", title: "Channel", number: false, width: 9 },
-  { field: "start", title: "Start", number: false, width: 24 },
-  { field: "stop", title: "Stop", number: false, width: 24 },
+  { field: "start", rare: true, title: "Start", number: false, width: 24 },
+  { field: "stop", rare: true, title: "Stop", number: false, width: 24 },
   { field: "comment", title: "Comment", number: false, width: 18, always: true },
 ];
 
-/** The columns that a table of these rows shows. */
-export function columnsOf(rows: readonly Row[]): ColumnView[] {
+/** The columns that a table of these rows shows; with `all` also those that are used but seldom looked at. */
+export function columnsOf(rows: readonly Row[], all: boolean): ColumnView[] {
   const used = new Set<string>();
   for (const row of rows) for (const [key, value] of Object.entries(row)) if (value !== "" && value !== null) used.add(key);
-  const measured = used.has("cross_section") ? "cross_section" : "counts";
-  const placed = used.has("w") ? "w" : "setting";
-  const needed = new Set<string>([measured, placed, ...(measured === "counts" ? ["luminosity"] : ["cross_section_error"])]);
-  return COLUMNS.filter((column) => column.always === true || needed.has(column.field) || used.has(column.field));
+  const measured = used.has("cross_section") ? ["cross_section", "cross_section_error"] : ["counts", "luminosity"];
+  return COLUMNS.filter(
+    (column) => column.always === true || measured.includes(column.field) || (used.has(column.field) && (all || column.rare !== true)),
+  );
 }

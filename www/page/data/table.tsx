@@ -3,8 +3,10 @@ import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { Icon } from "../parts/icon";
+import { Switch } from "../parts/field";
 import * as answers from "../state/answers";
 import { addRow, columnUnit } from "../state/rows";
+import { allColumns } from "../state/prefs";
 import { sheet } from "../state/sheet";
 import { columnsOf } from "./columns";
 import { PasteDialog } from "./paste";
@@ -24,7 +26,7 @@ export function DataTable(): JSX.Element {
   const seen = useSignal(600);
   const pasting = useSignal(false);
   const rows = sheet.value.data.rows;
-  const columns = columnsOf(rows);
+  const columns = columnsOf(rows, allColumns.value);
   const byId = new Map(answers.points.value.map((point) => [point.id, point]));
   const windowed = rows.length > ALL;
   const first = windowed ? Math.max(0, Math.floor(top.value / ROW_PX) - SPARE) : 0;
@@ -39,6 +41,7 @@ export function DataTable(): JSX.Element {
       <div class="section-head">
         <h2 id="points-title">Points</h2>
         <div class="actions">
+          <Switch label="All columns" on={allColumns.value} onChange={(on) => (allColumns.value = on)} />
           <button type="button" class="button" onClick={() => (pasting.value = true)}>
             <Icon name="table" /> Paste or load
           </button>

@@ -74,7 +74,9 @@ function Running(): JSX.Element {
   return (
     <Cell name={`Running, ${here.id}`} kind={needsAttention.value.some((note) => note.code === "p-value") ? "cell-warn" : ""}>
       <p class="figure">
-        {here.seen === null ? "–" : count(here.seen)}
+        <button type="button" class="why" aria-label={`Enter counts and luminosity of ${here.id}`} onClick={goToEntry}>
+          {here.seen === null ? "–" : count(here.seen)}
+        </button>
         <span class="beside"> seen</span>
       </p>
       <p class="note">
@@ -92,6 +94,17 @@ function Running(): JSX.Element {
       </p>
     </Cell>
   );
+}
+
+/** One tap from the strip to the two numbers. */
+function goToEntry(): void {
+  room.value = "shift";
+  requestAnimationFrame(() => {
+    const field = document.querySelector<HTMLInputElement>(".entry input[name=n]");
+    field?.focus();
+    field?.select();
+    field?.scrollIntoView({ block: "center" });
+  });
 }
 
 function timeLeft(id: string, done: number): string {

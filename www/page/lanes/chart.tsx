@@ -94,10 +94,10 @@ function data(drawing: Drawing): uPlot.AlignedData {
 
 function options(width: number, height: number, labelled: boolean, now: () => Drawing | null): uPlot.Options {
   const axis = {
-    stroke: () => ink("--ink-2"),
-    grid: { stroke: () => ink("--c-grid"), width: 1 },
-    ticks: { stroke: () => ink("--edge"), width: 1, size: 4 },
-    border: { show: true, stroke: () => ink("--edge"), width: 1 },
+    stroke: (plot: uPlot) => ink("--ink-2", plot.root),
+    grid: { stroke: (plot: uPlot) => ink("--c-grid", plot.root), width: 1 },
+    ticks: { stroke: (plot: uPlot) => ink("--edge", plot.root), width: 1, size: 4 },
+    border: { show: true, stroke: (plot: uPlot) => ink("--edge", plot.root), width: 1 },
     font: plotFont(),
   };
   return {
@@ -119,12 +119,12 @@ function options(width: number, height: number, labelled: boolean, now: () => Dr
         ticks: { ...axis.ticks, show: labelled },
         values: (_plot, splits) => (labelled ? tickTexts(splits, view.peek()) : splits.map(() => "")),
       },
-      { ...axis, size: GUTTER, gap: 4, space: 30, values: (_plot, splits) => splits.map(plain) },
+      { ...axis, size: GUTTER, gap: 4, space: height > 350 ? 48 : 30, values: (_plot, splits) => splits.map(plain) },
     ],
     series: [
       {},
       ...(now()?.traces ?? []).map((trace) => ({
-        stroke: () => ink(trace.colour),
+        stroke: (plot: uPlot) => ink(trace.colour, plot.root),
         width: trace.width,
         dash: trace.dash,
         points: { show: false },

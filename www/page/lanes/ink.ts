@@ -1,11 +1,8 @@
 /** Colours from the style sheet, read when drawing so that a change of theme is followed. */
 
-let style: CSSStyleDeclaration | null = null;
-
-/** The value of a custom property, e.g. `--ink`. */
-export function ink(name: string): string {
-  style ??= getComputedStyle(document.documentElement);
-  return style.getPropertyValue(name).trim();
+/** The value of a custom property, e.g. `--ink`, where an element stands (paper in the hand-over is always light). */
+export function ink(name: string, where: Element = document.documentElement): string {
+  return getComputedStyle(where).getPropertyValue(name).trim();
 }
 
 /** Font of plot labels: the page's own at a fixed small size. */

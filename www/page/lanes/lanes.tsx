@@ -1,13 +1,14 @@
 /** Stacked lanes over the one energy axis, with one cursor through all of them. */
 import type { JSX } from "preact";
 import { useLayoutEffect, useRef } from "preact/hooks";
-import { useSignal } from "@preact/signals";
+import { signal, useSignal } from "@preact/signals";
 import { axisScale } from "../format/number";
 import { Icon } from "../parts/icon";
 import { lanes, traces } from "../state/prefs";
 import { atCursor, points } from "../state/answers";
 import { cursor, isZoomed, showAll, slide, view, zoomAt } from "../state/view";
 import { GUTTER, MARGIN, shareOf } from "./axis";
+import { AsTable } from "./as-table";
 import { drawBeamTime } from "./beam-time";
 import { Chart, type Drawing } from "./chart";
 import { drawLineShape } from "./line-shape";
@@ -20,16 +21,20 @@ interface Lane {
   id: string;
   title: string;
   unit: string;
-  height: number;
+  /** Height, CSS pixels, on a window of this height. */
+  height: (window: number) => number;
   draw: () => Drawing;
 }
 
 /** The lanes there are, top to bottom. A new lane is one entry here. */
 const LANES: readonly Lane[] = [
-  { id: "line-shape", title: "Cross section", unit: "nb", height: 310, draw: drawLineShape },
-  { id: "pulls", title: "Residuals", unit: "errors", height: 112, draw: drawPulls },
-  { id: "beam-time", title: "Beam time", unit: "h", height: 96, draw: drawBeamTime },
+  { id: "line-shape", title: "Cross section", unit: "nb", height: (window) => Math.round(Math.max(240, Math.min(620, innerWidth < 700 ? 260 : window * 0.38))), draw: drawLineShape },
+  { id: "pulls", title: "Residuals", unit: "errors", height: (window) => (window > 1000 ? 140 : 112), draw: drawPulls },
+  { id: "beam-time", title: "Beam time", unit: "h", height: (window) => (window > 1000 ? 120 : 96), draw: drawBeamTime },
 ];
+
+const tall = signal(innerHeight);
+addEventListener("resize", () => (tall.value = innerHeight));
 
 /** The lanes with their controls. */
 export function Lanes(): JSX.Element {
@@ -70,7 +75,10 @@ export function Lanes(): JSX.Element {
         </p>
         <Outside side="right" />
       </div>
-      <LaneChoice />
+      <div class="lanes-foot">
+        <LaneChoice />
+        <AsTable />
+      </div>
     </section>
   );
 }
@@ -95,7 +103,7 @@ function LaneView({ lane, last }: { lane: Lane; last: boolean }): JSX.Element {
         {lane.title} <span class="quiet">({lane.unit})</span>
         {lane.id === "line-shape" && traces.value["observed"] === false && <span class="quiet"> · observed hidden</span>}
       </figcaption>
-      <Chart height={lane.height + (last ? 26 : 0)} labelled={last} draw={lane.draw} />
+      <Chart height={lane.height(tall.value) + (last ? 26 : 0)} labelled={last} draw={lane.draw} />
     </figure>
   );
 }

@@ -28,9 +28,9 @@ export function drawMarks(plot: uPlot, marks: readonly Mark[]): void {
   for (const mark of marks) {
     const x = plot.valToPos(mark.x, "x", true);
     if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
-    const colour = ink(mark.kind === "out" ? "--c-off" : "--c-data");
+    const colour = ink(mark.kind === "out" ? "--c-off" : "--c-data", plot.root);
     ctx.strokeStyle = colour;
-    ctx.fillStyle = mark.kind === "out" ? ink("--paper") : colour;
+    ctx.fillStyle = mark.kind === "out" ? ink("--paper", plot.root) : colour;
     const y = plot.valToPos(mark.y, "y", true);
     ctx.beginPath();
     ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
@@ -67,10 +67,10 @@ export function drawBars(plot: uPlot, bars: readonly { x: number; y: number; sol
     const top = plot.valToPos(bar.base + bar.y, "y", true);
     const bottom = plot.valToPos(bar.base, "y", true);
     if (bar.solid) {
-      ctx.fillStyle = ink("--c-observed");
+      ctx.fillStyle = ink("--c-observed", plot.root);
       ctx.fillRect(x - half, top, 2 * half, bottom - top);
     } else {
-      ctx.strokeStyle = ink("--c-radiated");
+      ctx.strokeStyle = ink("--c-radiated", plot.root);
       ctx.lineWidth = 1.25 * ratio;
       ctx.strokeRect(x - half, top, 2 * half, bottom - top);
       ctx.beginPath();
@@ -89,7 +89,7 @@ export function drawBand(plot: uPlot, low: number, high: number, colour: string)
   const top = plot.valToPos(high, "y", true);
   const bottom = plot.valToPos(low, "y", true);
   plot.ctx.save();
-  plot.ctx.fillStyle = ink(colour);
+  plot.ctx.fillStyle = ink(colour, plot.root);
   plot.ctx.fillRect(plot.bbox.left, top, plot.bbox.width, bottom - top);
   plot.ctx.restore();
 }

@@ -6,9 +6,11 @@ import { ShowCodes } from "../carry/show";
 import { ago } from "../format/number";
 import { examples } from "../examples";
 import { picture } from "../lanes/picture";
+import { handOver } from "../hand-over/hand-over";
 import { Icon } from "../parts/icon";
 import { copy, download, fileName, linkOf, openText, saveSheet, tableText } from "../state/files";
-import { setField, sheet } from "../state/sheet";
+import { blankSheet } from "../state/blank";
+import { open, setField, sheet } from "../state/sheet";
 import { versions } from "../state/store";
 import type { Table } from "../state/types";
 
@@ -62,6 +64,16 @@ export function SheetRoom(): JSX.Element {
           <button type="button" class="button" onClick={() => void toClipboard(linkOf(sheet.peek()), "Link")}>
             <Icon name="copy" /> Copy a link with this sheet in it
           </button>
+          <button
+            type="button"
+            class="button"
+            onClick={() => {
+              open(blankSheet(), "new sheet");
+              told.value = "A new, empty sheet. Undo brings the one before it back.";
+            }}
+          >
+            <Icon name="plus" /> New sheet
+          </button>
         </div>
       </fieldset>
       <fieldset>
@@ -87,8 +99,8 @@ export function SheetRoom(): JSX.Element {
           <button type="button" class="button" onClick={() => void tableText("log").then((content) => toClipboard(content, "Log text"), (reason: unknown) => (told.value = String(reason)))}>
             <Icon name="copy" /> Copy log text
           </button>
-          <button type="button" class="button" onClick={() => print()}>
-            <Icon name="print" /> Print the hand-over
+          <button type="button" class="button" onClick={() => (handOver.value = true)}>
+            <Icon name="print" /> Hand-over page
           </button>
         </div>
       </fieldset>

@@ -10,6 +10,7 @@ import { planned } from "../state/plan";
 import { room } from "../state/prefs";
 import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
 import { sheet } from "../state/sheet";
+import { FirstSteps } from "./first-steps";
 import type { Row } from "../state/types";
 
 /** The room. */
@@ -18,6 +19,7 @@ export function ShiftRoom(): JSX.Element {
   const row = sheet.value.data.rows[index];
   return (
     <>
+      <FirstSteps />
       {row === undefined ? <StartForm /> : <RunningForm key={row.id} row={row} index={index} />}
       <NextStop />
     </>

@@ -52,15 +52,10 @@ export function linkOf(now: Sheet): string {
   return `${location.href.split("#")[0]}#sheet=${toAddress(pack(JSON.stringify(now)))}`;
 }
 
-/** Text of the sheet in an address's fragment; "" if it cannot be read, `null` if there is none. */
+/** Text of the sheet in the page's own address, or `null` if there is none. Throws Unreadable. */
 export function sheetInLink(hash: string): string | null {
   const text = /^#sheet=(.+)$/.exec(hash)?.[1];
-  if (text === undefined) return null;
-  try {
-    return unpack(fromAddress(text));
-  } catch {
-    return "";
-  }
+  return text === undefined ? null : unpack(fromAddress(text));
 }
 
 /** Puts text on the clipboard; `false` where the browser does not allow it. */

@@ -43,7 +43,7 @@ export const needsAttention = computed<Note[]>(() => {
   if (answers.broken.value !== "") {
     notes.push({
       code: "engine",
-      message: `The calculation broke down and was started again: ${answers.broken.value}. Nothing typed is lost.`,
+      message: answers.broken.value,
     });
   }
   if (saveTrouble.value !== "") notes.push({ code: "saving", message: saveTrouble.value });

@@ -10,9 +10,10 @@ const KEY = "widthwise.prefs.1";
 
 interface Prefs {
   theme: Theme;
-  room: Room;
   lanes: Record<string, boolean>;
   traces: Record<string, boolean>;
+  allColumns: boolean;
+  guided: boolean;
 }
 
 function stored(): Partial<Prefs> {
@@ -31,6 +32,10 @@ export const theme = signal<Theme>(
   first.theme === "light" || first.theme === "dark" || first.theme === "dim" ? first.theme : "",
 );
 export const room = signal<Room>("shift");
+/** Whether the first steps are shown. */
+export const guided = signal(first.guided !== false);
+/** Whether the table shows every column in use. */
+export const allColumns = signal(first.allColumns === true);
 /** Lanes that are shown, by id; absent = the lane's own default. */
 export const lanes = signal<Record<string, boolean>>(flags(first.lanes));
 /** Traces of the line-shape lane that are shown. */
@@ -53,7 +58,13 @@ export function keepPrefs(): () => void {
     const root = document.documentElement;
     if (theme.value === "") root.removeAttribute("data-theme");
     else root.setAttribute("data-theme", theme.value);
-    const prefs: Prefs = { theme: theme.value, room: room.value, lanes: lanes.value, traces: traces.value };
+    const prefs: Prefs = {
+      theme: theme.value,
+      lanes: lanes.value,
+      traces: traces.value,
+      allColumns: allColumns.value,
+      guided: guided.value,
+    };
     try {
       localStorage.setItem(KEY, JSON.stringify(prefs));
     } catch {

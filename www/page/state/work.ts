@@ -33,7 +33,10 @@ export function work(on: Bridge): () => void {
   const live = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["curve", "cursor", "check", "points"]);
   const failed = (reason: unknown): void => {
     if (reason instanceof Refused) return;
-    answers.broken.value = reason instanceof Trapped ? reason.message : String(reason);
+    answers.broken.value =
+      reason instanceof Trapped
+        ? `The calculation broke down and was started again (${reason.message}). Nothing typed is lost.`
+        : String(reason);
   };
 
   const stops = [

@@ -1,0 +1,43 @@
+/** The way through the job for somebody who has never seen the page: each step opens its room. */
+import type { JSX } from "preact";
+import { guided, room, type Room } from "../state/prefs";
+
+const STEPS: readonly (readonly [Room, string, string])[] = [
+  ["beam", "Beam", "who meets whom, what the dial shows, spread"],
+  ["model", "Model", "mass, width and strength that you believe in; drag them and watch the curve"],
+  ["detection", "Detection", "efficiency and background, so that counts can be expected"],
+  ["plan", "Plan", "where to stand, and for how long"],
+  ["shift", "Shift", "start a point; enter counts and luminosity as they come"],
+  ["fit", "Fit", "mass and width with their errors, after every point by itself"],
+  ["sheet", "Sheet", "the hand-over page, the file, the log text"],
+];
+
+/** The list, until it is put away. */
+export function FirstSteps(): JSX.Element | null {
+  if (!guided.value) return null;
+  return (
+    <section class="first-steps" aria-labelledby="first-steps">
+      <h3 id="first-steps">From an idea to a peak</h3>
+      <ol>
+        {STEPS.map(([key, name, what]) => (
+          <li key={key}>
+            <button type="button" class="link" onClick={() => (room.value = key)}>
+              {name}
+            </button>
+            <span class="note"> {what}</span>
+          </li>
+        ))}
+      </ol>
+      <p class="note">
+        What you see is invented and finished. Change anything: undo takes it back. A new sheet is in{" "}
+        <button type="button" class="link" onClick={() => (room.value = "sheet")}>
+          Sheet
+        </button>
+        .
+      </p>
+      <button type="button" class="button" onClick={() => (guided.value = false)}>
+        Put this away
+      </button>
+    </section>
+  );
+}
