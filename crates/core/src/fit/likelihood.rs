@@ -64,6 +64,8 @@ pub struct Likelihood {
     first_steps: Vec<f64>,
     second_steps: Vec<f64>,
     last: Option<(Vec<f64>, Rc<Derivatives>)>,
+    /// Kept until the steps change: the common start of pseudo-experiments.
+    pinned: Option<(Vec<f64>, Rc<Derivatives>)>,
     /// Batches of curve evaluations so far.
     pub batches: u32,
 }
@@ -151,6 +153,7 @@ impl Likelihood {
             first_steps: scales.iter().map(|s| 0.05 * s).collect(),
             second_steps: scales.iter().map(|s| 0.5 * s).collect(),
             last: None,
+            pinned: None,
             batches: 0,
         }
     }
@@ -203,6 +206,16 @@ impl Likelihood {
             }
         }
         self.last = None;
+        self.pinned = None;
+    }
+
+    /// Keeps what is known of the curve at `x` for fits that start there.
+    ///
+    /// # Errors
+    /// The model's refusal there.
+    pub fn pin(&mut self, x: &[f64]) -> Answer<()> {
+        self.pinned = Some((x.to_vec(), self.derivatives(x, false)?));
+        Ok(())
     }
 
     fn factor(&self, sum: f64) -> f64 {
@@ -254,11 +267,12 @@ impl Likelihood {
     }
 
     fn derivatives(&mut self, x: &[f64], second: bool) -> Answer<Rc<Derivatives>> {
-        if !second
-            && let Some((at, known)) = &self.last
-            && at == x
-        {
-            return Ok(Rc::clone(known));
+        if !second {
+            for (at, known) in [&self.last, &self.pinned].into_iter().flatten() {
+                if at == x {
+                    return Ok(Rc::clone(known));
+                }
+            }
         }
         self.batches += 1;
         let k = self.problem.model.parameters().len();

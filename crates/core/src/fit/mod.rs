@@ -3,6 +3,7 @@
 //! [`fit`] is the door: a scan and what is to be free in, a [`FitResult`] out. [`Fitter`] is the
 //! same in steps, for what goes on from a minimum (profiles, contours, trials).
 
+mod contour;
 mod covariance;
 mod curve;
 mod derivatives;
@@ -10,6 +11,7 @@ mod fitter;
 mod likelihood;
 mod nuisance;
 mod problem;
+mod profile;
 mod result;
 mod scan_curve;
 mod settings;
@@ -19,6 +21,7 @@ mod warnings;
 #[cfg(test)]
 pub(crate) mod stand_in;
 
+pub use contour::{Contour, PAIR_RISE_ONE, PAIR_RISE_TWO};
 pub use covariance::Covariance;
 pub use curve::{Curve, CurveModel, CurveParameter, Probe, Site};
 pub use derivatives::{Derivatives, Need, differentiate, pair};
@@ -28,6 +31,7 @@ pub use nuisance::{Effect, Nuisance, NuisanceKind, nuisances};
 pub use problem::{
     BACKGROUND_CROSS_SECTION, BACKGROUND_RATE, Coordinate, CoordinateInfo, Datum, Kind, Problem,
 };
+pub use profile::{End, Interval, ProfilePlace, RISE_ONE, RISE_TWO};
 pub use result::{FitResult, FittedNuisance, FittedPoint, FittedValue};
 pub use scan_curve::{SPREAD, ScanCurve};
 pub use settings::{Constraint, FitSettings};

@@ -110,6 +110,17 @@ impl Default for Tolerance {
     }
 }
 
+impl Tolerance {
+    /// 1e-6 in 2 NLL, 1e-3 of an error: far below what trials can resolve.
+    #[must_use]
+    pub fn trials() -> Self {
+        Self {
+            distance: 1e-6,
+            iterations: 200,
+        }
+    }
+}
+
 /// Minimises from `start` (moved into the bounds first).
 ///
 /// # Errors

@@ -1,1 +1,0 @@
-//! Pseudo-experiments: seeded, order-independent.
