@@ -85,8 +85,11 @@ impl Fitter {
             // Cholesky factor of the pair's covariance turns the circle into the ellipse.
             let u = a * cos(angle);
             let v = b * (rho * cos(angle) + (1.0 - rho * rho).sqrt() * sin(angle));
-            let largest = radius_to_bounds(minimum.x[i], u, bounds[0])
-                .min(radius_to_bounds(minimum.x[k], v, bounds[1]));
+            let largest = radius_to_bounds(minimum.x[i], u, bounds[0]).min(radius_to_bounds(
+                minimum.x[k],
+                v,
+                bounds[1],
+            ));
             let target = rise.sqrt();
             let (mut inner, mut inner_t) = (0.0, 0.0);
             let mut outer: Option<(f64, f64)> = None;

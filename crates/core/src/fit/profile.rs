@@ -148,7 +148,11 @@ impl Fitter {
         let best = minimum.expansion.value;
         let centre = minimum.x[i];
         let info = &self.problem().coordinates[i];
-        let limit = if sign < 0.0 { info.bounds.0 } else { info.bounds.1 };
+        let limit = if sign < 0.0 {
+            info.bounds.0
+        } else {
+            info.bounds.1
+        };
         let fallback = if info.scale.is_finite() {
             info.scale
         } else {
@@ -362,7 +366,12 @@ mod tests {
     fn intervals_against_a_grid() {
         for seed in 0..20 {
             let mut stream = Stream::new(seed, 0);
-            let truth = [3.0, 1e-3 * (0.6 + stream.uniform()), 30.0 + 60.0 * stream.uniform(), 4.0];
+            let truth = [
+                3.0,
+                1e-3 * (0.6 + stream.uniform()),
+                30.0 + 60.0 * stream.uniform(),
+                4.0,
+            ];
             let w: Vec<f64> = (0..9).map(|i| 2.998 + 0.5e-3 * f64::from(i)).collect();
             let counts: Vec<f64> = w
                 .iter()

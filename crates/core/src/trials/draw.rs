@@ -2,7 +2,9 @@
 
 use super::{TrialRow, TrialSettings};
 use crate::error::Answer;
-use crate::fit::{Coordinate, Covariance, CurveModel, FitSettings, Fitter, Kind, profiled_background};
+use crate::fit::{
+    Coordinate, Covariance, CurveModel, FitSettings, Fitter, Kind, profiled_background,
+};
 use crate::numerics::minimise::{Minimum, Tolerance, minimise};
 use crate::numerics::random::Stream;
 use crate::scan::Scan;
@@ -130,7 +132,12 @@ impl Ensemble {
             .iter()
             .map(|&(value, error)| value + error * stream.normal())
             .collect();
-        let (mu, errors) = if shifted || self.kinds.iter().any(|k| matches!(k, Kind::CrossSection { .. })) {
+        let (mu, errors) = if shifted
+            || self
+                .kinds
+                .iter()
+                .any(|k| matches!(k, Kind::CrossSection { .. }))
+        {
             let p = self.fitter.likelihood().predict(&x)?;
             (p.mu, p.error_nb)
         } else {

@@ -95,7 +95,10 @@ pub fn summarise(rows: &[TrialRow], ids: &[String], truth: &[f64]) -> Summary {
 }
 
 fn one(rows: &[&TrialRow], i: usize, id: &str, truth: f64) -> ParameterSummary {
-    let values: Vec<f64> = rows.iter().filter_map(|r| r.values.get(i).copied()).collect();
+    let values: Vec<f64> = rows
+        .iter()
+        .filter_map(|r| r.values.get(i).copied())
+        .collect();
     let (mean, spread) = moments(&values);
     let pairs: Vec<(f64, f64)> = rows
         .iter()
@@ -200,10 +203,19 @@ mod tests {
         for p in &summary.parameters {
             let f = p.profile[0].fraction;
             assert!(f > 0.66 && f < 0.71, "{}: {f}", p.id);
-            assert!((p.pull_width - 1.0).abs() < 0.05, "{}: {}", p.id, p.pull_width);
+            assert!(
+                (p.pull_width - 1.0).abs() < 0.05,
+                "{}: {}",
+                p.id,
+                p.pull_width
+            );
         }
         // Four parameters from nine counts: five degrees of freedom.
-        assert!((summary.mean_statistic - 5.0).abs() < 0.2, "{}", summary.mean_statistic);
+        assert!(
+            (summary.mean_statistic - 5.0).abs() < 0.2,
+            "{}",
+            summary.mean_statistic
+        );
     }
 
     #[test]
