@@ -29,9 +29,9 @@ export function ReadCodes(): JSX.Element {
     got.value = null;
   };
   const take = async (code: string): Promise<void> => {
-    const linked = code.includes("#sheet=") ? sheetInLink(code.slice(code.indexOf("#"))) : null;
-    if (linked) return open(linked);
     try {
+      const linked = code.includes("#sheet=") ? sheetInLink(code.slice(code.indexOf("#"))) : null;
+      if (linked !== null) return await open(linked);
       const next = collect(got.value, code);
       got.value = next;
       const open_ = missing(next);
