@@ -25,7 +25,7 @@ export function Strip(): JSX.Element {
 function Cell(props: { name: string; children: preact.ComponentChildren; kind?: string }): JSX.Element {
   return (
     <div class={`cell ${props.kind ?? ""}`}>
-      <h3>{props.name}</h3>
+      <h2>{props.name}</h2>
       {props.children}
     </div>
   );
@@ -74,8 +74,9 @@ function Running(): JSX.Element {
   return (
     <Cell name={`Running, ${here.id}`} kind={needsAttention.value.some((note) => note.code === "p-value") ? "cell-warn" : ""}>
       <p class="figure">
-        <button type="button" class="why" aria-label={`Enter counts and luminosity of ${here.id}`} onClick={goToEntry}>
+        <button type="button" class="why" onClick={goToEntry}>
           {here.seen === null ? "–" : count(here.seen)}
+          <span class="unseen">, enter counts and luminosity</span>
         </button>
         <span class="beside"> seen</span>
       </p>
@@ -128,7 +129,7 @@ function Results(): JSX.Element {
   const shown = fit.parameters.slice(0, 3);
   return (
     <div class="cell cell-results" aria-busy={answers.fitting.value}>
-      <h3 class="unseen">Results</h3>
+      <h2 class="unseen">Results</h2>
       <dl>
         {shown.map((parameter) => {
           const text = withError(parameter.value, parameter.error, { unit: parameter.unit, per: 1 });
@@ -140,8 +141,9 @@ function Results(): JSX.Element {
                 <Sym text={parameter.symbol} />
               </dt>
               <dd>
-                <button type="button" class="why" aria-label={`${parameter.name}: where this comes from`} onClick={() => (room.value = "fit")}>
+                <button type="button" class="why" onClick={() => (room.value = "fit")}>
                   <span class="figure">{text.value}</span>
+                  <span class="unseen">, {parameter.name}: open the fit</span>
                 </button>
                 <span class="unit"> {parameter.unit}</span>
                 <p class="note">

@@ -1,7 +1,13 @@
 /** Everything at the cursor, in one row that never moves: W, the number to dial, cross sections, rate. */
-import type { JSX } from "preact";
+import type { ComponentChildren, JSX } from "preact";
 import { axisScale, digits, fixed } from "../format/number";
-import { atCursor } from "../state/answers";
+import { assumptionsOf } from "../hand-over/assumptions";
+import { BEHIND } from "../parts/formulas";
+import { Quantity, units } from "../parts/quantity";
+import { Why } from "../parts/why";
+import { WhyList } from "../parts/why-list";
+import { atCursor, curve } from "../state/answers";
+import { sheet } from "../state/sheet";
 import { cursor, view } from "../state/view";
 
 /** The row. */
@@ -10,16 +16,24 @@ export function ReadOut(): JSX.Element {
   return (
     <dl class="read-out" data-resting={cursor.value === null}>
       {here === null ? (
-        <div>
-          <dt>Cursor</dt>
-          <dd class="quiet">point at the plot</dd>
-        </div>
+        <Item name="Cursor">
+          <span class="quiet">point at the plot</span>
+        </Item>
       ) : (
         <>
-          <Item name={<span class="sym">W</span>} value={energy(here.w)} unit={axisScale(here.w, here.w).unit} strong />
-          <Item name="to dial" value={here.dial} unit="" strong />
+          <Item name={<span class="sym">W</span>} strong>
+            {energy(here.w)} <span class="unit">{axisScale(here.w, here.w).unit}</span>
+          </Item>
+          <Item name="to dial" strong>
+            <Quantity text={here.dial} />
+          </Item>
           {here.values.map((entry) => (
-            <Item key={entry.name} name={entry.name} value={digits(entry.value)} unit={entry.unit} />
+            <Item key={entry.name} name={entry.name}>
+              <Explained name={entry.name} at={here.w}>
+                {digits(entry.value)}
+              </Explained>{" "}
+              <span class="unit">{units(entry.unit)}</span>
+            </Item>
           ))}
         </>
       )}
@@ -27,15 +41,28 @@ export function ReadOut(): JSX.Element {
   );
 }
 
-function Item(props: { name: string | JSX.Element; value: string; unit: string; strong?: boolean }): JSX.Element {
+function Item(props: { name: ComponentChildren; children: ComponentChildren; strong?: boolean }): JSX.Element {
   return (
     <div class={props.strong ? "strong" : ""}>
       <dt>{props.name}</dt>
-      <dd>
-        {props.value}
-        {props.unit && <span class="unit"> {props.unit}</span>}
-      </dd>
+      <dd>{props.children}</dd>
     </div>
+  );
+}
+
+/** A number with its formula behind it, where there is one. */
+function Explained(props: { name: string; at: number; children: ComponentChildren }): JSX.Element {
+  const behind = BEHIND[props.name.toLowerCase()];
+  if (behind === undefined) return <>{props.children}</>;
+  const { unit, per } = axisScale(props.at, props.at);
+  return (
+    <Why title={`${props.name} at W = ${fixed(props.at / per, 3)} ${unit}`} value={props.children}>
+      <WhyList
+        behind={behind}
+        inputs={assumptionsOf(sheet.value)}
+        accuracy={digits(curve.value?.accuracy ?? Number.NaN, 1)}
+      />
+    </Why>
   );
 }
 
