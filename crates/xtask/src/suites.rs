@@ -1,0 +1,320 @@
+//! `cargo xtask test`: every check, all suites even after a failure, one sum at the end.
+
+use crate::build;
+use crate::fetch;
+use crate::shell::{self, Outcome, say};
+use crate::tally::Tally;
+use crate::tidy;
+use crate::wasm::Compiler;
+use std::path::{Path, PathBuf};
+use std::process::Command;
+use std::time::Instant;
+
+/// Crates whose tests also run on WebAssembly.
+const ON_WASM: [&str; 4] = [
+    "--package",
+    "widthwise-core",
+    "--package",
+    "widthwise-sheet",
+];
+
+/// Runs every check.
+pub fn test() -> Outcome {
+    let start = Instant::now();
+    let mut tally = Tally::default();
+    rules(&mut tally);
+    native(&mut tally);
+    generated(&mut tally);
+    on_wasm(&mut tally);
+    web(&mut tally);
+    references(&mut tally);
+    println!("took {} s", start.elapsed().as_secs());
+    finish(&tally)
+}
+
+/// The browser tests alone: in Chromium, or in all three engines.
+pub fn page(words: &[&str]) -> Outcome {
+    let engines = match words {
+        [] => "chromium",
+        ["--all"] => "chromium,firefox,webkit",
+        [one @ ("chromium" | "firefox" | "webkit")] => one,
+        _ => return Err("page knows --all, chromium, firefox and webkit".to_owned()),
+    };
+    let product = build::dist()?;
+    let mut tally = Tally::default();
+    let result = in_browsers(&product, engines, &[]);
+    record(&mut tally, "page in browsers", result);
+    finish(&tally)
+}
+
+fn finish(tally: &Tally) -> Outcome {
+    if !tally.trouble.is_empty() {
+        println!("failed: {}", tally.trouble.join(", "));
+    }
+    println!("{} passed, {} failed", tally.passed, tally.failed);
+    if tally.failed == 0 {
+        Ok(())
+    } else {
+        Err("some checks failed".to_owned())
+    }
+}
+
+fn record(tally: &mut Tally, suite: &str, result: Outcome<(bool, String)>) {
+    match result {
+        Ok((ended_well, printed)) => tally.add(suite, ended_well, &printed),
+        Err(message) => tally.check(suite, Err(message)),
+    }
+}
+
+/// The rules of the house, format and lints.
+fn rules(tally: &mut Tally) {
+    say("rules of the house");
+    for (name, outcome) in tidy::all() {
+        tally.check(name, outcome);
+    }
+    say("format");
+    tally.check(
+        "format (cargo fmt --all)",
+        shell::run(shell::cargo().args(["fmt", "--all", "--check"])),
+    );
+    say("lints");
+    let mut clippy = shell::cargo();
+    clippy.args([
+        "clippy",
+        "--quiet",
+        "--workspace",
+        "--all-targets",
+        "--all-features",
+        "--",
+        "-D",
+        "warnings",
+    ]);
+    tally.check("lints (cargo clippy)", shell::run(&mut clippy));
+}
+
+fn native(tally: &mut Tally) {
+    say("native tests");
+    let mut tests = shell::cargo();
+    let result = shell::run_kept(tests.args(["test", "--workspace", "--no-fail-fast"]));
+    record(tally, "native tests", result);
+}
+
+/// Files made from the Rust types must be what the Rust types make now.
+fn generated(tally: &mut Tally) {
+    say("generated TypeScript types");
+    let fresh = shell::target().join("types-check");
+    let kept = shell::root().join("www/shared/generated");
+    let outcome = build::types(&fresh).and_then(|()| same_files(&kept, &fresh));
+    tally.check(
+        "generated types are current",
+        outcome.map_err(|why| format!("{why}; run: cargo xtask types")),
+    );
+}
+
+fn same_files(kept: &Path, fresh: &Path) -> Outcome {
+    let names = |folder: &Path| -> Vec<PathBuf> {
+        let files = shell::files_below(folder);
+        files
+            .iter()
+            .filter_map(|file| file.strip_prefix(folder).ok().map(Path::to_path_buf))
+            .collect()
+    };
+    if names(kept) != names(fresh) {
+        return Err("the list of files has changed".to_owned());
+    }
+    let differ = |name: &&PathBuf| {
+        std::fs::read(kept.join(name)).ok() != std::fs::read(fresh.join(name)).ok()
+    };
+    let changed: Vec<String> = names(kept)
+        .iter()
+        .filter(differ)
+        .map(|name| name.display().to_string())
+        .collect();
+    if changed.is_empty() {
+        Ok(())
+    } else {
+        Err(format!("changed: {}", changed.join(", ")))
+    }
+}
+
+/// The same tests of core and sheet, built for WebAssembly and run by Node.js.
+fn on_wasm(tally: &mut Tally) {
+    say("the same tests of core and sheet on WebAssembly");
+    let result = Compiler::find().and_then(|compiler| {
+        let native = harnesses(
+            shell::cargo()
+                .args(["test", "--no-run", "--quiet", "--message-format=json"])
+                .args(ON_WASM),
+        )?;
+        let mut build = compiler.cargo()?;
+        // The property tests take their seeds from the runner; see tests/wasm/run.mjs.
+        build.env(
+            "RUSTFLAGS",
+            "--cfg getrandom_backend=\"custom\" -Clink-arg=--allow-undefined",
+        );
+        build
+            .args([
+                "test",
+                "--no-run",
+                "--quiet",
+                "--message-format=json",
+                "--target",
+                "wasm32-unknown-unknown",
+            ])
+            .args(ON_WASM);
+        Ok((native, harnesses(&mut build)?))
+    });
+    let (native, wasm) = match result {
+        Ok(both) => both,
+        Err(message) => return tally.check("tests on WebAssembly", Err(message)),
+    };
+    if native.len() != wasm.len() {
+        let message = format!(
+            "{} native test programs, but {} for WebAssembly",
+            native.len(),
+            wasm.len()
+        );
+        return tally.check("tests on WebAssembly", Err(message));
+    }
+    for ((source, program), (_, module)) in native.iter().zip(&wasm) {
+        let name = source
+            .strip_prefix(shell::root())
+            .unwrap_or(source)
+            .display()
+            .to_string();
+        record(
+            tally,
+            &format!("{name} on WebAssembly"),
+            run_on_wasm(&name, program, module),
+        );
+    }
+}
+
+fn run_on_wasm(name: &str, program: &Path, module: &Path) -> Outcome<(bool, String)> {
+    let list = shell::run_quietly(shell::program(program).arg("--list"))?;
+    if !list.lines().any(|line| line.ends_with(": test")) {
+        return Ok((
+            true,
+            "test result: ok. 1 passed; 0 failed (no tests in it)".to_owned(),
+        ));
+    }
+    let list_file = shell::target()
+        .join("wasm-tests")
+        .join(name.replace('/', "-"))
+        .with_extension("list");
+    shell::write(&list_file, &list)?;
+    println!("{name}");
+    shell::run_kept(
+        shell::program("node")
+            .arg("tests/wasm/run.mjs")
+            .arg(module)
+            .arg(list_file),
+    )
+}
+
+/// The test programs that a `cargo test --no-run --message-format=json` makes: (source, program), sorted by source.
+fn harnesses(build: &mut Command) -> Outcome<Vec<(PathBuf, PathBuf)>> {
+    let printed = shell::run_quietly(build)?;
+    let field = |line: &str, key: &str| {
+        let (_, rest) = line.split_once(&format!("\"{key}\":\""))?;
+        rest.split_once('"').map(|(value, _)| PathBuf::from(value))
+    };
+    let of_a_test = |line: &&str| {
+        line.contains("\"reason\":\"compiler-artifact\"") && line.contains("\"executable\":\"")
+    };
+    let mut found: Vec<(PathBuf, PathBuf)> = printed
+        .lines()
+        .filter(of_a_test)
+        .filter_map(|line| Some((field(line, "src_path")?, field(line, "executable")?)))
+        .filter(|(source, _)| {
+            !source
+                .components()
+                .any(|part| part.as_os_str() == "examples")
+        })
+        .collect();
+    found.sort();
+    if found.is_empty() {
+        Err("no test programs were built".to_owned())
+    } else {
+        Ok(found)
+    }
+}
+
+/// Types of the page, its unit tests, and the built file in a real browser.
+fn web(tally: &mut Tally) {
+    let product = match build::dist() {
+        Ok(product) => product,
+        Err(message) => return tally.check("the single file", Err(message)),
+    };
+    say("types of page and worker");
+    let www = shell::root().join("www");
+    let bin = www.join("node_modules/.bin");
+    tally.check(
+        "types of page and worker (tsc)",
+        shell::run(shell::program(bin.join("tsc")).arg("-b").current_dir(&www)),
+    );
+    say("unit tests of page and worker");
+    let result = shell::run_kept(
+        shell::program(bin.join("vitest"))
+            .arg("run")
+            .current_dir(&www)
+            .env("NO_COLOR", "1"),
+    );
+    record(tally, "unit tests of page and worker", result);
+    record(
+        tally,
+        "page in Chromium",
+        in_browsers(&product, "chromium", &[]),
+    );
+}
+
+/// Runs files of tests/browser against the built file; `only` narrows the choice.
+pub fn in_browsers(product: &Path, engines: &str, only: &[&str]) -> Outcome<(bool, String)> {
+    let mut path = Vec::new();
+    for engine in engines.split(',') {
+        match engine {
+            "firefox" => path.push(fetch::firefox()?),
+            "webkit" => fetch::webkit()?,
+            _ => fetch::chromium()?,
+        }
+    }
+    say(format!("the built file in {engines}"));
+    let mut vitest = shell::program(shell::root().join("www/node_modules/.bin/vitest"));
+    vitest
+        .current_dir(shell::root().join("tests/browser"))
+        .arg("run")
+        .args(only)
+        .env("NO_COLOR", "1");
+    vitest
+        .env("WIDTHWISE_PAGE", product)
+        .env("WIDTHWISE_BROWSERS", engines)
+        .env("PATH", shell::path_with(&path)?);
+    shell::run_kept(&mut vitest)
+}
+
+/// Independent scripts against the batch program.
+fn references(tally: &mut Tally) {
+    let result = fetch::python().and_then(|python| {
+        let batch = batch()?;
+        say("independent references");
+        shell::run_kept(
+            shell::program(python)
+                .arg("tests/reference/check.py")
+                .arg(batch),
+        )
+    });
+    record(tally, "independent references", result);
+}
+
+/// The batch program as users run it.
+pub fn batch() -> Outcome<PathBuf> {
+    say("building the batch program");
+    shell::run(shell::cargo().args([
+        "build",
+        "--quiet",
+        "--release",
+        "--package",
+        "widthwise-batch",
+    ]))?;
+    Ok(shell::target().join("release/widthwise-batch"))
+}
