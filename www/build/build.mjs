@@ -60,28 +60,46 @@ function hash(text) {
 const [worker, page] = [await bundle("worker/main.ts"), await bundle("page/main.tsx")];
 const wasm = readFileSync(resolve(args.engine, "engine_bg.wasm"));
 const icon = readFileSync(resolve(www, "page/icon.svg"), "utf8").trim();
-const policy = [
-  "default-src 'none'",
-  `script-src ${hash(page.script)} 'wasm-unsafe-eval'`,
-  `style-src ${hash(page.style)}`,
-  "worker-src blob:",
-  "img-src data: blob:",
-  "connect-src 'none'",
-  "base-uri 'none'",
-  "form-action 'none'",
-].join("; ");
-const parts = {
-  POLICY: policy,
-  ICON: `data:image/svg+xml;base64,${Buffer.from(icon).toString("base64")}`,
-  STYLE: page.style,
-  WASM: deflateRawSync(wasm, { level: 9 }).toString("base64"),
-  WORKER: worker.script,
-  SCRIPT: page.script,
-};
-const html = readFileSync(resolve(www, "index.html"), "utf8").replace(/%([A-Z]+)%/g, (all, key) => parts[key] ?? all);
+/** The page with what differs between the file and the served page: the file knows of nothing beside it. */
+function assemble(beside) {
+  const policy = [
+    "default-src 'none'",
+    `script-src ${hash(page.script)} 'wasm-unsafe-eval'`,
+    `style-src ${hash(page.style)}`,
+    beside === "" ? "worker-src blob:" : "worker-src blob: 'self'; manifest-src 'self'",
+    "img-src data: blob:",
+    "connect-src 'none'",
+    "base-uri 'none'",
+    "form-action 'none'",
+  ].join("; ");
+  const parts = {
+    POLICY: policy,
+    ICON: `data:image/svg+xml;base64,${Buffer.from(icon).toString("base64")}`,
+    BESIDE: beside,
+    STYLE: page.style,
+    WASM: deflateRawSync(wasm, { level: 9 }).toString("base64"),
+    WORKER: worker.script,
+    SCRIPT: page.script,
+  };
+  return readFileSync(resolve(www, "index.html"), "utf8").replace(/%([A-Z]+)%/g, (all, key) => parts[key] ?? all);
+}
 
+const html = assemble("");
 mkdirSync(dirname(args.out), { recursive: true });
 writeFileSync(args.out, html);
+
+// The same page to be put on a group's own web server: kept by the browser for times without network.
+const served = assemble('<link rel="manifest" href="manifest.webmanifest" />');
+const folder = resolve(dirname(args.out), "served");
+mkdirSync(folder, { recursive: true });
+writeFileSync(resolve(folder, "index.html"), served);
+writeFileSync(resolve(folder, "icon.svg"), icon);
+const kept = { HASH: createHash("sha256").update(served).digest("hex").slice(0, 16) };
+for (const name of ["sw.js", "manifest.webmanifest"]) {
+  const text = readFileSync(resolve(www, "served", name), "utf8").replace(/%([A-Z]+)%/g, (all, key) => kept[key] ?? all);
+  writeFileSync(resolve(folder, name), text);
+}
+
 const size = (bytes) => `${(bytes / 1000).toFixed(0)} kB`;
 console.log(
   `widthwise.html ${size(Buffer.byteLength(html))} (${size(gzipSync(html, { level: 9 }).length)} compressed; ` +

@@ -3,6 +3,7 @@ import type { JSX } from "preact";
 import { DataTable } from "./data/table";
 import { HandOver } from "./hand-over/hand-over";
 import { Bar } from "./header/bar";
+import { Newer } from "./header/newer";
 import { Strip } from "./header/strip";
 import { Stripe } from "./header/stripe";
 import { Lanes } from "./lanes/lanes";
@@ -27,6 +28,7 @@ export function App(): JSX.Element {
       </a>
       <Bar />
       <Strip />
+      <Newer />
       <Stripe />
       <main class="desk" id="scan" tabIndex={-1}>
         <div class="axis">

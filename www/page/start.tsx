@@ -5,6 +5,7 @@ import { examples } from "./examples";
 import { broken } from "./state/answers";
 import { openText, sheetInLink } from "./state/files";
 import { keepTime } from "./state/health";
+import { keepInstalled } from "./state/installed";
 import { keepKeys } from "./state/keys";
 import { keepPrefs } from "./state/prefs";
 import { keepSavedWords, savedAt } from "./state/saved";
@@ -28,6 +29,7 @@ export async function start(root: HTMLElement, bridge: Promise<Bridge>): Promise
   keepTime();
   keepSavedWords();
   keepKeys();
+  void keepInstalled();
   await loadTables();
 }
 

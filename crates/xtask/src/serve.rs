@@ -1,4 +1,4 @@
-//! Serves the single file on localhost: one file, one address, nothing else.
+//! Serves the page on localhost, with the three small files that let a browser keep it; nothing else.
 
 use crate::build;
 use crate::shell::{self, Outcome, say};
@@ -46,10 +46,10 @@ pub fn serve(words: &[&str]) -> Outcome {
         let _ = shell::program("xdg-open").arg(&url).spawn();
     }
     for stream in listener.incoming().flatten() {
-        let page = page.clone();
+        let folder = page.with_file_name("served");
         std::thread::spawn(move || {
             // The other side may hang up whenever it likes.
-            let _ = answer(stream, &page);
+            let _ = answer(stream, &folder);
         });
     }
     Ok(())
@@ -63,7 +63,7 @@ fn bind(wanted: Option<u16>) -> Outcome<TcpListener> {
     free.ok_or_else(|| format!("no free port among {tried:?}: name one with --port N"))
 }
 
-fn answer(mut stream: TcpStream, page: &Path) -> std::io::Result<()> {
+fn answer(mut stream: TcpStream, folder: &Path) -> std::io::Result<()> {
     stream.set_read_timeout(Some(Duration::from_secs(10)))?;
     let mut reader = BufReader::new(stream.try_clone()?);
     let mut line = String::new();
@@ -77,16 +77,24 @@ fn answer(mut stream: TcpStream, page: &Path) -> std::io::Result<()> {
         words.next().unwrap_or_default(),
         words.next().unwrap_or_default(),
     );
-    let is_page = path.split(['?', '#']).next() == Some("/");
-    let (status, body) = match (method, is_page) {
-        ("GET" | "HEAD", true) => ("200 OK", std::fs::read(page)?),
-        ("GET" | "HEAD", false) => (
+    let file = match path.split(['?', '#']).next() {
+        Some("/") => Some(("index.html", "text/html")),
+        Some("/sw.js") => Some(("sw.js", "text/javascript")),
+        Some("/manifest.webmanifest") => {
+            Some(("manifest.webmanifest", "application/manifest+json"))
+        }
+        Some("/icon.svg") => Some(("icon.svg", "image/svg+xml")),
+        _ => None,
+    };
+    let (status, body) = match (method, file) {
+        ("GET" | "HEAD", Some((name, _))) => ("200 OK", std::fs::read(folder.join(name))?),
+        ("GET" | "HEAD", None) => (
             "404 Not Found",
             b"Only the page itself is here: /\n".to_vec(),
         ),
         _ => ("405 Method Not Allowed", Vec::new()),
     };
-    let kind = if is_page { "text/html" } else { "text/plain" };
+    let kind = file.map_or("text/plain", |(_, kind)| kind);
     write!(
         stream,
         "HTTP/1.1 {status}\r\nContent-Type: {kind}; charset=utf-8\r\nContent-Length: {}\r\nCache-Control: no-cache\r\nX-Content-Type-Options: nosniff\r\nConnection: close\r\n\r\n",
