@@ -3,6 +3,7 @@ import { render } from "preact";
 import { App } from "./app";
 import { examples } from "./examples";
 import { broken } from "./state/answers";
+import { keepComparing } from "./state/compare";
 import { openText, sheetInLink } from "./state/files";
 import { keepTime } from "./state/health";
 import { keepInstalled } from "./state/installed";
@@ -25,6 +26,7 @@ export async function start(root: HTMLElement, bridge: Promise<Bridge>): Promise
     broken.value = `This browser does not start the calculation: ${reason instanceof Error ? reason.message : String(reason)}`;
     return;
   }
+  keepComparing();
   keepSaving();
   keepTime();
   keepSavedWords();

@@ -1,6 +1,7 @@
 /** The stripe: there when something is off, and only then. */
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
+import { where } from "../format/where";
 import { Icon } from "../parts/icon";
 import * as answers from "../state/answers";
 import { openText } from "../state/files";
@@ -55,11 +56,4 @@ export function Stripe(): JSX.Element {
       )}
     </div>
   );
-}
-
-function where(path: string): string {
-  return path
-    .replace(/\[(\d+)\]/g, (_all, index: string) => ` ${Number(index) + 1}`)
-    .replace(/\./g, " › ")
-    .replace(/_/g, " ");
 }

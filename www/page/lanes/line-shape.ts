@@ -3,7 +3,8 @@ import { column, curve, points } from "../state/answers";
 import { traces } from "../state/prefs";
 import { view } from "../state/view";
 import type { Drawing, Trace } from "./chart";
-import { drawMarks, type Mark } from "./marks";
+import { comparedCurve } from "../state/compare";
+import { drawMarks, drawPath, type Mark } from "./marks";
 
 /** A trace that can be shown: its key, words, colour and dash. */
 export interface TraceStyle {
@@ -82,6 +83,8 @@ export function drawLineShape(): Drawing {
     }
     lines.push({ values: line, colour: style.colour, width: style.width, dash: style.dash });
   }
+  const other = comparedCurve.value;
+  for (const value of other?.observed ?? []) if (value > high) high = value;
   const marks = dataMarks();
   const { from, to } = view.value;
   for (const mark of marks) {
@@ -96,7 +99,10 @@ export function drawLineShape(): Drawing {
     traces: lines,
     low: low < 0 ? low - room : 0,
     high: high + room,
-    over: (plot) => drawMarks(plot, marks),
+    over: (plot) => {
+      if (other !== null) drawPath(plot, other.w, other.observed);
+      drawMarks(plot, marks);
+    },
   };
 }
 

@@ -93,3 +93,20 @@ export function drawBand(plot: uPlot, low: number, high: number, colour: string)
   plot.ctx.fillRect(plot.bbox.left, top, plot.bbox.width, bottom - top);
   plot.ctx.restore();
 }
+
+/** Draws a thin grey line that is not one of the lane's own traces (another sheet's curve). */
+export function drawPath(plot: uPlot, xs: ArrayLike<number>, ys: ArrayLike<number>): void {
+  const { ctx, bbox } = plot;
+  ctx.save();
+  ctx.beginPath();
+  ctx.rect(bbox.left, bbox.top, bbox.width, bbox.height);
+  ctx.clip();
+  ctx.beginPath();
+  for (let i = 0; i < xs.length; i += 1) {
+    ctx.lineTo(plot.valToPos(xs[i] ?? 0, "x", true), plot.valToPos(ys[i] ?? Number.NaN, "y", true));
+  }
+  ctx.strokeStyle = ink("--c-off", plot.root);
+  ctx.lineWidth = 1.25 * devicePixelRatio;
+  ctx.stroke();
+  ctx.restore();
+}

@@ -10,6 +10,7 @@ import { handOver } from "../hand-over/hand-over";
 import { Icon } from "../parts/icon";
 import { copy, download, fileName, linkOf, openText, saveSheet, tableText } from "../state/files";
 import { blankSheet } from "../state/blank";
+import { Compare } from "./compare";
 import { open, setField, sheet } from "../state/sheet";
 import { versions } from "../state/store";
 import type { Table } from "../state/types";
@@ -123,6 +124,7 @@ export function SheetRoom(): JSX.Element {
           ))}
         </ul>
       </fieldset>
+      <Compare />
       <fieldset>
         <legend>Versions in this browser</legend>
         {versions.value.length === 0 ? (
