@@ -115,7 +115,9 @@ impl Scaled {
         let mut ln_det = 0.0;
         for i in 0..p {
             let d = lower[(i, i)];
-            if !(d > 0.0 && d.is_finite()) {
+            // What is left of parameter i once the earlier ones are known; below this a Cholesky
+            // factor survives by rounding alone.
+            if !(d * d > NO_INFORMATION * info[(i, i)] && d.is_finite()) {
                 return None;
             }
             ln_det += 2.0 * math::ln(d);
@@ -159,10 +161,7 @@ impl Scaled {
     /// phi with the information allowed to be singular: infinite if the goal is undetermined.
     pub(crate) fn value(&self, info: &DMatrix<f64>) -> f64 {
         if let Some(a) = self.assess(info) {
-            // A Cholesky factor can survive on a singular matrix by rounding alone.
-            if reliable(info) {
-                return a.value;
-            }
+            return a.value;
         }
         let Self::Variance(c) = self else {
             return f64::INFINITY;
@@ -192,7 +191,7 @@ impl Scaled {
 }
 
 /// Relative size below which an eigenvalue of information (unit diagonal) counts as none.
-const NO_INFORMATION: f64 = 1e-11;
+const NO_INFORMATION: f64 = 1e-12;
 
 fn unit_diagonal(info: &DMatrix<f64>) -> (DMatrix<f64>, DVector<f64>) {
     let p = info.nrows();
@@ -202,11 +201,6 @@ fn unit_diagonal(info: &DMatrix<f64>) -> (DMatrix<f64>, DVector<f64>) {
     });
     let unit = DMatrix::from_fn(p, p, |i, j| info[(i, j)] / (d[i] * d[j]));
     (unit, d)
-}
-
-fn reliable(info: &DMatrix<f64>) -> bool {
-    let (unit, _) = unit_diagonal(info);
-    unit.symmetric_eigenvalues().min() > NO_INFORMATION
 }
 
 /// C^T I^- C where the columns of C are determined by I; `None` where they are not.

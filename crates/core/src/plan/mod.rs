@@ -10,7 +10,13 @@
 //! visit's own errors cost ([`problem`]). How they were made does not matter to it.
 
 pub mod certificate;
+pub mod clock;
 pub mod criterion;
 pub mod elfving;
+mod exact;
 pub mod problem;
 pub mod relaxed;
+pub mod rounding;
+mod search;
+pub mod task;
+pub mod timetable;

@@ -34,8 +34,15 @@ pub struct VisitErrors {
 pub(crate) struct Draw {
     pub weight: f64,
     pub roots: Vec<f64>,
+    /// e of [`Draw::gain`], already divided by the visits allowed per energy.
     pub visit_error: Vec<f64>,
     pub prior: DMatrix<f64>,
+    /// Rate m, counts per hour.
+    pub rate: Vec<f64>,
+    /// m_W/sqrt(m), per GeV; empty if not given.
+    pub slope_root: Vec<f64>,
+    /// r_bg, counts per hour.
+    pub dark_rate: f64,
 }
 
 /// A checked problem. Parameters are scaled inside to unit average information, so that a
@@ -48,6 +55,7 @@ pub struct Problem {
     pub(crate) draws: Vec<Draw>,
     pub(crate) scale: DVector<f64>,
     pub(crate) names: Vec<String>,
+    pub(crate) visits: f64,
 }
 
 impl Problem {
@@ -111,6 +119,7 @@ impl Problem {
             draws,
             scale: DVector::from_element(parameters, 1.0),
             names: names.to_vec(),
+            visits,
         };
         problem.rescale();
         Ok(problem)
@@ -278,6 +287,14 @@ fn draw(
         roots,
         visit_error,
         prior: truth.prior.clone(),
+        slope_root: truth
+            .slope_per_h_gev
+            .iter()
+            .zip(&truth.rate_per_h)
+            .map(|(s, m)| if *m > 0.0 { s / m.sqrt() } else { 0.0 })
+            .collect(),
+        rate: truth.rate_per_h.clone(),
+        dark_rate: truth.rate_without_beam_per_h,
     })
 }
 
