@@ -126,7 +126,7 @@ fn small_problems_are_exact() {
                 continue;
             }
             units[5] = 14 - used;
-            if units.iter().any(|&u| u == 1) {
+            if units.contains(&1) {
                 continue;
             }
             let mut info = DMatrix::<f64>::zeros(3, 3);
@@ -137,14 +137,14 @@ fn small_problems_are_exact() {
             // Units of keV, so that the inverse is harmless.
             let s = DMatrix::from_diagonal(&DVector::from_column_slice(&[1e-6, 1e-6, 1.0]));
             let info = &s * info * &s;
-            if let Some(inverse) = info.clone().try_inverse() {
-                if info.determinant() > 1e-9 {
-                    let value = match criterion {
-                        Criterion::Determinant => -math::ln(info.determinant()) - math::ln(1e24),
-                        _ => math::ln(inverse[(1, 1)]) + math::ln(1e-12),
-                    };
-                    best = best.min(value);
-                }
+            if let Some(inverse) = info.clone().try_inverse()
+                && info.determinant() > 1e-9
+            {
+                let value = match criterion {
+                    Criterion::Determinant => -math::ln(info.determinant()) - math::ln(1e24),
+                    _ => math::ln(inverse[(1, 1)]) + math::ln(1e-12),
+                };
+                best = best.min(value);
             }
         }
         let found = if criterion == Criterion::Determinant {

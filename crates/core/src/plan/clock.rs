@@ -174,12 +174,12 @@ impl Machine {
                 now = end;
                 continue;
             }
-            if let Some((every, lasting)) = self.calibration_h {
-                if now - calibrated >= every - 1e-9 {
-                    now += lasting;
-                    calibrated = now;
-                    continue;
-                }
+            if let Some((every, lasting)) = self.calibration_h
+                && now - calibrated >= every - 1e-9
+            {
+                now += lasting;
+                calibrated = now;
+                continue;
             }
             let mut end = self
                 .fills

@@ -105,10 +105,10 @@ pub(crate) fn search(
     }
     let mut scored: Vec<(Score, Vec<Stretch>)> = Vec::new();
     for start in all {
-        if let Some(s) = score(judge, &start, true) {
-            if !scored.iter().any(|other| other.1 == start) {
-                scored.push((s, start));
-            }
+        if let Some(s) = score(judge, &start, true)
+            && !scored.iter().any(|other| other.1 == start)
+        {
+            scored.push((s, start));
         }
     }
     scored.sort_by(|a, b| a.0.0.total_cmp(&b.0.0).then(a.0.1.total_cmp(&b.0.1)));
@@ -549,12 +549,12 @@ fn improve(
                 continue;
             };
             judged += 1;
-            if let Some(s) = score(judge, &next, filled) {
-                if s.better_than(best) {
-                    best = s;
-                    draft = next;
-                    improved = true;
-                }
+            if let Some(s) = score(judge, &next, filled)
+                && s.better_than(best)
+            {
+                best = s;
+                draft = next;
+                improved = true;
             }
             if judged >= budget {
                 return Some((best, draft));

@@ -137,10 +137,10 @@ impl Judge<'_> {
             let at = |test: &dyn Fn(f64) -> bool| {
                 stretch.visits.iter().any(|v| test(self.w_gev[v.candidate]))
             };
-            if let Some(c) = d.reference {
-                if !stretch.visits.iter().any(|v| v.candidate == c) {
-                    missing += 1.0;
-                }
+            if let Some(c) = d.reference
+                && !stretch.visits.iter().any(|v| v.candidate == c)
+            {
+                missing += 1.0;
             }
             if let Some(centre) = d.both_flanks_of_gev {
                 missing += f64::from(u8::from(!at(&|w| w < centre)))
