@@ -39,11 +39,8 @@ struct Truth {
 }
 
 fn cases() -> Vec<Case> {
-    let path = concat!(
-        env!("CARGO_MANIFEST_DIR"),
-        "/../../tests/reference/plan_cvxpy.json"
-    );
-    let file: File = serde_json::from_str(&std::fs::read_to_string(path).unwrap()).unwrap();
+    let text = include_str!("../../../tests/reference/plan_cvxpy.json");
+    let file: File = serde_json::from_str(text).unwrap();
     file.cases
 }
 
