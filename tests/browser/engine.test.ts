@@ -30,7 +30,7 @@ describe.each(engines.flatMap((engine) => [[engine, "file"] as const, [engine, "
     await expect(inPage(driver, "return pool.run({ kind: 'nonsense' })")).rejects.toThrow(/Refused: .*nonsense/);
   });
 
-  it.each(["trap", "panic"])("survives a forced %s", async (what) => {
+  it.each(["trap", "panic", "memory"])("survives a forced %s", async (what) => {
     const failure = await inPage<string>(driver, "return pool.force(values[0]).catch((error) => error.name + ': ' + error.message)", what);
     expect(failure).toMatch(/^Trapped: /);
     if (what === "panic") expect(failure).toContain("forced panic");

@@ -12,7 +12,9 @@ struct Named {
 }
 
 fn main() -> Result<(), Box<dyn std::error::Error>> {
-    let path = std::env::args().nth(1).ok_or("usage: bench_requests REQUESTS.json")?;
+    let path = std::env::args()
+        .nth(1)
+        .ok_or("usage: bench_requests REQUESTS.json")?;
     let requests: Vec<Named> = serde_json::from_str(&std::fs::read_to_string(path)?)?;
     for Named { name, request } in requests {
         let mut times = Vec::new();

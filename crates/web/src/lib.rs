@@ -39,9 +39,10 @@ pub fn force(what: &str) {
     match what {
         "panic" => panic!("forced panic"),
         "memory" => {
-            let mut hoard: Vec<Vec<u64>> = Vec::new();
+            // Only reserved, never touched: the browser's limit is met, not the machine's.
+            let mut hoard: Vec<Vec<u8>> = Vec::new();
             loop {
-                hoard.push(vec![1; 1 << 24]);
+                hoard.push(Vec::with_capacity(1 << 26));
                 std::hint::black_box(&hoard);
             }
         }

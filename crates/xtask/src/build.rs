@@ -6,6 +6,9 @@ use crate::stamp::{self, Ingredients};
 use crate::wasm::Compiler;
 use std::path::{Path, PathBuf};
 
+/// A worker that wants more than 1 GiB is stopped before it stops a tablet.
+const MOST_MEMORY: u32 = 1 << 30;
+
 /// The single file.
 pub fn product() -> PathBuf {
     shell::target().join("dist/widthwise.html")
@@ -58,7 +61,10 @@ pub fn engine() -> Outcome<PathBuf> {
         let folder = tools.first().ok_or("no wasm-pack")?;
         let mut pack = shell::program(folder.join("wasm-pack"));
         compiler.prepare(&mut pack, &tools)?;
-        pack.env("RUSTFLAGS", same_anywhere());
+        pack.env(
+            "RUSTFLAGS",
+            format!("{} -Clink-arg=--max-memory={MOST_MEMORY}", same_anywhere()),
+        );
         pack.args([
             "--quiet",
             "build",
