@@ -1,5 +1,6 @@
 /** What must be seen at a glance, from two metres, without a click. */
 import type { JSX } from "preact";
+import { useLayoutEffect, useRef } from "preact/hooks";
 import { count, hours, pValue, signed, THIN, withError } from "../format/number";
 import { Quantity } from "../parts/quantity";
 import { Sym } from "../parts/sym";
@@ -11,8 +12,19 @@ import { sheet } from "../state/sheet";
 
 /** The strip. */
 export function Strip(): JSX.Element {
+  const box = useRef<HTMLElement>(null);
+  useLayoutEffect(() => {
+    const strip = box.current;
+    if (strip === null) return;
+    // What sticks below the strip, and where a focused field may scroll to, depends on its height.
+    const measured = new ResizeObserver(() => {
+      document.documentElement.style.setProperty("--strip", `${strip.offsetHeight}px`);
+    });
+    measured.observe(strip);
+    return () => measured.disconnect();
+  }, []);
   return (
-    <section class="strip" aria-label="At a glance">
+    <section class="strip" aria-label="At a glance" ref={box}>
       <Dial />
       <Running />
       <Results />
