@@ -28,7 +28,11 @@ describe.each(engines)("for everyone in %s", (engine) => {
   });
   afterAll(() => driver?.quit());
 
-  it.each(["light", "dark", "dim"].flatMap((theme) => [1280, 420].map((width) => [theme, width] as const)))("is clean in %s at %i px, every room", async (theme, width) => {
+  it.each([
+    ["light", 1280],
+    ["dark", 420],
+    ["dim", 820],
+  ] as const)("is clean in %s at %i px, every room", async (theme, width) => {
     await driver.manage().window().setRect({ width, height: 900 });
     await driver.findElement(By.css(`#theme option[value="${theme}"]`)).click();
     const found: string[] = [];

@@ -52,6 +52,8 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
 
   const read = understood.value;
   const open = read?.columns.filter((column) => column.question !== "") ?? [];
+  const ids = new Set(sheet.peek().data.rows.map((row) => row.id));
+  const known = read?.rows.filter((row) => ids.has(row.id)).length ?? 0;
   const ready = read !== null && open.length === 0 && read.rows.length > 0;
   return (
     <dialog class="sheet-of-paper" aria-labelledby="paste-title" ref={dialog} onClose={close}>
@@ -89,7 +91,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
           <>
             <table class="plain">
               <caption>
-                {read.rows.length} rows, understood as
+                {read.rows.length} rows{known > 0 && `, ${known} of them already here by their id`}, understood as
               </caption>
               <thead>
                 <tr>
@@ -141,7 +143,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
       </div>
       <p class="actions">
         <button type="button" class="button button-main" disabled={!ready} onClick={() => take("add") && close()}>
-          Add {read?.rows.length ?? 0} rows
+          {known > 0 ? `Update ${known}, add ${(read?.rows.length ?? 0) - known}` : `Add ${read?.rows.length ?? 0} rows`}
         </button>
         <button type="button" class="button" disabled={!ready} onClick={() => take("replace") && close()}>
           Replace all points by them

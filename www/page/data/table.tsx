@@ -1,13 +1,13 @@
 /** The points: typed, pasted or loaded; every cell kept as typed; what the chain makes of it beside it. */
 import type { JSX } from "preact";
-import { useSignal } from "@preact/signals";
+import { computed, useSignal } from "@preact/signals";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { Icon } from "../parts/icon";
 import { Switch } from "../parts/field";
 import * as answers from "../state/answers";
 import { addRow, columnUnit } from "../state/rows";
 import { allColumns } from "../state/prefs";
-import { sheet } from "../state/sheet";
+import { rows as allRows } from "../state/sheet";
 import { columnsOf } from "./columns";
 import { PasteDialog } from "./paste";
 import { RowView } from "./row";
@@ -19,15 +19,16 @@ const SPARE = 8;
 /** Up to so many rows all are built and the page scrolls; above, the table scrolls by itself. */
 const ALL = 60;
 
+const shownColumns = computed(() => columnsOf(allRows.value, allColumns.value));
+
 /** The table with its actions. */
 export function DataTable(): JSX.Element {
   const box = useRef<HTMLDivElement>(null);
   const top = useSignal(0);
   const seen = useSignal(600);
   const pasting = useSignal(false);
-  const rows = sheet.value.data.rows;
-  const columns = columnsOf(rows, allColumns.value);
-  const byId = new Map(answers.points.value.map((point) => [point.id, point]));
+  const rows = allRows.value;
+  const columns = shownColumns.value;
   const windowed = rows.length > ALL;
   const first = windowed ? Math.max(0, Math.floor(top.value / ROW_PX) - SPARE) : 0;
   const last = windowed ? Math.min(rows.length, Math.ceil((top.value + seen.value) / ROW_PX) + SPARE) : rows.length;
@@ -90,7 +91,7 @@ export function DataTable(): JSX.Element {
             <tbody>
               {first > 0 && <Gap px={first * ROW_PX} />}
               {rows.slice(first, last).map((row, i) => (
-                <RowView key={row.id || `#${first + i}`} row={row} index={first + i} columns={columns} point={byId.get(row.id) ?? null} />
+                <RowView key={row.id || `#${first + i}`} row={row} index={first + i} columns={columns} point={answers.pointOf(row.id)} />
               ))}
               {last < rows.length && <Gap px={(rows.length - last) * ROW_PX} />}
             </tbody>

@@ -8,7 +8,7 @@ import * as answers from "../state/answers";
 import { calibrationAge, needsAttention } from "../state/health";
 import { planned } from "../state/plan";
 import { room } from "../state/prefs";
-import { sheet } from "../state/sheet";
+import { rows, runningIndex, sheet } from "../state/sheet";
 
 /** The strip. */
 export function Strip(): JSX.Element {
@@ -82,7 +82,7 @@ function Running(): JSX.Element {
       </Cell>
     );
   }
-  const row = sheet.value.data.rows.find((entry) => entry.id === here.id);
+  const row = rows.value[runningIndex.value];
   return (
     <Cell name={`Running, ${here.id}`} kind={needsAttention.value.some((note) => note.code === "p-value") ? "cell-warn" : ""}>
       <p class="figure">

@@ -13,44 +13,58 @@ export interface Mark {
   wide?: number;
 }
 
-/** Draws marks with error bars on a plot's canvas. */
+/** Above so many marks they are drawn small. */
+const MANY = 500;
+
+/** Draws marks with error bars on a plot's canvas: one path for all bars of a kind, one for all shapes. */
 export function drawMarks(plot: uPlot, marks: readonly Mark[]): void {
   const { ctx } = plot;
   const ratio = devicePixelRatio;
-  const size = 3.6 * ratio;
+  const size = (marks.length > MANY ? 1.6 : 3.6) * ratio;
   const { left, top, width, height } = plot.bbox;
   ctx.save();
   ctx.beginPath();
   ctx.rect(left - size, top, width + 2 * size, height);
   ctx.clip();
-  ctx.lineWidth = 1.25 * ratio;
+  ctx.lineWidth = (marks.length > MANY ? 0.75 : 1.25) * ratio;
   ctx.lineJoin = "round";
-  for (const mark of marks) {
-    const x = plot.valToPos(mark.x, "x", true);
-    if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
-    const colour = ink(mark.kind === "out" ? "--c-off" : "--c-data", plot.root);
+  for (const kind of ["out", "used", "running"] as const) {
+    const shown = marks.filter((mark) => mark.kind === kind);
+    if (shown.length === 0) continue;
+    const colour = ink(kind === "out" ? "--c-off" : "--c-data", plot.root);
     ctx.strokeStyle = colour;
-    ctx.fillStyle = mark.kind === "out" ? ink("--paper", plot.root) : colour;
-    const y = plot.valToPos(mark.y, "y", true);
+    ctx.fillStyle = kind === "out" ? ink("--paper", plot.root) : colour;
+    const shapes = new Path2D();
     ctx.beginPath();
-    ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
-    ctx.lineTo(x, plot.valToPos(mark.high, "y", true));
-    if (mark.wide !== undefined && mark.wide > 0) {
-      ctx.moveTo(plot.valToPos(mark.x - mark.wide, "x", true), y);
-      ctx.lineTo(plot.valToPos(mark.x + mark.wide, "x", true), y);
+    for (const mark of shown) {
+      const x = plot.valToPos(mark.x, "x", true);
+      if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
+      const y = plot.valToPos(mark.y, "y", true);
+      ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
+      ctx.lineTo(x, plot.valToPos(mark.high, "y", true));
+      if (mark.wide !== undefined && mark.wide > 0) {
+        ctx.moveTo(plot.valToPos(mark.x - mark.wide, "x", true), y);
+        ctx.lineTo(plot.valToPos(mark.x + mark.wide, "x", true), y);
+      }
+      shape(shapes, kind, x, y, size);
     }
     ctx.stroke();
-    ctx.beginPath();
-    if (mark.kind === "running") {
-      ctx.moveTo(x, y - size * 1.5);
-      ctx.lineTo(x + size * 1.4, y + size);
-      ctx.lineTo(x - size * 1.4, y + size);
-      ctx.closePath();
-    } else ctx.arc(x, y, size, 0, 2 * Math.PI);
-    ctx.fill();
-    ctx.stroke();
+    ctx.fill(shapes);
+    ctx.stroke(shapes);
   }
   ctx.restore();
+}
+
+function shape(path: Path2D, kind: Mark["kind"], x: number, y: number, size: number): void {
+  if (kind === "running") {
+    path.moveTo(x, y - size * 1.5);
+    path.lineTo(x + size * 1.4, y + size);
+    path.lineTo(x - size * 1.4, y + size);
+    path.closePath();
+  } else {
+    path.moveTo(x + size, y);
+    path.arc(x, y, size, 0, 2 * Math.PI);
+  }
 }
 
 /** Draws bars from zero: `solid` for what has been done, hatched outline for what is planned. */

@@ -9,14 +9,14 @@ import * as answers from "../state/answers";
 import { planned } from "../state/plan";
 import { room } from "../state/prefs";
 import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
-import { sheet } from "../state/sheet";
+import { rows, runningIndex, sheet } from "../state/sheet";
 import { FirstSteps } from "./first-steps";
 import type { Row } from "../state/types";
 
 /** The room. */
 export function ShiftRoom(): JSX.Element {
-  const index = sheet.value.data.rows.findIndex((row) => row.running === true);
-  const row = sheet.value.data.rows[index];
+  const index = runningIndex.value;
+  const row = rows.value[index];
   return (
     <>
       <FirstSteps />

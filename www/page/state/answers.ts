@@ -94,6 +94,13 @@ export function problemAt(path: string): Refusal | undefined {
   return byPath.value.get(path);
 }
 
+const pointsById = computed(() => new Map(points.value.map((point) => [point.id, point])));
+
+/** What the chain made of a row, if anything. */
+export function pointOf(id: string): PointView | null {
+  return pointsById.value.get(id) ?? null;
+}
+
 /** The row that is running now, if one is. */
 export const runningPoint = computed(() => points.value.find((point) => point.running) ?? null);
 

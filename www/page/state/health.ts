@@ -3,7 +3,7 @@ import { computed, signal } from "@preact/signals";
 import { ago } from "../format/number";
 import * as answers from "./answers";
 import { saveTrouble } from "./saved";
-import { sheet } from "./sheet";
+import { rows, sheet } from "./sheet";
 
 /** Time of day, moved on every ten seconds; everything that ages reads it. */
 export const now = signal(Date.now());
@@ -37,6 +37,8 @@ export const calibrationAge = computed(() => {
   return `calibrated ${ago(now.value - calibratedAt.value)}`;
 });
 
+const anyOnline = computed(() => rows.value.some((row) => !row.left_out && row.luminosity_source === "online"));
+
 /** All that is off now. */
 export const needsAttention = computed<Note[]>(() => {
   const notes: Note[] = [];
@@ -63,7 +65,7 @@ export const needsAttention = computed<Note[]>(() => {
       notes.push({ code: "limit", message: `${parameter.name} stands at the edge of what is allowed; its error means little.` });
     }
   }
-  if (sheet.value.data.rows.some((row) => !row.left_out && row.luminosity_source === "online")) {
+  if (anyOnline.value) {
     notes.push({ code: "online", message: "Some points use the online luminosity." });
   }
   for (const warning of [...answers.warnings.value, ...(answers.fit.value?.warnings ?? [])]) {

@@ -25,6 +25,11 @@ export const sheet = computed<Sheet>(() => {
   return current.value;
 });
 
+/** Its rows of data; what shows only these is not drawn again when a slider moves. */
+export const rows = computed(() => sheet.value.data.rows);
+/** Where in the rows the running one is; -1: none is running. */
+export const runningIndex = computed(() => rows.value.findIndex((row) => row.running === true));
+
 /** Whether a sheet has been opened. */
 export const opened = computed(() => current.value !== null);
 /** What undo would take back, or "". */

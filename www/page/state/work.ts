@@ -6,7 +6,7 @@ import * as answers from "./answers";
 import { readCursor, readCurve, readFit, readPoints } from "./read";
 import { Line } from "./line";
 import { opened, revision, sheet } from "./sheet";
-import type { Request } from "./types";
+import type { Request, Sheet } from "./types";
 import { cursor, view, whole } from "./view";
 
 /** What asks: the pool of workers, or a stand-in of a test. */
@@ -30,7 +30,9 @@ export function ask(request: Request): Promise<Reply> {
 /** Starts the work on a bridge; returns what stops it. */
 export function work(on: Bridge): () => void {
   bridge = on;
-  const live = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["curve", "cursor", "check", "points"]);
+  const live = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["curve", "cursor"]);
+  // Rows of data may be many: what needs them does not stand in the way of the hand.
+  const steady = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["check", "points"]);
   const failed = (reason: unknown): void => {
     if (reason instanceof Refused) return;
     answers.broken.value =
@@ -43,7 +45,7 @@ export function work(on: Bridge): () => void {
     effect(() => {
       if (!opened.value) return;
       const now = sheet.value;
-      live.put(
+      steady.put(
         "check",
         { kind: "check", sheet: now },
         ({ body }) => {
@@ -53,14 +55,14 @@ export function work(on: Bridge): () => void {
         },
         failed,
       );
-      live.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), failed);
+      steady.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), failed);
     }),
     effect(() => {
       if (!opened.value) return;
       const { from, to } = view.value;
       live.put(
         "curve",
-        { kind: "curve", sheet: sheet.value, from_gev: from, to_gev: to, points: CURVE_POINTS },
+        { kind: "curve", sheet: withoutRows(sheet.value), from_gev: from, to_gev: to, points: CURVE_POINTS },
         readCurve,
         (reason) => {
           if (reason instanceof Refused) answers.curve.value = null;
@@ -71,7 +73,7 @@ export function work(on: Bridge): () => void {
     effect(() => {
       if (!opened.value) return;
       const w = cursor.value ?? answers.runningPoint.value?.w ?? middleOfInterest();
-      live.put("cursor", { kind: "cursor", sheet: sheet.value, w_gev: w }, readCursor, (reason) => {
+      live.put("cursor", { kind: "cursor", sheet: withoutRows(sheet.value), w_gev: w }, readCursor, (reason) => {
         if (reason instanceof Refused) answers.atCursor.value = null;
         else failed(reason);
       });
@@ -82,6 +84,12 @@ export function work(on: Bridge): () => void {
     for (const stop of stops) stop();
     bridge = null;
   };
+}
+
+/** A curve needs no rows; leaving them at home keeps a drag quick with ten thousand of them. */
+function withoutRows(now: Sheet): Sheet {
+  const { covariance: _, ...data } = now.data;
+  return { ...now, data: { ...data, rows: [] } };
 }
 
 function middleOfInterest(): number {
