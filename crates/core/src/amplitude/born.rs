@@ -1,6 +1,6 @@
 //! What every model of the cross section gives the chain.
 
-use crate::error::Answer;
+use crate::error::{Answer, Warning};
 
 /// A centre-of-mass energy W = `reference_gev` + `offset_gev`, kept in two parts so that
 /// W - M keeps its digits next to a narrow pole: there `reference_gev` is the pole's mass.
@@ -71,6 +71,17 @@ pub trait Born {
     fn contributions_nb(&self, at: Energy, out: &mut [f64]);
     /// The total, nb.
     fn sigma_nb(&self, at: Energy) -> f64;
+    /// What the user should know of this model (a stable mediator, a ghost within reach).
+    fn warnings(&self) -> Vec<Warning> {
+        Vec::new()
+    }
+    /// Whether initial-state radiation may be applied, and with which warnings.
+    ///
+    /// # Errors
+    /// What is missing before it may.
+    fn radiation(&self) -> Answer<Vec<Warning>> {
+        Ok(Vec::new())
+    }
 }
 
 /// Anything that has to be checked before it may be computed with.

@@ -9,6 +9,122 @@ use serde::{Deserialize, Serialize};
 pub enum Hypothesis {
     /// A coherent sum of resonances in one partial wave.
     PartialWave(PartialWave),
+    /// A two-channel K-matrix: unitary where a sum of resonances is not.
+    KMatrix(KMatrix),
+    /// Tree-level diagrams.
+    Diagrams(Diagrams),
+}
+
+/// Two-channel K-matrix of one partial wave.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct KMatrix {
+    /// 2J.
+    pub twice_j: u8,
+    /// Bare poles.
+    pub poles: Vec<KPole>,
+    /// c_11, c_12, c_22: the constant part, real and symmetric.
+    pub constant: [f64; 3],
+    /// The two channels.
+    pub channels: [KChannel; 2],
+    /// True: Chew-Mandelstam functions; false: i rho.
+    pub chew_mandelstam: bool,
+    /// Which channel the beams are (0 or 1).
+    pub entrance: u8,
+    /// Which channel is seen (0 or 1).
+    pub exit: u8,
+    /// Background outside the modulus.
+    pub incoherent: Option<IncoherentBackground>,
+}
+
+/// A bare pole of K.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+pub struct KPole {
+    /// M_p, GeV.
+    pub mass_gev: f64,
+    /// g_p1, GeV.
+    pub g1_gev: f64,
+    /// g_p2, GeV.
+    pub g2_gev: f64,
+}
+
+/// A channel of the K-matrix.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct KChannel {
+    /// Name as shown.
+    pub name: String,
+    /// Mass 1, GeV.
+    pub m1_gev: f64,
+    /// Mass 2, GeV.
+    pub m2_gev: f64,
+}
+
+/// Tree-level Yukawa diagrams of one reaction; f has the mass of beam 1.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct Diagrams {
+    /// Reaction.
+    pub reaction: Reaction,
+    /// Mass of F (f fbar -> F Fbar, f F -> f F), GeV; no meaning elsewhere.
+    pub other_mass_gev: f64,
+    /// Mediators; exactly one, the external scalar, where phi is in the initial or final state.
+    pub mediators: Vec<Mediator>,
+    /// Total inside |cos theta| < this; `None`: all angles.
+    pub cos_cut: Option<f64>,
+    /// Background outside the modulus.
+    pub incoherent: Option<IncoherentBackground>,
+}
+
+/// The six reactions.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "snake_case")]
+pub enum Reaction {
+    /// f fbar -> F Fbar: s channel.
+    PairToOtherPair,
+    /// f F -> f F: t channel.
+    OtherElastic,
+    /// f fbar -> f fbar: s and t.
+    PairElastic,
+    /// f f -> f f: t and u.
+    SameElastic,
+    /// f phi -> f phi: s and u of the fermion.
+    Compton,
+    /// f fbar -> phi phi: t and u of the fermion.
+    PairToScalars,
+}
+
+/// A mediator of the diagrams (or the external scalar).
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct Mediator {
+    /// Name as shown.
+    pub name: String,
+    /// True: couples with gamma5.
+    pub pseudoscalar: bool,
+    /// M, GeV.
+    pub mass_gev: f64,
+    /// Yukawa coupling to f.
+    pub g: f64,
+    /// Yukawa coupling to F.
+    pub g_other: f64,
+    /// Propagator in the s channel; t and u are free, or dressed with the same loops.
+    pub propagator: MediatorPropagator,
+}
+
+/// Propagator of a mediator.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(tag = "kind", rename_all = "snake_case")]
+pub enum MediatorPropagator {
+    /// A form with its width (0 where the form's couplings make it).
+    Form {
+        /// Form.
+        form: Form,
+        /// Gamma, GeV.
+        width_gev: f64,
+    },
+    /// Dressed by its own couplings: loops of f and, where the reaction has it, of F with the
+    /// mediator's g, and further loops.
+    Dressed {
+        /// Further loops.
+        others: Vec<Loop>,
+    },
 }
 
 /// One coherent sum, one J.
@@ -77,6 +193,13 @@ pub enum Strength {
         /// GeV.
         gamma_f_gev: f64,
     },
+    /// Partial width of the one side whose vertex does not bring its own strength, GeV.
+    OneWidth {
+        /// GeV.
+        gev: f64,
+    },
+    /// Both vertices bring their own strength.
+    FromForm,
 }
 
 /// Propagator of a resonance.
@@ -91,6 +214,70 @@ pub enum Form {
     RunningWidth {
         /// Width channels.
         channels: Vec<WidthChannel>,
+    },
+    /// 1/(s-M^2+i(g1^2 rho1+g2^2 rho2)): two channels near a threshold. The width follows from
+    /// the couplings; the resonance's own is 0.
+    Flatte {
+        /// The two channels.
+        channels: [FlatteChannel; 2],
+    },
+    /// Gounaris-Sakurai, for two equal daughters in a P wave.
+    GounarisSakurai {
+        /// Mass of each daughter, GeV.
+        m_gev: f64,
+    },
+    /// 1/(s-M^2-Sigma(s)) in the on-shell scheme. The width follows from the couplings; the
+    /// resonance's own is 0.
+    Dressed {
+        /// True: couples with gamma5 to fermions.
+        pseudoscalar: bool,
+        /// Loops.
+        loops: Vec<Loop>,
+    },
+    /// 1/(s-M^2): a stable mediator. Refused where the scan could reach s = M^2.
+    Free,
+}
+
+/// One channel of the Flatte form.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct FlatteChannel {
+    /// Name as shown.
+    pub name: String,
+    /// Squared coupling, GeV^2 (no extra M).
+    pub g2_gev2: f64,
+    /// Mass of daughter 1, GeV.
+    pub m1_gev: f64,
+    /// Mass of daughter 2, GeV.
+    pub m2_gev: f64,
+}
+
+/// One loop of a dressed mediator.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(tag = "kind", rename_all = "snake_case")]
+pub enum Loop {
+    /// Dirac fermion pair, L = -g phi psibar psi or -i g phi psibar gamma5 psi.
+    Fermion {
+        /// Name as shown.
+        name: String,
+        /// Yukawa coupling.
+        g: f64,
+        /// Fermion mass, GeV.
+        m_gev: f64,
+        /// Colour factor, 1 if there is none.
+        colours: u8,
+    },
+    /// Scalar pair, L = -h phi chi1 chi2, or -(h/2) phi chi^2 for identical ones.
+    Scalar {
+        /// Name as shown.
+        name: String,
+        /// h, GeV.
+        h_gev: f64,
+        /// Mass 1, GeV.
+        m1_gev: f64,
+        /// Mass 2, GeV.
+        m2_gev: f64,
+        /// True: one real field twice.
+        identical: bool,
     },
 }
 
@@ -147,6 +334,25 @@ pub enum Vertex {
     Massless,
     /// As a running two-body channel.
     Running(TwoBody),
+    /// g_c^2 rho_c of the form's own Flatte channel (0 or 1); 0 below its threshold. Brings
+    /// its own strength.
+    Flatte {
+        /// Which channel.
+        channel: u8,
+    },
+    /// -Im Sigma_c of the form's own loop. Brings its own strength.
+    Dressed {
+        /// Which loop.
+        index: u8,
+    },
+}
+
+impl Vertex {
+    /// True if its strength is a coupling of the form, not a partial width of [`Strength`].
+    #[must_use]
+    pub fn brings_strength(&self) -> bool {
+        matches!(self, Self::Flatte { .. } | Self::Dressed { .. })
+    }
 }
 
 /// Background inside the modulus.

@@ -2,7 +2,9 @@
 
 mod background;
 pub mod born;
+pub mod diagrams;
 pub mod hypothesis;
+pub mod kmatrix_born;
 pub mod parameters;
 pub mod partial_wave;
 mod vertex;
@@ -24,6 +26,10 @@ impl Hypothesis {
             Self::PartialWave(wave) => {
                 Box::new(partial_wave::PreparedPartialWave::new(wave, beams)?)
             }
+            Self::KMatrix(model) => Box::new(kmatrix_born::KMatrixBorn::new(model, beams)?),
+            Self::Diagrams(model) => Box::new(diagrams::total::DiagramTotal::new(
+                diagrams::PreparedDiagrams::new(model, beams)?,
+            )),
         })
     }
 }

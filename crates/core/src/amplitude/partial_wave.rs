@@ -34,7 +34,9 @@ impl Term {
         match &self.vertices {
             None => self.strength_gev2,
             Some((entrance, exit)) => {
-                self.strength_gev2 * (entrance.ratio(at) * exit.ratio(at)).sqrt()
+                self.strength_gev2
+                    * (entrance.ratio(at, &self.propagator) * exit.ratio(at, &self.propagator))
+                        .sqrt()
             }
         }
     }
@@ -89,12 +91,7 @@ impl PreparedPartialWave {
                 "the sum of the final state's masses is a number, 0 or more",
             ));
         }
-        let n_a = f64::from(beams.first.spin_states);
-        let n_b = f64::from(beams.second.spin_states);
-        let flux_nb_gev2 = (f64::from(wave.twice_j) + 1.0) / (n_a * n_b)
-            * 4.0
-            * core::f64::consts::PI
-            * HBARC2_GEV2_NB;
+        let flux_nb_gev2 = flux_nb_gev2(wave.twice_j, beams);
         let terms = wave
             .resonances
             .iter()
@@ -250,6 +247,12 @@ impl Born for PreparedPartialWave {
     }
 }
 
+/// (2J+1)/(n_a n_b) 4 pi (hbar c)^2, nb GeV^2.
+pub(crate) fn flux_nb_gev2(twice_j: u8, beams: &Beams) -> f64 {
+    let states = f64::from(beams.first.spin_states) * f64::from(beams.second.spin_states);
+    (f64::from(twice_j) + 1.0) / states * 4.0 * core::f64::consts::PI * HBARC2_GEV2_NB
+}
+
 /// Names: each term alone, the interference of each pair, the incoherent background.
 fn names(wave: &PartialWave) -> Vec<String> {
     let mut alone: Vec<String> = wave
@@ -273,8 +276,8 @@ fn names(wave: &PartialWave) -> Vec<String> {
 }
 
 fn term(resonance: &Resonance, index: usize, path: &str) -> Answer<Term> {
-    let (mass, width) = (resonance.mass_gev, resonance.width_gev);
-    let propagator = Propagator::new(&resonance.form, mass, width, path)?;
+    let mass = resonance.mass_gev;
+    let propagator = Propagator::new(&resonance.form, mass, resonance.width_gev, path)?;
     finite(resonance.phase_rad, path, "phase")?;
     if index == 0 && resonance.phase_rad != 0.0 {
         return Err(Refusal::new(
@@ -284,20 +287,55 @@ fn term(resonance: &Resonance, index: usize, path: &str) -> Answer<Term> {
             "phases are counted from the first resonance, whose own phase is 0",
         ));
     }
-    let widths_product = check_strength(&resonance.strength, width, path)?;
-    let entrance = PreparedVertex::new(&resonance.entrance, mass, &format!("{path}.entrance"))?;
-    let exit = PreparedVertex::new(&resonance.exit, mass, &format!("{path}.exit"))?;
+    let entrance = PreparedVertex::new(
+        &resonance.entrance,
+        &propagator,
+        &format!("{path}.entrance"),
+    )?;
+    let exit = PreparedVertex::new(&resonance.exit, &propagator, &format!("{path}.exit"))?;
+    let own =
+        u8::from(resonance.entrance.brings_strength()) + u8::from(resonance.exit.brings_strength());
+    let strength_gev2 = strength(&resonance.strength, own, mass, propagator.width_gev(), path)?;
     let constant = entrance == PreparedVertex::Constant && exit == PreparedVertex::Constant;
     Ok(Term {
         propagator,
-        strength_gev2: mass * widths_product.sqrt(),
+        strength_gev2,
         minus_phase: -math::polar(1.0, resonance.phase_rad),
         vertices: (!constant).then_some((entrance, exit)),
     })
 }
 
-/// Gamma_in Gamma_f, GeV^2.
-fn check_strength(strength: &Strength, width: f64, path: &str) -> Answer<f64> {
+/// What multiplies sqrt(entrance exit): M sqrt(Gamma_in Gamma_f), or with one vertex that
+/// brings its own strength sqrt(M Gamma_a), or with two 1.
+fn strength(strength: &Strength, own: u8, mass: f64, width: f64, path: &str) -> Answer<f64> {
+    let allowed = match own {
+        0 => "the product, two fractions or two partial widths",
+        1 => "the partial width of the side whose vertex is not the form's own",
+        _ => "no strength beside the form's own couplings",
+    };
+    let fits = match strength {
+        Strength::OneWidth { .. } => own == 1,
+        Strength::FromForm => own == 2,
+        _ => own == 0,
+    };
+    if !fits {
+        return Err(Refusal::new(
+            format!("{path}.strength"),
+            format!("{strength:?}"),
+            allowed,
+            "the strength does not go with the vertices: each vertex needs exactly one strength, its own or a given one",
+        ));
+    }
+    let product = widths_product(strength, mass, width, path)?;
+    Ok(if own == 0 {
+        mass * product.sqrt()
+    } else {
+        product.sqrt()
+    })
+}
+
+/// Gamma_in Gamma_f in GeV^2; M Gamma_a for one width; 1 for none.
+fn widths_product(strength: &Strength, mass: f64, width: f64, path: &str) -> Answer<f64> {
     let number = |value: f64, field: &str, most: f64| {
         if value.is_finite() && value >= 0.0 && value <= most {
             return Ok(value);
@@ -315,6 +353,8 @@ fn check_strength(strength: &Strength, width: f64, path: &str) -> Answer<f64> {
         ))
     };
     Ok(match *strength {
+        Strength::OneWidth { gev } => number(gev, "value", f64::INFINITY)? * mass,
+        Strength::FromForm => 1.0,
         Strength::GammaInBf { gev } => number(gev, "value", f64::INFINITY)? * width,
         Strength::BinBf { product } => number(product, "value", 1.0)? * width * width,
         Strength::Branchings { b_in, b_f } => {
@@ -332,7 +372,7 @@ fn check_strength(strength: &Strength, width: f64, path: &str) -> Answer<f64> {
 
 /// Two massive beams fix whether J is whole or half. (A massless beam's number of states does
 /// not tell its spin.)
-fn check_spin(twice_j: u8, beams: &Beams) -> Answer<()> {
+pub(crate) fn check_spin(twice_j: u8, beams: &Beams) -> Answer<()> {
     if beams.first.mass_gev == 0.0 || beams.second.mass_gev == 0.0 {
         return Ok(());
     }

@@ -1,5 +1,6 @@
 //! Numerical routines shared by the rooms.
 
+pub mod gauss_legendre;
 pub mod minimise;
 pub mod probability;
 pub mod quadrature;

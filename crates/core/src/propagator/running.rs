@@ -1,21 +1,28 @@
 //! Running partial widths: two spinless daughters with a centrifugal barrier, and tables.
 
+use super::Branch;
 use crate::amplitude::born::Energy;
 use crate::amplitude::hypothesis::{ChannelShape, TwoBody, WidthChannel};
 use crate::error::{Answer, Refusal};
-use crate::kinematics::momentum_squared_gev2;
+use crate::kinematics::{break_up_momentum_complex_gev, momentum_squared_gev2};
+use crate::math::csqrt;
+use core::ops::{Add, Mul};
+use num_complex::Complex64;
 
 /// p_l(z) = x^2 |h_l(x)|^2 times z^l with z = x^2, h_l the spherical Hankel function: the
 /// barrier polynomials, l = 0 to 4 (PDG, "Resonances"; l above 4 is refused elsewhere).
 #[inline]
 #[must_use]
-pub fn barrier_polynomial(l: u8, z: f64) -> f64 {
+pub fn barrier_polynomial<T>(l: u8, z: T) -> T
+where
+    T: Copy + From<f64> + Add<f64, Output = T> + Mul<Output = T>,
+{
     match l {
-        0 => 1.0,
-        1 => 1.0 + z,
-        2 => 9.0 + z * (3.0 + z),
-        3 => 225.0 + z * (45.0 + z * (6.0 + z)),
-        _ => 11025.0 + z * (1575.0 + z * (135.0 + z * (10.0 + z))),
+        0 => T::from(1.0),
+        1 => z + 1.0,
+        2 => z * (z + 3.0) + 9.0,
+        3 => z * (z * (z + 6.0) + 45.0) + 225.0,
+        _ => z * (z * (z * (z + 10.0) + 135.0) + 1575.0) + 11025.0,
     }
 }
 
@@ -116,6 +123,26 @@ impl RunningPair {
     pub fn threshold_gev(&self) -> f64 {
         self.sum_gev
     }
+
+    /// The ratio continued to complex s; `first`: Im q > 0.
+    fn on_sheet(&self, s: Complex64, first: bool) -> Complex64 {
+        let mut q = break_up_momentum_complex_gev(s, self.m1_gev, self.m2_gev);
+        if !first {
+            q = -q;
+        }
+        let x2 = q * q * self.inverse_q02;
+        let mut power = q * self.inverse_q02.sqrt();
+        for _ in 0..self.l {
+            power *= x2;
+        }
+        let z = q * q * self.radius2;
+        let barrier = if self.radius2 == 0.0 {
+            Complex64::new(1.0, 0.0)
+        } else {
+            barrier_polynomial(self.l, z)
+        };
+        power * self.norm / (csqrt(s) * barrier)
+    }
 }
 
 /// Rows (W, Gamma_c(W)/Gamma_c(M)): linear between, 0 below the first, held above the last
@@ -201,6 +228,7 @@ enum Channel {
 #[derive(Debug, Clone, PartialEq)]
 pub struct RunningWidth {
     channels: Vec<Channel>,
+    names: Vec<String>,
     inverse_mass2: f64,
 }
 
@@ -247,6 +275,10 @@ impl RunningWidth {
         }
         Ok(Self {
             channels: prepared,
+            names: channels
+                .iter()
+                .map(|channel| channel.name.clone())
+                .collect(),
             inverse_mass2: 1.0 / (mass_gev * mass_gev),
         })
     }
@@ -266,6 +298,46 @@ impl RunningWidth {
             };
         }
         sum
+    }
+
+    /// The two-body channels, in order: each separates two sheets.
+    #[must_use]
+    pub fn branches(&self) -> Vec<Branch> {
+        self.pairs()
+            .map(|(name, pair)| Branch {
+                name: name.clone(),
+                threshold_gev: pair.sum_gev,
+            })
+            .collect()
+    }
+
+    fn pairs(&self) -> impl Iterator<Item = (&String, &RunningPair)> {
+        self.channels
+            .iter()
+            .zip(&self.names)
+            .filter_map(|(channel, name)| match channel {
+                Channel::Pair(_, pair) => Some((name, pair)),
+                _ => None,
+            })
+    }
+
+    /// [`RunningWidth::ratio`] continued to complex s, one sign of Im q per two-body channel;
+    /// `None` if a channel is tabulated.
+    #[must_use]
+    pub fn on_sheet(&self, s: Complex64, first: &[bool]) -> Option<Complex64> {
+        let mut sum = Complex64::new(0.0, 0.0);
+        let mut signs = first.iter();
+        for channel in &self.channels {
+            sum += match channel {
+                Channel::Constant(fraction) => Complex64::new(*fraction, 0.0),
+                Channel::Massless(fraction) => s * (fraction * self.inverse_mass2),
+                Channel::Pair(fraction, pair) => {
+                    pair.on_sheet(s, signs.next().copied().unwrap_or(true)) * *fraction
+                }
+                Channel::Table(..) => return None,
+            };
+        }
+        Some(sum)
     }
 
     /// Where the width is not smooth, GeV.

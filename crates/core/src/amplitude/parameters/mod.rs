@@ -1,95 +1,15 @@
 //! Every number of a hypothesis that a fit may vary, by id.
 
 use super::hypothesis::{
-    CoherentBackground, Hypothesis, IncoherentBackground, PartialWave, Resonance, Strength,
+    CoherentBackground, Diagrams, Form, Hypothesis, IncoherentBackground, KMatrix, Loop,
+    MediatorPropagator, PartialWave, Reaction, Resonance, Strength,
 };
 use crate::error::{Answer, Refusal};
 use core::fmt;
-use core::str::FromStr;
 
-/// A parameter's id, e.g. `r1.mass`, `coherent.0`; cheap to copy and compare.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
-pub enum ParameterId {
-    /// Of the resonance with this index (shown counted from 1).
-    Resonance(u16, ResonanceParameter),
-    /// phi_bg, rad.
-    CoherentPhase,
-    /// Coefficient of the coherent background: of the polynomial, C, or c in nb.
-    Coherent(u16),
-    /// Coefficient of the incoherent background, nb.
-    Incoherent(u16),
-}
+mod id;
 
-/// Parameters of one resonance.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
-pub enum ResonanceParameter {
-    /// M, GeV.
-    Mass,
-    /// Gamma, GeV.
-    Width,
-    /// Gamma_in B_f (GeV) or B_in B_f.
-    Strength,
-    /// B_in.
-    BIn,
-    /// B_f.
-    BF,
-    /// Gamma_in, GeV.
-    GammaIn,
-    /// Gamma_f, GeV.
-    GammaF,
-    /// phi, rad.
-    Phase,
-}
-
-const RESONANCE_NAMES: [(ResonanceParameter, &str); 8] = [
-    (ResonanceParameter::Mass, "mass"),
-    (ResonanceParameter::Width, "width"),
-    (ResonanceParameter::Strength, "strength"),
-    (ResonanceParameter::BIn, "b_in"),
-    (ResonanceParameter::BF, "b_f"),
-    (ResonanceParameter::GammaIn, "gamma_in"),
-    (ResonanceParameter::GammaF, "gamma_f"),
-    (ResonanceParameter::Phase, "phase"),
-];
-
-impl fmt::Display for ParameterId {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            Self::Resonance(index, parameter) => {
-                let name = RESONANCE_NAMES
-                    .iter()
-                    .find(|(known, _)| known == parameter)
-                    .map_or("", |(_, name)| name);
-                write!(f, "r{}.{name}", index + 1)
-            }
-            Self::CoherentPhase => write!(f, "coherent.phase"),
-            Self::Coherent(i) => write!(f, "coherent.{i}"),
-            Self::Incoherent(i) => write!(f, "incoherent.{i}"),
-        }
-    }
-}
-
-impl FromStr for ParameterId {
-    type Err = Refusal;
-
-    fn from_str(id: &str) -> Answer<Self> {
-        let parse = || {
-            let (room, name) = id.split_once('.')?;
-            match room {
-                "coherent" if name == "phase" => Some(Self::CoherentPhase),
-                "coherent" => Some(Self::Coherent(name.parse().ok()?)),
-                "incoherent" => Some(Self::Incoherent(name.parse().ok()?)),
-                _ => {
-                    let index: u16 = room.strip_prefix('r')?.parse().ok()?;
-                    let (parameter, _) =
-                        RESONANCE_NAMES.iter().find(|(_, known)| *known == name)?;
-                    Some(Self::Resonance(index.checked_sub(1)?, *parameter))
-                }
-            }
-        };
-        parse().ok_or_else(|| unknown(id))
-    }
-}
+pub use id::{KPoleParameter, MediatorParameter, ParameterId, ResonanceParameter};
 
 fn unknown(id: impl fmt::Display) -> Refusal {
     Refusal::new(
@@ -125,6 +45,8 @@ impl Hypothesis {
     pub fn parameters(&self) -> Vec<ParameterSpec> {
         match self {
             Self::PartialWave(wave) => wave_parameters(wave),
+            Self::KMatrix(model) => kmatrix_parameters(model),
+            Self::Diagrams(model) => diagram_parameters(model),
         }
     }
 
@@ -176,18 +98,17 @@ impl Hypothesis {
     fn slot(&mut self, id: ParameterId) -> Option<&mut f64> {
         match self {
             Self::PartialWave(wave) => wave_slot(wave, id),
+            Self::KMatrix(model) => kmatrix_slot(model, id),
+            Self::Diagrams(model) => diagram_slot(model, id),
         }
     }
 }
 
 fn wave_slot(wave: &mut PartialWave, id: ParameterId) -> Option<&mut f64> {
     match id {
+        ParameterId::Resonance(0, ResonanceParameter::Phase) => None,
         ParameterId::Resonance(index, parameter) => {
-            let resonance = wave.resonances.get_mut(usize::from(index))?;
-            if index == 0 && parameter == ResonanceParameter::Phase {
-                return None;
-            }
-            resonance_slot(resonance, parameter)
+            resonance_slot(wave.resonances.get_mut(usize::from(index))?, parameter)
         }
         ParameterId::CoherentPhase => match wave.coherent.as_mut()? {
             CoherentBackground::Polynomial { phase_rad, .. }
@@ -202,23 +123,208 @@ fn wave_slot(wave: &mut PartialWave, id: ParameterId) -> Option<&mut f64> {
             (CoherentBackground::OnePhoton { c_nb, .. }, 0) => Some(c_nb),
             _ => None,
         },
-        ParameterId::Incoherent(i) => match (wave.incoherent.as_mut()?, i) {
-            (IncoherentBackground::Power { c0_nb, .. }, 0) => Some(c0_nb),
-            (IncoherentBackground::Power { n, .. }, 1) => Some(n),
-            (
-                IncoherentBackground::Polynomial {
-                    coefficients_nb, ..
-                },
-                i,
-            ) => coefficients_nb.get_mut(usize::from(i)),
+        ParameterId::Incoherent(i) => incoherent_slot(&mut wave.incoherent, i),
+        _ => None,
+    }
+}
+
+fn incoherent_slot(background: &mut Option<IncoherentBackground>, i: u16) -> Option<&mut f64> {
+    match (background.as_mut()?, i) {
+        (IncoherentBackground::Power { c0_nb, .. }, 0) => Some(c0_nb),
+        (IncoherentBackground::Power { n, .. }, 1) => Some(n),
+        (
+            IncoherentBackground::Polynomial {
+                coefficients_nb, ..
+            },
+            i,
+        ) => coefficients_nb.get_mut(usize::from(i)),
+        _ => None,
+    }
+}
+
+/// Coupling n of a form: channels of Flatte, loops of a dressed mediator.
+fn form_slot(form: &mut Form, n: u8) -> Option<&mut f64> {
+    match form {
+        Form::Flatte { channels } => channels
+            .get_mut(usize::from(n))
+            .map(|channel| &mut channel.g2_gev2),
+        Form::Dressed { loops, .. } => loop_slot(loops, n),
+        _ => None,
+    }
+}
+
+fn loop_slot(loops: &mut [Loop], n: u8) -> Option<&mut f64> {
+    loops.get_mut(usize::from(n)).map(|of| match of {
+        Loop::Fermion { g, .. } => g,
+        Loop::Scalar { h_gev, .. } => h_gev,
+    })
+}
+
+/// What [`form_slot`] offers: (n, label, unit, value).
+fn form_couplings(form: &Form) -> Vec<(u8, String, &'static str, f64)> {
+    match form {
+        Form::Flatte { channels } => (0u8..)
+            .zip(channels)
+            .map(|(n, channel)| {
+                let label = format!("squared coupling to {}", channel.name);
+                (n, label, "GeV^2", channel.g2_gev2)
+            })
+            .collect(),
+        Form::Dressed { loops, .. } => loop_couplings(loops),
+        _ => Vec::new(),
+    }
+}
+
+fn loop_couplings(loops: &[Loop]) -> Vec<(u8, String, &'static str, f64)> {
+    (0u8..)
+        .zip(loops)
+        .map(|(n, of)| match of {
+            Loop::Fermion { name, g, .. } => (n, format!("coupling to {name}"), "", *g),
+            Loop::Scalar { name, h_gev, .. } => (n, format!("coupling to {name}"), "GeV", *h_gev),
+        })
+        .collect()
+}
+
+fn kmatrix_slot(model: &mut KMatrix, id: ParameterId) -> Option<&mut f64> {
+    match id {
+        ParameterId::KPole(i, parameter) => {
+            let pole = model.poles.get_mut(usize::from(i))?;
+            Some(match parameter {
+                KPoleParameter::Mass => &mut pole.mass_gev,
+                KPoleParameter::G1 => &mut pole.g1_gev,
+                KPoleParameter::G2 => &mut pole.g2_gev,
+            })
+        }
+        ParameterId::KConstant(i) => model.constant.get_mut(usize::from(i)),
+        ParameterId::Incoherent(i) => incoherent_slot(&mut model.incoherent, i),
+        _ => None,
+    }
+}
+
+fn diagram_slot(model: &mut Diagrams, id: ParameterId) -> Option<&mut f64> {
+    use MediatorParameter as P;
+    let (i, parameter) = match id {
+        ParameterId::Mediator(i, parameter) => (i, parameter),
+        ParameterId::Incoherent(i) => return incoherent_slot(&mut model.incoherent, i),
+        _ => return None,
+    };
+    let reaction = model.reaction;
+    let mediator = model.mediators.get_mut(usize::from(i))?;
+    match parameter {
+        // The mass of an external scalar is known from its beam or final state.
+        P::Mass if reaction == Reaction::Compton => None,
+        P::Mass => Some(&mut mediator.mass_gev),
+        P::G => Some(&mut mediator.g),
+        P::GOther if reaction.has_other_fermion() => Some(&mut mediator.g_other),
+        P::GOther => None,
+        P::Width | P::Coupling(_) if reaction.exchanges_fermion() => None,
+        P::Width => match &mut mediator.propagator {
+            MediatorPropagator::Form { form, width_gev } if !width_follows(form) => Some(width_gev),
             _ => None,
         },
+        P::Coupling(n) => match &mut mediator.propagator {
+            MediatorPropagator::Form { form, .. } => form_slot(form, n),
+            MediatorPropagator::Dressed { others } => loop_slot(others, n),
+        },
     }
+}
+
+fn kmatrix_parameters(model: &KMatrix) -> Vec<ParameterSpec> {
+    let mut all = Vec::new();
+    for (i, pole) in (0u16..).zip(&model.poles) {
+        let number = i + 1;
+        for (parameter, what, value, limits) in [
+            (KPoleParameter::Mass, "mass", pole.mass_gev, POSITIVE),
+            (KPoleParameter::G1, "coupling 1", pole.g1_gev, FREE),
+            (KPoleParameter::G2, "coupling 2", pole.g2_gev, FREE),
+        ] {
+            let label = format!("{what} of bare pole {number}");
+            let mut one = spec(
+                ParameterId::KPole(i, parameter),
+                label,
+                "GeV",
+                value,
+                limits,
+            );
+            if parameter == KPoleParameter::Mass {
+                one.scale = 0.01 * value;
+            }
+            all.push(one);
+        }
+    }
+    for (i, value) in (0u8..).zip(model.constant) {
+        let id = ParameterId::KConstant(i);
+        all.push(spec(id, format!("constant {id} of K"), "", value, FREE));
+    }
+    incoherent_parameters(model.incoherent.as_ref(), &mut all);
+    all
+}
+
+fn diagram_parameters(model: &Diagrams) -> Vec<ParameterSpec> {
+    use MediatorParameter as P;
+    let mut all = Vec::new();
+    for (i, mediator) in (0u16..).zip(&model.mediators) {
+        let id = |parameter| ParameterId::Mediator(i, parameter);
+        let label = |what: &str| format!("{what} of {}", mediator.name);
+        let (form, width) = match &mediator.propagator {
+            MediatorPropagator::Form { form, width_gev } => (Some(form), *width_gev),
+            MediatorPropagator::Dressed { .. } => (None, 0.0),
+        };
+        if model.reaction != Reaction::Compton {
+            let mut mass = spec(
+                id(P::Mass),
+                label("mass"),
+                "GeV",
+                mediator.mass_gev,
+                POSITIVE,
+            );
+            mass.scale = if width > 0.0 {
+                0.2 * width
+            } else {
+                0.01 * mediator.mass_gev
+            };
+            all.push(mass);
+        }
+        all.push(spec(id(P::G), label("coupling g"), "", mediator.g, FREE));
+        if model.reaction.has_other_fermion() {
+            all.push(spec(
+                id(P::GOther),
+                label("coupling g_F"),
+                "",
+                mediator.g_other,
+                FREE,
+            ));
+        }
+        if model.reaction.exchanges_fermion() {
+            continue;
+        }
+        if form.is_some_and(|form| !width_follows(form)) {
+            all.push(spec(id(P::Width), label("width"), "GeV", width, POSITIVE));
+        }
+        let couplings = match &mediator.propagator {
+            MediatorPropagator::Form { form, .. } => form_couplings(form),
+            MediatorPropagator::Dressed { others } => loop_couplings(others),
+        };
+        for (n, what, unit, value) in couplings {
+            all.push(spec(
+                id(P::Coupling(n)),
+                label(&what),
+                unit,
+                value,
+                POSITIVE,
+            ));
+        }
+    }
+    incoherent_parameters(model.incoherent.as_ref(), &mut all);
+    all
 }
 
 fn resonance_slot(resonance: &mut Resonance, parameter: ResonanceParameter) -> Option<&mut f64> {
     use ResonanceParameter as P;
     match (parameter, &mut resonance.strength) {
+        (P::Width, _) if width_follows(&resonance.form) => None,
+        (P::Coupling(n), _) => form_slot(&mut resonance.form, n),
+        (P::Strength, Strength::OneWidth { gev }) => Some(gev),
         (P::Mass, _) => Some(&mut resonance.mass_gev),
         (P::Width, _) => Some(&mut resonance.width_gev),
         (P::Phase, _) => Some(&mut resonance.phase_rad),
@@ -230,6 +336,14 @@ fn resonance_slot(resonance: &mut Resonance, parameter: ResonanceParameter) -> O
         (P::GammaF, Strength::PartialWidths { gamma_f_gev, .. }) => Some(gamma_f_gev),
         _ => None,
     }
+}
+
+/// Forms whose width is not a parameter of its own.
+fn width_follows(form: &Form) -> bool {
+    matches!(
+        form,
+        Form::Flatte { .. } | Form::Dressed { .. } | Form::Free
+    )
 }
 
 fn wave_parameters(wave: &PartialWave) -> Vec<ParameterSpec> {
@@ -289,7 +403,12 @@ fn wave_parameters(wave: &PartialWave) -> Vec<ParameterSpec> {
             ));
         }
     }
-    match &wave.incoherent {
+    incoherent_parameters(wave.incoherent.as_ref(), &mut all);
+    all
+}
+
+fn incoherent_parameters(background: Option<&IncoherentBackground>, all: &mut Vec<ParameterSpec>) {
+    match background {
         None => {}
         Some(IncoherentBackground::Power { c0_nb, n, .. }) => {
             all.push(spec(
@@ -321,7 +440,6 @@ fn wave_parameters(wave: &PartialWave) -> Vec<ParameterSpec> {
             }
         }
     }
-    all
 }
 
 type Limits = (Option<f64>, Option<f64>);
@@ -365,8 +483,15 @@ fn resonance_parameters(index: u16, resonance: &Resonance, all: &mut Vec<Paramet
         ));
     };
     push(P::Mass, "mass", "GeV", resonance.mass_gev, POSITIVE);
-    push(P::Width, "width", "GeV", resonance.width_gev, POSITIVE);
+    if !width_follows(&resonance.form) {
+        push(P::Width, "width", "GeV", resonance.width_gev, POSITIVE);
+    }
+    for (n, what, unit, value) in form_couplings(&resonance.form) {
+        push(P::Coupling(n), &what, unit, value, POSITIVE);
+    }
     match resonance.strength {
+        Strength::OneWidth { gev } => push(P::Strength, "partial width", "GeV", gev, POSITIVE),
+        Strength::FromForm => {}
         Strength::GammaInBf { gev } => push(
             P::Strength,
             "entrance width times exit fraction",
@@ -399,7 +524,11 @@ fn resonance_parameters(index: u16, resonance: &Resonance, all: &mut Vec<Paramet
     // A mass moves by a part of its width, not of itself.
     for spec in all.iter_mut() {
         if spec.id == ParameterId::Resonance(index, P::Mass) {
-            spec.scale = 0.2 * resonance.width_gev;
+            spec.scale = if resonance.width_gev > 0.0 {
+                0.2 * resonance.width_gev
+            } else {
+                0.01 * resonance.mass_gev
+            };
         }
     }
 }

@@ -1,0 +1,456 @@
+//! Propagators, self-energies and poles against values from outside.
+#![allow(clippy::unwrap_used)] // a test may
+
+use num_complex::Complex64;
+use widthwise_core::amplitude::born::Energy;
+use widthwise_core::amplitude::hypothesis::*;
+use widthwise_core::math;
+use widthwise_core::propagator::Propagator;
+use widthwise_core::propagator::dressed::SelfEnergy;
+use widthwise_core::propagator::kmatrix::PreparedKMatrix;
+use widthwise_core::propagator::loops::PairLoop;
+
+fn c(re: f64, im: f64) -> Complex64 {
+    Complex64::new(re, im)
+}
+
+#[test]
+fn two_point_function_is_its_feynman_integral() {
+    let table = include_str!("../../../tests/reference/two_point.csv");
+    let mut rows = 0;
+    for line in table.lines().filter(|line| !line.starts_with(['#', 'm'])) {
+        let x: Vec<f64> = line.split(',').map(|cell| cell.parse().unwrap()).collect();
+        let pair = PairLoop::new(x[0], x[1], 1.0, "").unwrap();
+        let s = c(x[2], x[3]);
+        let (j, expected) = (pair.j(s), c(x[4], x[5]));
+        assert!(
+            math::abs(j - expected) < 1e-13 * math::abs(expected),
+            "{line}: {j}"
+        );
+        let (slope, expected) = (pair.derivative(s), c(x[6], x[7]));
+        // J' ~ (s_th - s)^(-1/2): the distance to threshold itself is known to rounding only.
+        let threshold = (x[0] + x[1]) * (x[0] + x[1]);
+        let rounding = f64::EPSILON * threshold / math::abs(s - threshold);
+        assert!(
+            math::abs(slope - expected) < (1e-12 + 2.0 * rounding) * math::abs(expected),
+            "{line}: {slope}"
+        );
+        rows += 1;
+    }
+    assert_eq!(rows, 144);
+}
+
+#[test]
+fn two_point_values_by_hand() {
+    // m = 1: J(2) = 2 - pi/2, J(4) = 2; J(5) from an independent calculation; the series s/6 + s^2/60.
+    let pair = PairLoop::new(1.0, 1.0, 1.0, "").unwrap();
+    let j = |s| pair.j(c(s, 0.0));
+    assert!((j(2.0).re - (2.0 - core::f64::consts::FRAC_PI_2)).abs() < 1e-15);
+    assert!((j(4.0).re - 2.0).abs() < 1e-15);
+    assert!(math::abs(j(5.0) - c(1.569591059036, 1.404962946208)) < 1e-12);
+    assert!((j(1e-10).re / (1e-10 / 6.0 + 1e-20 / 60.0) - 1.0).abs() < 1e-14);
+    // Second sheet: continuous through the real axis above threshold.
+    let (above, below) = (pair.j(c(6.0, 0.0)), pair.j_second(c(6.0, -1e-13)));
+    assert!(math::abs(above - below) < 1e-12);
+    // Both massless: J = -ln(-s/scale^2).
+    let light = PairLoop::new(0.0, 0.0, 3.0, "").unwrap();
+    assert!(math::abs(light.j(c(18.0, 0.0)) - c(-math::ln(2.0), core::f64::consts::PI)) < 1e-15);
+    // One massless: limit of a small mass.
+    let (one, small) = (
+        PairLoop::new(1.0, 0.0, 1.0, "").unwrap(),
+        PairLoop::new(1.0, 1e-7, 1.0, "").unwrap(),
+    );
+    for s in [-2.0, 0.1, 0.7, 3.0] {
+        assert!(
+            math::abs(one.j(c(s, 0.0)) - small.j(c(s, 0.0))) < 1e-11,
+            "{s}"
+        );
+        assert!(
+            math::abs(one.derivative(c(s, 0.0)) - small.derivative(c(s, 0.0))) < 1e-10,
+            "{s}"
+        );
+    }
+}
+
+fn fermion(g: f64, m_gev: f64) -> Loop {
+    Loop::Fermion {
+        name: "f".into(),
+        g,
+        m_gev,
+        colours: 1,
+    }
+}
+
+#[test]
+fn on_shell_width_is_the_tree_width() {
+    use widthwise_core::propagator::conventions::Decay;
+    let (mass, m, g) = (3.0, 0.7, 1.3);
+    for pseudoscalar in [false, true] {
+        let energy = SelfEnergy::new(&[fermion(g, m)], pseudoscalar, mass, "").unwrap();
+        let decay = if pseudoscalar {
+            Decay::PseudoscalarToFermions {
+                m_gev: m,
+                colours: 1,
+            }
+        } else {
+            Decay::ScalarToFermions {
+                m_gev: m,
+                colours: 1,
+            }
+        };
+        let tree = decay.width_gev(mass, g);
+        let at_mass = energy.on_sheet(c(mass * mass, 0.0), &[]);
+        assert!((-at_mass.im / mass / tree - 1.0).abs() < 1e-14);
+        assert!(at_mass.re.abs() < 1e-15);
+        assert!((energy.width_gev() / tree - 1.0).abs() < 1e-14);
+        let h = 1e-4;
+        let slope = (energy.on_sheet(c(mass * mass + h, 0.0), &[]).re
+            - energy.on_sheet(c(mass * mass - h, 0.0), &[]).re)
+            / (2.0 * h);
+        assert!(slope.abs() < 1e-9);
+    }
+    let scalar = Loop::Scalar {
+        name: "chi".into(),
+        h_gev: 2.0,
+        m1_gev: 1.0,
+        m2_gev: 0.4,
+        identical: false,
+    };
+    let energy = SelfEnergy::new(&[scalar], false, mass, "").unwrap();
+    let tree = Decay::ToScalars {
+        m1_gev: 1.0,
+        m2_gev: 0.4,
+        identical: false,
+    }
+    .width_gev(mass, 2.0);
+    assert!((energy.width_gev() / tree - 1.0).abs() < 1e-13);
+}
+
+#[test]
+fn scalar_loop_spectral_function_integrates_to_one() {
+    // -(1/pi) int ds Im Delta(s) = 1 for an unstable mediator (no bound pole, no ghost: the scalar
+    // loop falls off), and residue + continuum = 1 for a stable one.
+    let loops = [Loop::Scalar {
+        name: "chi".into(),
+        h_gev: 4.0,
+        m1_gev: 1.0,
+        m2_gev: 1.0,
+        identical: true,
+    }];
+    for mass in [3.0_f64, 1.5] {
+        let energy = SelfEnergy::new(&loops, false, mass, "").unwrap();
+        // s = 4/(1 - y^2), y = 1 - e^-u: both ends smooth.
+        let n = 40_000;
+        let end = 34.0;
+        let mut sum = 0.0;
+        for i in 0..n {
+            let u = end * (f64::from(i) + 0.5) / f64::from(n);
+            let one_minus_y = math::exp(-u);
+            let y = 1.0 - one_minus_y;
+            let bottom = one_minus_y * (1.0 + y);
+            let s = 4.0 / bottom;
+            let jacobian = 8.0 * y / (bottom * bottom) * one_minus_y;
+            let delta = (c(s - mass * mass, 0.0) - energy.on_sheet(c(s, 0.0), &[])).inv();
+            sum -= delta.im * jacobian * end / f64::from(n) / core::f64::consts::PI;
+        }
+        // A stable mediator's pole has residue 1 in the on-shell scheme with real slope 0: the sum rule
+        // is then for the bare field, 1 + continuum = 1/Z with 1/Z = 1 + slope... counted here by the
+        // asymptotic normalisation: Delta -> 1/(s (1 + slope)).
+        let far = 1e18;
+        let norm = far / (far - mass * mass - energy.on_sheet(c(far, 0.0), &[]).re);
+        let pole = if mass < 2.0 { 1.0 } else { 0.0 };
+        assert!(
+            ((sum + pole) / norm - 1.0).abs() < 1e-6,
+            "{mass}: {sum} {norm}"
+        );
+    }
+}
+
+fn poles(form: Form, mass: f64, width: f64) -> widthwise_core::propagator::poles::PoleSearch {
+    Propagator::new(&form, mass, width, "").unwrap().poles()
+}
+
+#[test]
+fn pole_of_the_z() {
+    // Exact: Mb = M/sqrt(1+g^2), Gb = Gamma/sqrt(1+g^2), g = Gamma/M.
+    let (m, g) = (91.1876_f64, 2.4952_f64);
+    let found = poles(Form::MasslessChannels, m, g);
+    assert_eq!(found.poles.len(), 1);
+    let root = (1.0 + g * g / (m * m)).sqrt();
+    assert!((found.poles[0].mass_bar_gev.unwrap() - m / root).abs() < 1e-12);
+    assert!((found.poles[0].width_bar_gev.unwrap() - g / root).abs() < 1e-12);
+    assert!(((m - found.poles[0].mass_gev) * 1e3 - 26.0).abs() < 0.5);
+    let constant = poles(Form::ConstantWidth, m, g);
+    assert!((constant.poles[0].s_gev2 - c(m * m, -m * g)).norm_sqr() < 1e-20);
+    assert!((constant.poles[0].residue.unwrap() - 1.0).norm_sqr() < 1e-24);
+}
+
+#[test]
+fn pole_of_the_rho_by_gounaris_sakurai() {
+    // 775.26/149.1 MeV: 761.3 - i 71.5; PDG T-matrix pole (761-765) - i (71-74).
+    let found = poles(Form::GounarisSakurai { m_gev: 0.13957039 }, 0.77526, 0.1491);
+    let pole = &found.poles[0];
+    assert!((pole.mass_gev * 1e3 - 761.3).abs() < 0.05, "{pole:?}");
+    assert!((pole.width_gev * 500.0 - 71.5).abs() < 0.05, "{pole:?}");
+    assert_eq!(pole.sheet, [false]);
+}
+
+fn f0() -> Form {
+    let channel = |name: &str, g2_gev2, m_gev| FlatteChannel {
+        name: name.into(),
+        g2_gev2,
+        m1_gev: m_gev,
+        m2_gev: m_gev,
+    };
+    Form::Flatte {
+        channels: [
+            channel("pi pi", 0.165, 0.13957039),
+            channel("K K", 4.21 * 0.165, 0.493677),
+        ],
+    }
+}
+
+#[test]
+fn poles_of_the_f0_by_flatte() {
+    // hep-ex/0411001 parameters; poles from an independent calculation: 998.443 - i 17.225 on the
+    // sheet next to the axis at M, 851.328 - i 418.054 beyond the kaon threshold.
+    let found = poles(f0(), 0.965, 0.0);
+    let near = &found.poles[0];
+    assert!((near.mass_gev * 1e3 - 998.443).abs() < 5e-4, "{near:?}");
+    assert!((near.width_gev * 500.0 - 17.225).abs() < 5e-4, "{near:?}");
+    assert_eq!(near.sheet, [false, true]);
+    let third = found
+        .poles
+        .iter()
+        .find(|pole| pole.sheet == [false, false])
+        .unwrap();
+    assert!((third.mass_gev * 1e3 - 851.328).abs() < 5e-4, "{third:?}");
+    assert!(
+        (third.width_gev * 500.0 - 418.054).abs() < 5e-4,
+        "{third:?}"
+    );
+}
+
+#[test]
+fn continuation_meets_the_real_axis() {
+    let running = Form::RunningWidth {
+        channels: vec![
+            WidthChannel {
+                name: "a".into(),
+                fraction: 0.6,
+                shape: ChannelShape::TwoBody(TwoBody {
+                    m1_gev: 0.3,
+                    m2_gev: 0.2,
+                    l: 2,
+                    radius_per_gev: 3.0,
+                }),
+            },
+            WidthChannel {
+                name: "b".into(),
+                fraction: 0.4,
+                shape: ChannelShape::Massless,
+            },
+        ],
+    };
+    let dressed = Form::Dressed {
+        pseudoscalar: true,
+        loops: vec![fermion(1.0, 0.2), fermion(0.7, 0.1)],
+    };
+    for (form, width) in [
+        (running, 0.1),
+        (f0(), 0.0),
+        (Form::GounarisSakurai { m_gev: 0.2 }, 0.1),
+        (dressed, 0.0),
+        (Form::MasslessChannels, 0.1),
+    ] {
+        let propagator = Propagator::new(&form, 0.95, width, "").unwrap();
+        for w in [0.7, 0.94, 1.1, 1.4] {
+            let sheet: Vec<bool> = propagator
+                .branches()
+                .iter()
+                .map(|b| b.threshold_gev >= w)
+                .collect();
+            let on_axis = propagator.inverse_gev2(Energy::at(w));
+            let below = propagator.on_sheet(c(w * w, -1e-12), &sheet).unwrap();
+            assert!(
+                math::abs(on_axis - below) < 1e-10,
+                "{form:?} {w}: {on_axis} {below}"
+            );
+            let first = vec![true; sheet.len()];
+            let above = propagator.on_sheet(c(w * w, 1e-12), &first).unwrap();
+            assert!(
+                math::abs(on_axis - above) < 1e-10,
+                "{form:?} {w}: {on_axis} {above}"
+            );
+        }
+        let found = propagator.poles();
+        assert!(!found.poles.is_empty(), "{form:?}");
+        for pole in found.poles {
+            let zero = propagator.on_sheet(pole.s_gev2, &pole.sheet).unwrap();
+            assert!(math::abs(zero) < 1e-11, "{form:?}");
+        }
+    }
+}
+
+#[test]
+fn limits_of_the_forms() {
+    // One channel of two.
+    let Form::Flatte { mut channels } = f0() else {
+        unreachable!()
+    };
+    channels[1].g2_gev2 = 0.0;
+    let one = Propagator::new(&Form::Flatte { channels }, 0.965, 0.0, "").unwrap();
+    let m_gamma = |w: f64| 0.165 * (1.0 - 4.0 * 0.13957039_f64 * 0.13957039 / (w * w)).sqrt();
+    for w in [0.5, 0.965, 1.2] {
+        assert!((one.inverse_gev2(Energy::at(w)).im - m_gamma(w)).abs() < 1e-15);
+    }
+    // A massless fermion pair from a pseudoscalar runs as the massless-channel form: Im Sigma = -g^2 s/(8 pi).
+    let dressed = Propagator::new(
+        &Form::Dressed {
+            pseudoscalar: true,
+            loops: vec![fermion(0.5, 0.0)],
+        },
+        2.0,
+        0.0,
+        "",
+    )
+    .unwrap();
+    let light = Propagator::new(
+        &Form::Dressed {
+            pseudoscalar: true,
+            loops: vec![fermion(0.5, 1e-6)],
+        },
+        2.0,
+        0.0,
+        "",
+    )
+    .unwrap();
+    for w in [1.0, 2.0, 3.0] {
+        let (a, b) = (
+            dressed.inverse_gev2(Energy::at(w)),
+            light.inverse_gev2(Energy::at(w)),
+        );
+        assert!(math::abs(a - b) < 1e-9, "{w}: {a} {b}");
+        assert!((a.im - 0.25 * w * w / (8.0 * core::f64::consts::PI)).abs() < 1e-15);
+    }
+}
+
+#[test]
+fn on_shell_and_ghost_are_said() {
+    let free = Propagator::new(&Form::Free, 2.0, 0.0, "").unwrap();
+    assert!(
+        free.delta_per_gev2(Energy::at(2.0))
+            .unwrap_err()
+            .message
+            .contains("on shell")
+    );
+    assert!(free.delta_per_gev2(Energy::at(2.1)).is_ok());
+    assert!(free.is_stable() && free.warnings().iter().any(|w| w.code == "stable-mediator"));
+    let strong = Form::Dressed {
+        pseudoscalar: true,
+        loops: vec![fermion(4.0, 0.1)],
+    };
+    let strong = Propagator::new(&strong, 2.0, 0.0, "").unwrap();
+    assert!(
+        strong
+            .warnings()
+            .iter()
+            .any(|w| w.code == "space-like-ghost")
+    );
+    // Exactly at an s-wave threshold the on-shell scheme does not exist.
+    let at_threshold = Form::Dressed {
+        pseudoscalar: true,
+        loops: vec![fermion(1.0, 1.0)],
+    };
+    assert!(Propagator::new(&at_threshold, 2.0, 0.0, "x").is_err());
+    let p_wave = Form::Dressed {
+        pseudoscalar: false,
+        loops: vec![fermion(1.0, 1.0)],
+    };
+    let p_wave = Propagator::new(&p_wave, 2.0, 0.0, "x").unwrap();
+    assert!(p_wave.inverse_gev2(Energy::at(2.5)).im > 0.0);
+    assert!(Propagator::new(&f0(), 0.965, 0.1, "x").is_err());
+}
+
+fn two_channels(chew_mandelstam: bool) -> KMatrix {
+    let channel = |name: &str, m_gev| KChannel {
+        name: name.into(),
+        m1_gev: m_gev,
+        m2_gev: m_gev,
+    };
+    KMatrix {
+        twice_j: 0,
+        poles: vec![
+            KPole {
+                mass_gev: 0.95,
+                g1_gev: 0.3,
+                g2_gev: 0.5,
+            },
+            KPole {
+                mass_gev: 1.4,
+                g1_gev: 0.5,
+                g2_gev: -0.2,
+            },
+        ],
+        constant: [0.3, -0.2, 0.1],
+        channels: [channel("pi pi", 0.13957), channel("K K", 0.493677)],
+        chew_mandelstam,
+        entrance: 0,
+        exit: 1,
+        incoherent: None,
+    }
+}
+
+#[test]
+fn kmatrix_is_unitary_and_finite_at_its_poles() {
+    for chew_mandelstam in [true, false] {
+        let matrix = PreparedKMatrix::new(&two_channels(chew_mandelstam), "").unwrap();
+        for i in 0..400 {
+            let w = 0.3 + 0.004 * f64::from(i);
+            let at = matrix.at(w);
+            assert!(
+                at.unitarity_defect() < 1e-12,
+                "{w}: {}",
+                at.unitarity_defect()
+            );
+        }
+        for mass in [0.95, 1.4] {
+            let (at, near) = (matrix.at(mass), matrix.at(mass + 1e-10));
+            for (a, b) in at.t.iter().zip(near.t) {
+                assert!(a.re.is_finite() && math::abs(a - b) < 1e-7 * (1.0 + math::abs(b)));
+            }
+        }
+        for search in matrix.poles() {
+            assert!(!search.poles.is_empty(), "{}", search.message);
+        }
+    }
+}
+
+#[test]
+fn kmatrix_with_one_channel_is_the_flatte_form() {
+    // One pole, i rho, no constant: T_12 = g1 g2/(M^2 - s - i(g1^2 rho1 + g2^2 rho2)) = -g1 g2 Delta.
+    let mut model = two_channels(false);
+    model.poles.truncate(1);
+    model.constant = [0.0; 3];
+    let matrix = PreparedKMatrix::new(&model, "").unwrap();
+    let Form::Flatte { mut channels } = f0() else {
+        unreachable!()
+    };
+    channels[0].g2_gev2 = 0.09;
+    channels[1].g2_gev2 = 0.25;
+    channels[0].m1_gev = 0.13957;
+    channels[0].m2_gev = 0.13957;
+    let flatte = Propagator::new(&Form::Flatte { channels }, 0.95, 0.0, "").unwrap();
+    for w in [0.5, 0.9, 0.98, 0.99, 1.3] {
+        let expected = -flatte.inverse_gev2(Energy::at(w)).inv() * 0.15;
+        assert!(math::abs(matrix.at(w).t[1] - expected) < 1e-13, "{w}");
+    }
+    let mut twice = two_channels(true);
+    twice.poles[1].mass_gev = 0.95;
+    assert!(
+        PreparedKMatrix::new(&twice, "")
+            .unwrap_err()
+            .message
+            .contains("coincide")
+    );
+}
