@@ -217,7 +217,9 @@ fn cmd3_phi_scan() {
     assert_eq!(result.degrees_of_freedom, 21);
     assert!(result.stop.is_minimum());
 
-    let Hypothesis::PartialWave(wave) = &mut scan.hypothesis;
+    let Hypothesis::PartialWave(wave) = &mut scan.hypothesis else {
+        unreachable!()
+    };
     wave.coherent = None;
     settings.free.pop();
     let result = fit(&scan, &settings).unwrap();

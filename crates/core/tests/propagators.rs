@@ -2,6 +2,7 @@
 #![allow(clippy::unwrap_used)] // a test may
 
 use num_complex::Complex64;
+use serde_json::Value;
 use widthwise_core::amplitude::born::Energy;
 use widthwise_core::amplitude::hypothesis::*;
 use widthwise_core::math;
@@ -14,30 +15,296 @@ fn c(re: f64, im: f64) -> Complex64 {
     Complex64::new(re, im)
 }
 
-#[test]
-fn two_point_function_is_its_feynman_integral() {
-    let table = include_str!("../../../tests/reference/two_point.csv");
-    let mut rows = 0;
-    for line in table.lines().filter(|line| !line.starts_with(['#', 'm'])) {
-        let x: Vec<f64> = line.split(',').map(|cell| cell.parse().unwrap()).collect();
-        let pair = PairLoop::new(x[0], x[1], 1.0, "").unwrap();
-        let s = c(x[2], x[3]);
-        let (j, expected) = (pair.j(s), c(x[4], x[5]));
-        assert!(
-            math::abs(j - expected) < 1e-13 * math::abs(expected),
-            "{line}: {j}"
-        );
-        let (slope, expected) = (pair.derivative(s), c(x[6], x[7]));
-        // J' ~ (s_th - s)^(-1/2): the distance to threshold itself is known to rounding only.
-        let threshold = (x[0] + x[1]) * (x[0] + x[1]);
-        let rounding = f64::EPSILON * threshold / math::abs(s - threshold);
-        assert!(
-            math::abs(slope - expected) < (1e-12 + 2.0 * rounding) * math::abs(expected),
-            "{line}: {slope}"
-        );
-        rows += 1;
+fn json(text: &str) -> Value {
+    serde_json::from_str(text).unwrap()
+}
+
+fn number(value: &Value) -> f64 {
+    value.as_f64().unwrap()
+}
+
+fn complex(value: &Value) -> Complex64 {
+    match value.as_array() {
+        Some(parts) => c(number(&parts[0]), number(&parts[1])),
+        None => c(number(value), 0.0),
     }
-    assert_eq!(rows, 144);
+}
+
+fn list(value: &Value) -> &Vec<Value> {
+    value.as_array().unwrap()
+}
+
+/// Dispersion integrals in mpmath, only the imaginary part goes in (tests/reference/self_energy.py).
+fn self_energies() -> Value {
+    json(include_str!("../../../tests/reference/self_energy.json"))
+}
+
+/// Denominators and poles in mpmath (tests/reference/poles.py).
+fn pole_table() -> Value {
+    json(include_str!("../../../tests/reference/poles.json"))
+}
+
+#[test]
+fn two_point_function_is_its_dispersion_integral() {
+    let table = self_energies();
+    let mut rows = 0;
+    let mut check = |pair: &PairLoop, s: f64, expected: Complex64| {
+        let j = pair.j(c(s, 0.0));
+        // J moves as the root of the distance to threshold, which is known to rounding only.
+        let threshold = pair.threshold2_gev2();
+        let rounding =
+            f64::EPSILON * threshold / (s - threshold).abs().max(f64::EPSILON * threshold);
+        let tolerance =
+            1e-12 * math::abs(expected).min(1.0) + 4.0 * rounding.sqrt() * f64::EPSILON.sqrt();
+        assert!(math::abs(j - expected) < tolerance, "{s}: {j} {expected}");
+        rows += 1;
+    };
+    let unit = PairLoop::new(1.0, 1.0, 1.0, "").unwrap();
+    for row in list(&table["j_at_m_1"]) {
+        check(&unit, number(&row["s"]), complex(&row["j"]));
+    }
+    for row in list(&table["b0_difference"]) {
+        let pair = PairLoop::new(number(&row["m1_gev"]), number(&row["m2_gev"]), 1.0, "").unwrap();
+        check(
+            &pair,
+            number(&row["s_gev2"]),
+            complex(&row["b0_minus_b0_at_0"]),
+        );
+    }
+    assert!(rows >= 60);
+}
+
+#[test]
+fn slope_of_the_two_point_function() {
+    // Against a central difference of J itself, checked above.
+    for (m1, m2) in [(1.0, 1.0), (1.0, 0.3), (0.5, 0.45), (1.0, 0.0), (0.0, 0.0)] {
+        let pair = PairLoop::new(m1, m2, 1.0, "").unwrap();
+        for s in [
+            c(-3.0, 0.0),
+            c(0.05, 0.0),
+            c(0.7, 0.0),
+            c(9.0, 0.0),
+            c(2.0, 0.7),
+            c(0.1, -0.3),
+        ] {
+            let h = 1e-4;
+            let difference = (pair.j(s - 2.0 * h) - pair.j(s + 2.0 * h)
+                + (pair.j(s + h) - pair.j(s - h)) * 8.0)
+                / (12.0 * h);
+            assert!(
+                math::abs(pair.derivative(s) - difference) < 1e-9 * (1.0 + math::abs(difference)),
+                "{m1} {m2} {s}"
+            );
+        }
+    }
+}
+
+#[test]
+fn dressed_mediators_are_their_dispersion_integrals() {
+    let table = self_energies();
+    for case in list(&table["dressed"]) {
+        let mass = number(&case["mass_gev"]);
+        let mut pseudoscalar = false;
+        let loops: Vec<Loop> = list(&case["loops"])
+            .iter()
+            .map(|of| {
+                let kind = of["kind"].as_str().unwrap();
+                pseudoscalar |= kind == "fermion_pseudoscalar";
+                let (coupling, m1) = (number(&of["coupling"]), number(&of["m1_gev"]));
+                if kind == "scalar" {
+                    Loop::Scalar {
+                        name: kind.into(),
+                        h_gev: coupling,
+                        m1_gev: m1,
+                        m2_gev: number(&of["m2_gev"]),
+                        identical: of["identical"].as_bool().unwrap(),
+                    }
+                } else {
+                    fermion(coupling, m1)
+                }
+            })
+            .collect();
+        let energy = SelfEnergy::new(&loops, pseudoscalar, mass, "").unwrap();
+        let width = number(&case["width_tree_gev"]);
+        assert!(
+            (energy.width_gev() - width).abs() <= 1e-13 * width,
+            "{}",
+            case["name"]
+        );
+        for point in list(&case["points"]) {
+            let s = complex(&point["s_gev2"]);
+            let Some(expected) = point.get("sigma_os_gev2") else {
+                continue;
+            };
+            let ours = energy.on_sheet(s, &[]);
+            // Subtraction cancels: relative to the unsubtracted size. Exactly at a threshold an
+            // s wave moves as the root of a distance that is known to rounding only.
+            let scale = (math::abs(complex(expected)) + 1e-2).max(math::abs(s) * 1e-2);
+            let at_threshold = energy.loops().iter().any(|of| {
+                let threshold = of.threshold_gev() * of.threshold_gev();
+                math::abs(s - threshold) < 1e-12 * threshold
+            });
+            let tolerance = if at_threshold { 1e-7 } else { 1e-12 };
+            assert!(
+                math::abs(ours - complex(expected)) < tolerance * scale,
+                "{} {s}: {ours} {expected}",
+                case["name"]
+            );
+        }
+    }
+}
+
+fn compare_poles(case: &Value, propagator: &Propagator) {
+    let found = propagator.poles();
+    for pole in list(&case["poles"]) {
+        let expected = complex(&pole["sqrt_s_r_gev"]);
+        let sheet: Vec<bool> = list(&pole["sheet"])
+            .iter()
+            .map(|sign| number(sign) > 0.0)
+            .collect();
+        let ours = found
+            .poles
+            .iter()
+            .find(|ours| {
+                (ours.mass_gev - expected.re).abs() + (0.5 * ours.width_gev + expected.im).abs()
+                    < 1e-9
+            })
+            .unwrap_or_else(|| unreachable!("{pole} not in {found:?}"));
+        assert_eq!(ours.sheet, sheet);
+        assert!((ours.width_gev - number(&pole["gamma_pole_gev"])).abs() < 1e-11);
+        if let Some(mass_bar) = pole["m_bar_gev"].as_f64() {
+            assert!((ours.mass_bar_gev.unwrap() - mass_bar).abs() < 1e-11);
+            assert!((ours.width_bar_gev.unwrap() - number(&pole["gamma_bar_gev"])).abs() < 1e-11);
+        }
+        let residue = ours.residue.unwrap();
+        assert!(
+            math::abs(residue - complex(&pole["residue"])) < 1e-9,
+            "{residue} {pole}"
+        );
+    }
+}
+
+fn compare_delta(case: &Value, propagator: &Propagator) {
+    for point in list(&case["delta"]) {
+        let w = number(&point["w_gev"]);
+        let expected = complex(&point["delta"]);
+        let ours = propagator.delta_per_gev2(Energy::at(w)).unwrap();
+        // W itself is rounded: near a narrow pole that is eps M/Gamma.
+        assert!(
+            math::abs(ours - expected) < 1e-11 * math::abs(expected),
+            "{w}: {ours} {expected}"
+        );
+    }
+}
+
+#[test]
+fn denominators_and_poles_of_the_table() {
+    let table = pole_table();
+    let z = &table["Z, massless channels"];
+    compare_poles(
+        z,
+        &Propagator::new(
+            &Form::MasslessChannels,
+            number(&z["mass_gev"]),
+            number(&z["width_gev"]),
+            "",
+        )
+        .unwrap(),
+    );
+    let rho = &table["rho, Gounaris-Sakurai"];
+    let form = Form::GounarisSakurai {
+        m_gev: number(&rho["pion_mass_gev"]),
+    };
+    let gs = Propagator::new(
+        &form,
+        number(&rho["mass_gev"]),
+        number(&rho["width_gev"]),
+        "",
+    )
+    .unwrap();
+    compare_poles(rho, &gs);
+    compare_delta(rho, &gs);
+    let f = &table["f0(980), Flatte"];
+    let flatte = Propagator::new(&f0(), number(&f["mass_gev"]), 0.0, "").unwrap();
+    compare_poles(f, &flatte);
+    for case in list(&table["running widths"]) {
+        let channels = list(&case["channels"])
+            .iter()
+            .map(|channel| WidthChannel {
+                name: "c".into(),
+                fraction: number(&channel["fraction"]),
+                shape: ChannelShape::TwoBody(TwoBody {
+                    m1_gev: number(&channel["m1_gev"]),
+                    m2_gev: number(&channel["m2_gev"]),
+                    l: channel["l"].as_u64().unwrap() as u8,
+                    radius_per_gev: number(&channel["radius_per_gev"]),
+                }),
+            })
+            .collect();
+        let form = Form::RunningWidth { channels };
+        let running = Propagator::new(
+            &form,
+            number(&case["mass_gev"]),
+            number(&case["width_gev"]),
+            "",
+        )
+        .unwrap();
+        compare_poles(case, &running);
+        compare_delta(case, &running);
+    }
+    for row in list(&table["Chew-Mandelstam"]) {
+        let pair = PairLoop::new(number(&row["m1_gev"]), number(&row["m2_gev"]), 1.0, "").unwrap();
+        let cm = pair.j_from_threshold(c(number(&row["s_gev2"]), 0.0)) / core::f64::consts::PI;
+        assert!(
+            math::abs(cm - complex(&row["cm"])) < 1e-12 * (1.0 + math::abs(cm)),
+            "{row} {cm}"
+        );
+    }
+}
+
+#[test]
+fn kmatrix_of_the_table() {
+    let table = pole_table();
+    for case in list(&table["K-matrix"]) {
+        for (chew_mandelstam, key) in [(true, "t_chew_mandelstam"), (false, "t_i_rho")] {
+            let channel = |i: usize| KChannel {
+                name: "c".into(),
+                m1_gev: number(&case["channels_gev"][i][0]),
+                m2_gev: number(&case["channels_gev"][i][1]),
+            };
+            let model = KMatrix {
+                poles: list(&case["poles_of_k"])
+                    .iter()
+                    .map(|pole| KPole {
+                        mass_gev: number(&pole["mass_gev"]),
+                        g1_gev: number(&pole["g_gev"][0]),
+                        g2_gev: number(&pole["g_gev"][1]),
+                    })
+                    .collect(),
+                constant: [
+                    number(&case["c"][0][0]),
+                    number(&case["c"][0][1]),
+                    number(&case["c"][1][1]),
+                ],
+                channels: [channel(0), channel(1)],
+                ..two_channels(chew_mandelstam)
+            };
+            let matrix = PreparedKMatrix::new(&model, "").unwrap();
+            for point in list(&case["points"]) {
+                let at = matrix.at(number(&point["w_gev"]));
+                let expected = &point[key];
+                for (ours, expected) in
+                    at.t.iter()
+                        .zip([&expected[0][0], &expected[0][1], &expected[1][1]])
+                {
+                    assert!(
+                        math::abs(ours - complex(expected)) < 1e-11 * (1.0 + math::abs(*ours)),
+                        "{point} {ours}"
+                    );
+                }
+            }
+        }
+    }
 }
 
 #[test]
