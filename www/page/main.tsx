@@ -1,3 +1,4 @@
+import "./language";
 import { boot } from "./bridge/boot";
 import { start } from "./start";
 import "./style/index.css";
