@@ -1,8 +1,10 @@
 //! The scan sheet: the one document that page, batch program and tests read.
 //!
 //! * [`doc`] - the document itself: every number is the text a person typed, unit included.
+//! * [`quantity`] - numbers with units as people type them, read and written.
 //! * [`requests`] - what can be asked of a sheet, and the answers; the page's worker and the
 //!   batch program are thin shells over it.
 
 pub mod doc;
+pub mod quantity;
 pub mod requests;
