@@ -2,9 +2,14 @@
 //!
 //! * [`doc`] - the document itself: every number is the text a person typed, unit included.
 //! * [`quantity`] - numbers with units as people type them, read and written.
+//! * [`limits`] - the one table of what every number may be.
+//! * [`particles`] - common beam and final-state particles.
+//! * [`check`] - from the sheet to the core's scan, or everything that is wrong with it.
 //! * [`requests`] - what can be asked of a sheet, and the answers; the page's worker and the
 //!   batch program are thin shells over it.
 
 pub mod doc;
+pub mod limits;
+pub mod particles;
 pub mod quantity;
 pub mod requests;

@@ -23,6 +23,27 @@ pub struct Data {
     /// Energy error common to a fill or group.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub group_energy_error: Option<Quantity>,
+    /// Relative error of the energy scale common to all rows (W becomes W (1 + r)).
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub common_slope_error: Option<Quantity>,
+    /// Relative scale error common to a fill or group.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub group_scale_error: Option<Quantity>,
+    /// Relative luminosity error common to all rows (signal and background cross section).
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub common_luminosity_error: Option<Quantity>,
+    /// Relative luminosity error common to a fill or group.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub group_luminosity_error: Option<Quantity>,
+    /// Error of d ln(efficiency)/dW (1/MeV).
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub efficiency_slope_error: Option<Quantity>,
+    /// Relative error of sigma_W of each row on its own.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub point_spread_error: Option<Quantity>,
+    /// Scale factors are 1 + delta eta (Gaussian) instead of exp(delta eta).
+    #[serde(skip_serializing_if = "core::ops::Not::not")]
+    pub gaussian_factors: bool,
     /// Which luminosity counts where rows bring both.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub luminosity_source: Option<LuminositySource>,
@@ -32,6 +53,9 @@ pub struct Data {
     /// Pasted covariance of the rows' cross sections (row by row, with unit).
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub covariance: Vec<Vec<Quantity>>,
+    /// Pasted covariance of the rows' energies (row by row, with unit), beside the rows' own errors.
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    pub energy_covariance: Vec<Vec<Quantity>>,
 }
 
 /// How far the data are corrected.

@@ -20,6 +20,8 @@ pub enum Dimension {
     CrossSectionPerEnergy(u8),
     /// Covariances of cross sections; nb^2.
     CrossSectionSquared,
+    /// Covariances of energies; GeV^2.
+    EnergySquared,
     /// Integrated luminosity; 1/nb.
     Luminosity,
     /// Instantaneous luminosity; 1/nb per hour.
@@ -55,6 +57,7 @@ impl Dimension {
             Self::Momentum => "GeV/c",
             Self::CrossSection | Self::CrossSectionPerEnergy(_) => "nb",
             Self::CrossSectionSquared => "nb^2",
+            Self::EnergySquared => "GeV^2",
             Self::Luminosity => "nb^-1",
             Self::LuminosityRate => "nb^-1/h",
             Self::Time => "h",
@@ -76,6 +79,7 @@ impl Dimension {
                 "fb, pb, nb, ub, mb (per GeV^i understood, or nb/MeV)"
             }
             Self::CrossSectionSquared => "nb^2, pb^2",
+            Self::EnergySquared => "keV^2, MeV^2, GeV^2",
             Self::Luminosity => "fb^-1, pb^-1, nb^-1, ub^-1, cm^-2",
             Self::LuminosityRate => "cm^-2 s^-1, nb^-1/h, pb^-1/h, nb^-1/s",
             Self::Time => "s, min, h, d, or 1h20",
@@ -95,6 +99,7 @@ impl Dimension {
             Self::Momentum => "a momentum",
             Self::CrossSection | Self::CrossSectionPerEnergy(_) => "a cross section",
             Self::CrossSectionSquared => "a squared cross section",
+            Self::EnergySquared => "a squared energy",
             Self::Luminosity => "an integrated luminosity",
             Self::LuminosityRate => "a luminosity (per time)",
             Self::Time => "a time",
@@ -113,6 +118,7 @@ impl Dimension {
             Self::Energy,
             Self::CrossSection,
             Self::CrossSectionSquared,
+            Self::EnergySquared,
             Self::Luminosity,
             Self::LuminosityRate,
             Self::Time,
@@ -154,6 +160,7 @@ impl Dimension {
             Self::CrossSection if same(dims(0, 2, 0, 0, 0)) => scale(33, 1, 1.0),
             Self::CrossSectionPerEnergy(i) if slope(i, 2) => scale(33, 1, 1.0),
             Self::CrossSectionSquared if same(dims(0, 4, 0, 0, 0)) => scale(66, 1, 1.0),
+            Self::EnergySquared if same(dims(2, 0, 0, 0, 0)) => scale(0, 1, 1.0),
             Self::Luminosity if same(dims(0, -2, 0, 0, 0)) => scale(-33, 1, 1.0),
             Self::LuminosityRate if same(dims(0, -2, -1, 0, 0)) => scale(-33, 3600, 1.0),
             Self::Time if same(dims(0, 0, 1, 0, 0)) => Some(Conversion {
