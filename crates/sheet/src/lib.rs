@@ -8,8 +8,14 @@
 //! * [`requests`] - what can be asked of a sheet, and the answers; the page's worker and the
 //!   batch program are thin shells over it.
 
+pub mod check;
+pub mod demos;
 pub mod doc;
+pub mod json;
 pub mod limits;
 pub mod particles;
 pub mod quantity;
 pub mod requests;
+#[cfg(test)]
+mod schema;
+pub mod times;

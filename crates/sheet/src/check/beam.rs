@@ -135,7 +135,12 @@ fn particle(path: &str, choice: &ParticleChoice, log: &mut Log) -> Option<BeamPa
     let typed_spin = match choice.spin.as_deref().map(|text| (text, twice(text))) {
         Some((_, Some(twice_spin))) => Some(twice_spin),
         Some((text, None)) => {
-            log.refuse(&spin_path, text, "0, 1/2, 1, 3/2, ... up to 10", "this is no spin");
+            log.refuse(
+                &spin_path,
+                text,
+                "0, 1/2, 1, 3/2, ... up to 10",
+                "this is no spin",
+            );
             return None;
         }
         None => None,
@@ -153,7 +158,10 @@ fn particle(path: &str, choice: &ParticleChoice, log: &mut Log) -> Option<BeamPa
                 &field,
                 "",
                 "a particle of the table, or mass and spin",
-                format!("\"{}\" is not in the table, so its {what} is needed", choice.name),
+                format!(
+                    "\"{}\" is not in the table, so its {what} is needed",
+                    choice.name
+                ),
             );
             return None;
         }
@@ -220,7 +228,12 @@ pub fn spread(
         Some("1") => Some(1.0),
         Some("2") => Some(2.0),
         Some(other) => {
-            log.refuse("beam.spread.power", other, "0, 1 or 2", "the spread grows as W to the power 0, 1 or 2");
+            log.refuse(
+                "beam.spread.power",
+                other,
+                "0, 1 or 2",
+                "the spread grows as W to the power 0, 1 or 2",
+            );
             return None;
         }
     };

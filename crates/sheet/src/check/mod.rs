@@ -13,7 +13,7 @@ mod model;
 mod resonance;
 mod rows;
 
-pub use beam::{Frame, dial_dimension};
+pub use beam::{Frame, dial_dimension, setting_kind};
 pub use rows::RowReading;
 
 use crate::doc::Sheet;
@@ -61,7 +61,11 @@ impl Understood {
             return Err(problems);
         };
         let used: Vec<usize> = (0..self.rows.len())
-            .filter(|i| self.rows.get(*i).is_some_and(|r| !r.left_out && r.point.is_some()))
+            .filter(|i| {
+                self.rows
+                    .get(*i)
+                    .is_some_and(|r| !r.left_out && r.point.is_some())
+            })
             .collect();
         let points = used
             .iter()

@@ -20,7 +20,12 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
     let before = log.problems.len();
     let twice_j = twice(&model.j);
     if twice_j.is_none() {
-        log.refuse("model.j", &model.j, "0, 1/2, 1, 3/2, ... up to 10", "this is no angular momentum");
+        log.refuse(
+            "model.j",
+            &model.j,
+            "0, 1/2, 1, 3/2, ... up to 10",
+            "this is no angular momentum",
+        );
     }
     if model.resonances.is_empty() {
         log.refuse(
@@ -35,7 +40,9 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
         .resonances
         .iter()
         .enumerate()
-        .filter_map(|(i, r)| resonance::resonance(&format!("model.resonances[{i}]"), r, leptons, log))
+        .filter_map(|(i, r)| {
+            resonance::resonance(&format!("model.resonances[{i}]"), r, leptons, log)
+        })
         .collect();
     let coherent = model.coherent.as_ref().and_then(|c| coherent(c, log));
     let incoherent = model.incoherent.as_ref().and_then(|c| incoherent(c, log));

@@ -64,9 +64,8 @@ pub fn resonance(
 }
 
 fn strength(path: &str, strength: &doc::Strength, log: &mut Log) -> Strength {
-    let mut value = |field: &str, text: &str, dimension| {
-        log.value(&format!("{path}.{field}"), text, dimension)
-    };
+    let mut value =
+        |field: &str, text: &str, dimension| log.value(&format!("{path}.{field}"), text, dimension);
     match strength {
         doc::Strength::GammaInBf { value: text } => Strength::GammaInBf {
             gev: value("value", text, Energy),

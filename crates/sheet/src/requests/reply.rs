@@ -1,95 +1,10 @@
-//! What can be asked of a sheet, and the answers. Page and batch program send the same requests.
+//! Answers.
 
 use crate::doc::{Row, Sheet};
+use crate::quantity::unit::Unit;
+use crate::quantity::{Dimension, format};
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Refusal, Warning};
-
-/// One request. The sheet travels as the document itself.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
-#[serde(tag = "kind", rename_all = "snake_case")]
-pub enum Request {
-    /// Which particles are known, what every parameter may be, which units are understood.
-    Tables,
-    /// Reads a file's text as a sheet; answers with the sheet or with what is wrong.
-    Open {
-        /// Text of the file.
-        text: String,
-    },
-    /// Everything that is wrong with the sheet, and what was understood.
-    Check {
-        /// The sheet.
-        sheet: Sheet,
-    },
-    /// The curve between two energies.
-    Curve {
-        /// The sheet.
-        sheet: Sheet,
-        /// From, GeV.
-        from_gev: f64,
-        /// To, GeV.
-        to_gev: f64,
-        /// Number of energies, 2 to 20,000.
-        points: u32,
-    },
-    /// Everything about one W: contributions, dial, rate, derivative.
-    Cursor {
-        /// The sheet.
-        sheet: Sheet,
-        /// W, GeV.
-        w_gev: f64,
-    },
-    /// Converts one setting into all others.
-    Convert {
-        /// The sheet (its beams).
-        sheet: Sheet,
-        /// Kind of the value.
-        from: crate::doc::Dial,
-        /// The value as typed.
-        value: String,
-    },
-    /// Per row: W, dial, expected, seen, pull, p-value, times.
-    Points {
-        /// The sheet.
-        sheet: Sheet,
-    },
-    /// The fit.
-    Fit {
-        /// The sheet.
-        sheet: Sheet,
-    },
-    /// Reads a table (CSV or pasted cells): how each column was understood, and the rows.
-    ReadTable {
-        /// The sheet the rows will join.
-        sheet: Sheet,
-        /// Text of the table.
-        text: String,
-        /// Answers to questions asked before: (column header, meaning).
-        answers: Vec<(String, String)>,
-    },
-    /// A table as CSV text (RFC 4180, units in headers).
-    WriteTable {
-        /// The sheet.
-        sheet: Sheet,
-        /// Which table.
-        table: Table,
-    },
-}
-
-/// Tables that can be taken away.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
-#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
-#[serde(rename_all = "snake_case")]
-pub enum Table {
-    /// The data rows.
-    Rows,
-    /// The curve over the data's range.
-    Curve,
-    /// The fit's result.
-    Fit,
-    /// Lines for an electronic log.
-    Log,
-}
 
 /// A column of numbers that leaves as one transferred array.
 #[derive(Debug, Clone, PartialEq)]
@@ -213,8 +128,32 @@ pub struct Named {
     pub name: String,
     /// Value.
     pub value: f64,
+    /// Standard error in the same unit, where it has one.
+    pub error: Option<f64>,
     /// Unit of the value.
     pub unit: String,
+    /// For the eye: "14.76 nb".
+    pub text: String,
+}
+
+impl Named {
+    /// A number of the core with its text for the eye.
+    #[must_use]
+    pub fn new(
+        name: impl Into<String>,
+        value: f64,
+        dimension: Dimension,
+        unit: Option<&Unit>,
+        digits: usize,
+    ) -> Self {
+        Self {
+            name: name.into(),
+            value,
+            error: None,
+            unit: dimension.core_unit().to_string(),
+            text: format::for_the_eye(value, None, dimension, unit, digits),
+        }
+    }
 }
 
 /// A particle of the table.
@@ -243,8 +182,12 @@ pub struct KnownLimit {
     pub unit: String,
     /// Least value.
     pub least: f64,
-    /// Largest value.
+    /// Whether the least value itself is allowed.
+    pub least_allowed: bool,
+    /// Largest value, allowed.
     pub largest: f64,
+    /// Whole numbers only.
+    pub whole: bool,
     /// What is allowed and why, one sentence.
     pub why: String,
 }
