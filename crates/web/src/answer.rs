@@ -4,19 +4,7 @@ use js_sys::{Array, Float64Array, Object, Reflect};
 use serde::Serialize;
 use wasm_bindgen::JsValue;
 use widthwise_core::error::Refusal;
-use widthwise_sheet::requests::{Column, Reply, Request};
-
-/// Answers a request, telling `_progress(done, total)` as long work moves on.
-pub fn answer(request: &Request, _progress: &mut dyn FnMut(u32, u32)) -> Result<Reply, Refusal> {
-    let name = format!("{request:?}");
-    let name = name.split([' ', '{']).next().unwrap_or_default();
-    Err(Refusal::new(
-        "",
-        name,
-        "",
-        "This request has no answer yet.",
-    ))
-}
+use widthwise_sheet::requests::{Column, Reply};
 
 /// What to say about a request that is not one of ours.
 pub fn unreadable(error: &serde_wasm_bindgen::Error) -> Refusal {

@@ -5,7 +5,7 @@ mod answer;
 mod scope;
 
 use wasm_bindgen::prelude::*;
-use widthwise_sheet::requests::Request;
+use widthwise_sheet::requests::{self, Request};
 
 /// Runs once per instance: a panic's text goes to the page before the trap that follows it.
 #[wasm_bindgen(start)]
@@ -24,7 +24,7 @@ pub fn start() {
 pub fn run(id: f64, request: JsValue) -> Result<JsValue, JsValue> {
     let request: Request = serde_wasm_bindgen::from_value(request)
         .map_err(|error| answer::refused(&answer::unreadable(&error)))?;
-    let reply = answer::answer(&request, &mut |done, total| {
+    let reply = requests::answer(&request, &mut |done, total| {
         scope::post_progress(id, done, total)
     })
     .map_err(|refusal| answer::refused(&refusal))?;

@@ -28,6 +28,34 @@ common_scale_error: string | null,
  */
 group_energy_error: string | null, 
 /**
+ * Relative error of the energy scale common to all rows (W becomes W (1 + r)).
+ */
+common_slope_error: string | null, 
+/**
+ * Relative scale error common to a fill or group.
+ */
+group_scale_error: string | null, 
+/**
+ * Relative luminosity error common to all rows (signal and background cross section).
+ */
+common_luminosity_error: string | null, 
+/**
+ * Relative luminosity error common to a fill or group.
+ */
+group_luminosity_error: string | null, 
+/**
+ * Error of d ln(efficiency)/dW (1/MeV).
+ */
+efficiency_slope_error: string | null, 
+/**
+ * Relative error of sigma_W of each row on its own.
+ */
+point_spread_error: string | null, 
+/**
+ * Scale factors are 1 + delta eta (Gaussian) instead of exp(delta eta).
+ */
+gaussian_factors: boolean, 
+/**
  * Which luminosity counts where rows bring both.
  */
 luminosity_source: LuminositySource | null, 
@@ -38,4 +66,8 @@ rows: Array<Row>,
 /**
  * Pasted covariance of the rows' cross sections (row by row, with unit).
  */
-covariance: Array<Array<string>>, };
+covariance: Array<Array<string>>, 
+/**
+ * Pasted covariance of the rows' energies (row by row, with unit), beside the rows' own errors.
+ */
+energy_covariance: Array<Array<string>>, };

@@ -21,9 +21,17 @@ unit: string,
  */
 least: number, 
 /**
- * Largest value.
+ * Whether the least value itself is allowed.
+ */
+least_allowed: boolean, 
+/**
+ * Largest value, allowed.
  */
 largest: number, 
+/**
+ * Whole numbers only.
+ */
+whole: boolean, 
 /**
  * What is allowed and why, one sentence.
  */

@@ -13,6 +13,14 @@ name: string,
  */
 value: number, 
 /**
+ * Standard error in the same unit, where it has one.
+ */
+error: number | null, 
+/**
  * Unit of the value.
  */
-unit: string, };
+unit: string, 
+/**
+ * For the eye: "14.76 nb".
+ */
+text: string, };
