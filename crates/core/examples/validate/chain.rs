@@ -76,8 +76,7 @@ pub fn rows() -> Vec<Row> {
                 .cross_sections(born.as_ref(), &w_gev, None, Stage::Observed)
                 .unwrap()
         };
-        let (radiated, observed, default) =
-            (values(&monochromatic), values(&fine), values(&usual));
+        let (radiated, observed, default) = (values(&monochromatic), values(&fine), values(&usual));
         for (i, point) in points.iter().enumerate() {
             let offset_gev = number(&point["offset_gev"]);
             let energy = Energy {
