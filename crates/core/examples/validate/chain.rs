@@ -1,11 +1,14 @@
 //! Born, radiated and observed cross sections against nested quadrature.
 
-use crate::{Row, number, table};
+use crate::{Row, list, number, table};
 use widthwise_core::amplitude::born::Energy;
-use widthwise_core::amplitude::hypothesis::Hypothesis;
-use widthwise_core::beam::Beams;
+use widthwise_core::amplitude::hypothesis::{
+    CoherentBackground, Form, Hypothesis, PartialWave, Resonance, Strength, Vertex,
+};
+use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
 use widthwise_core::line_shape::Chain;
 use widthwise_core::scan::{ChainSettings, Spread, Stage};
+use widthwise_core::units::M_ELECTRON_GEV;
 
 const SOURCE: &str =
     "tests/reference/lineshape_nested.py: composite Gauss-Legendre, own error below 2e-10";
@@ -43,7 +46,7 @@ pub fn rows() -> Vec<Row> {
         1.0,
         "the accuracy that is claimed bounds the true error",
     );
-    let file = table("lineshape_nested.json");
+    let file = table!("lineshape_nested.json");
     for case in file["cases"].as_array().unwrap() {
         let name = case["name"].as_str().unwrap();
         let scan = &case["scan"];
@@ -96,4 +99,70 @@ pub fn rows() -> Vec<Row> {
         }
     }
     vec![born_row, radiated_row, observed_row, default_row]
+}
+
+/// The map of random points, every `stride`-th.
+pub fn map(stride: usize) -> Row {
+    let mut row = Row::new(
+        "observed cross section over Gamma/sigma_W, M/sigma_W, position and interference",
+        "line_shape::Chain",
+        "tests/reference/accuracy_map.py: 1,000 random points, own error below 2e-9",
+        "accuracy that the answer claims (1e-6 requested)",
+        1.0,
+        "the accuracy that is claimed bounds the true error",
+    );
+    let electron = BeamParticle {
+        name: "e".into(),
+        mass_gev: M_ELECTRON_GEV,
+        spin_states: 2,
+    };
+    let beams = Beams {
+        first: electron.clone(),
+        second: electron,
+        arrangement: Arrangement::EqualBeams { crossing_rad: 0.0 },
+        dial: SettingKind::W,
+    };
+    let file = table!("accuracy_map.json");
+    for (i, entry) in list(&file["rows"]).iter().enumerate().step_by(stride) {
+        let value = |k: usize| number(&entry[k]);
+        let mass_gev = value(0);
+        let hypothesis = Hypothesis::PartialWave(PartialWave {
+            twice_j: 2,
+            resonances: vec![Resonance {
+                name: "R".into(),
+                mass_gev,
+                width_gev: value(1),
+                strength: Strength::GammaInBf { gev: value(3) },
+                phase_rad: 0.0,
+                form: Form::ConstantWidth,
+                entrance: Vertex::Constant,
+                exit: Vertex::Constant,
+            }],
+            coherent: Some(CoherentBackground::OnePhoton {
+                c_nb: value(4),
+                w0_gev: mass_gev,
+                phase_rad: value(5),
+            }),
+            incoherent: None,
+            final_threshold_gev: 0.0,
+            continuum_factor: 1.0,
+        });
+        let settings = ChainSettings {
+            w_min_gev: Some(value(6)),
+            spread: Spread::Gaussian {
+                sigma_gev: value(2),
+                w0_gev: mass_gev,
+                power: 0.0,
+            },
+            accuracy: 1e-6,
+        };
+        let born = hypothesis.prepare(&beams).unwrap();
+        let answer = Chain::new(&settings, &beams)
+            .unwrap()
+            .cross_sections(born.as_ref(), &[mass_gev + value(7)], None, Stage::Observed)
+            .unwrap();
+        let deviation = answer.values_nb[0] / value(8) - 1.0;
+        row.take(deviation / answer.accuracy, format!("row {i}"));
+    }
+    row
 }

@@ -7,7 +7,7 @@ use widthwise_core::numerics::probability::{poisson_central_interval, poisson_de
 const SOURCE: &str = "tests/reference/intervals.py (scipy.stats, numerical profile)";
 
 pub fn rows() -> Vec<Row> {
-    let file = table("intervals.json");
+    let file = table!("intervals.json");
     let mut central = Row::new(
         "central Poisson interval",
         "numerics::probability::poisson_central_interval",
