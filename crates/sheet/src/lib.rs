@@ -18,4 +18,5 @@ pub mod quantity;
 pub mod requests;
 #[cfg(test)]
 mod schema;
+pub mod table;
 pub mod times;

@@ -3,6 +3,7 @@
 mod convert;
 mod reply;
 mod sheets;
+mod table;
 mod tables;
 
 pub use reply::*;
@@ -110,6 +111,12 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         Request::Open { text } => sheets::open(text),
         Request::Check { sheet } => Ok(sheets::check(sheet)),
         Request::Convert { sheet, from, value } => convert::answer(sheet, *from, value),
+        Request::ReadTable {
+            sheet,
+            text,
+            answers,
+        } => table::read_table(sheet, text, answers),
+        Request::WriteTable { sheet, table } => table::write_table(sheet, *table),
         _ => Err(Refusal::new("", "", "", "This request has no answer yet.")),
     }
 }

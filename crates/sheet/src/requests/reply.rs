@@ -3,6 +3,7 @@
 use crate::doc::{Row, Sheet};
 use crate::quantity::unit::Unit;
 use crate::quantity::{Dimension, format};
+use crate::table::RowChange;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Refusal, Warning};
 
@@ -53,6 +54,8 @@ pub enum Body {
         columns: Vec<ColumnReading>,
         /// Rows.
         rows: Vec<Row>,
+        /// What they do to the rows that are there; rows without an entry change nothing.
+        changes: Vec<RowChange>,
         /// What is wrong with single cells; `field` is `rows[3].counts`.
         problems: Vec<Refusal>,
     },
