@@ -9,6 +9,7 @@ import type { Nuisance } from "./Nuisance";
 import type { PointReading } from "./PointReading";
 import type { Refusal } from "./Refusal";
 import type { Row } from "./Row";
+import type { RowChange } from "./RowChange";
 import type { Sheet } from "./Sheet";
 import type { Warning } from "./Warning";
 
@@ -44,6 +45,10 @@ columns: Array<ColumnReading>,
  * Rows.
  */
 rows: Array<Row>, 
+/**
+ * What they do to the rows that are there; rows without an entry change nothing.
+ */
+changes: Array<RowChange>, 
 /**
  * What is wrong with single cells; `field` is `rows[3].counts`.
  */
