@@ -26,7 +26,7 @@ export function blankSheet(): Sheet {
       radiation: { on: false },
     },
     detection: {},
-    data: { stage: "observed", rows: [] },
+    data: { stage: "observed", gaussian_factors: false, rows: [], energy_covariance: [] },
     fit: { free: [] },
     plan: {},
   };
