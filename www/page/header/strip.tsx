@@ -78,7 +78,11 @@ function Running(): JSX.Element {
     return (
       <Cell name="Running point">
         <p class="figure quiet">none</p>
-        <p class="note">Flag the row that is running in the table.</p>
+        <p class="note">
+          <button type="button" class="link" onClick={() => (room.value = "shift")}>
+            Start one
+          </button>
+        </p>
       </Cell>
     );
   }
