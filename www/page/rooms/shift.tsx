@@ -8,7 +8,7 @@ import * as answers from "../state/answers";
 import { planned } from "../state/plan";
 import { room } from "../state/prefs";
 import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
-import { rows, runningIndex, sheet } from "../state/sheet";
+import { rows, runningIndex } from "../state/sheet";
 import { Health } from "./health";
 import { FirstSteps } from "./first-steps";
 import type { Row } from "../state/types";
