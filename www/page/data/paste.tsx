@@ -5,14 +5,10 @@ import { useEffect, useRef } from "preact/hooks";
 import { Refused } from "../bridge/failures";
 import { Icon } from "../parts/icon";
 import { change, sheet } from "../state/sheet";
-import type { ColumnReading, Refusal, Row } from "../state/types";
+import type { Body, Row } from "../state/types";
 import { ask } from "../state/work";
 
-interface Understood {
-  columns: ColumnReading[];
-  rows: Row[];
-  problems: Refusal[];
-}
+type Understood = Extract<Body, { kind: "rows" }>;
 
 /** The dialog. */
 export function PasteDialog({ close }: { close: () => void }): JSX.Element {
@@ -52,8 +48,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
 
   const read = understood.value;
   const open = read?.columns.filter((column) => column.question !== "") ?? [];
-  const ids = new Set(sheet.peek().data.rows.map((row) => row.id));
-  const known = read?.rows.filter((row) => ids.has(row.id)).length ?? 0;
+  const known = read === null ? 0 : read.rows.length - read.added.length;
   const ready = read !== null && open.length === 0 && read.rows.length > 0;
   return (
     <dialog class="sheet-of-paper" aria-labelledby="paste-title" ref={dialog} onClose={close}>
@@ -98,6 +93,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
                   <th scope="col">Column</th>
                   <th scope="col">means</th>
                   <th scope="col">unit of bare numbers</th>
+                  <th scope="col">first cell</th>
                 </tr>
               </thead>
               <tbody>
@@ -128,10 +124,12 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
                       )}
                     </td>
                     <td>{column.unit}</td>
+                    <td>{column.example}</td>
                   </tr>
                 ))}
               </tbody>
             </table>
+            <Changes read={read} />
             {read.problems.slice(0, 8).map((problem) => (
               <p class="problem" key={problem.field}>
                 {problem.field}: {problem.message}
@@ -160,6 +158,26 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
     }));
     return true;
   }
+}
+
+/** What reading this table again would change. */
+function Changes({ read }: { read: Understood }): JSX.Element | null {
+  if (read.changes.length === 0 && read.missing.length === 0) return null;
+  return (
+    <details>
+      <summary>
+        {read.changes.length} cells differ from those here
+        {read.missing.length > 0 && `; ${read.missing.length} points here are not in the table`}
+      </summary>
+      <ul class="list">
+        {read.changes.slice(0, 40).map((entry) => (
+          <li key={`${entry.id}${entry.field}`}>
+            {entry.id}, {entry.field.replace(/_/g, " ")}: {entry.before || "nothing"} → {entry.after || "nothing"}
+          </li>
+        ))}
+      </ul>
+    </details>
+  );
 }
 
 /** Rows with a known id take the place of the old one and keep its comment and flags; the others come after. */

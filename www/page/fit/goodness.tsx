@@ -87,7 +87,13 @@ export function Goodness({ fit }: { fit: FitView }): JSX.Element {
         </p>
         <p class="note">Baker and Cousins, Nucl. Instrum. Methods 221 (1984) 437.</p>
       </Why>
-      {fit.p !== null && <> · p {pValue(fit.p)}</>}
+      {fit.p !== null && (
+        <>
+          {" "}
+          · p {pValue(fit.p)}
+          {!fit.pHolds && <span class="note"> (counts are low: only a guide)</span>}
+        </>
+      )}
     </p>
   );
 }

@@ -33,9 +33,9 @@ const KNOWN = new Set(["w", ...STAGES.map((stage) => stage.key)]);
 
 /** Contributions of the hypothesis as the curve names them. */
 export function partStyles(): TraceStyle[] {
-  const names = (curve.value?.columns ?? []).map((entry) => entry.name).filter((name) => !KNOWN.has(name));
+  const names = (curve.value?.columns ?? []).map((entry) => entry.name).filter((name) => !KNOWN.has(name.toLowerCase()));
   return names.map((name, i) => ({
-    key: name,
+    key: name.toLowerCase(),
     label: name,
     colour: `--c-part-${(i % 4) + 1}`,
     width: 1.25,

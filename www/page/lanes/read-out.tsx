@@ -3,41 +3,63 @@ import type { ComponentChildren, JSX } from "preact";
 import { axisScale, digits, fixed } from "../format/number";
 import { assumptionsOf } from "../hand-over/assumptions";
 import { BEHIND } from "../parts/formulas";
-import { Quantity, units } from "../parts/quantity";
+import { Quantity } from "../parts/quantity";
 import { Why } from "../parts/why";
 import { WhyList } from "../parts/why-list";
 import { atCursor, curve } from "../state/answers";
+import { everything } from "../state/prefs";
 import { sheet } from "../state/sheet";
 import { cursor, view } from "../state/view";
+
+/** What is read out at all times; the rest is one gesture away. */
+const FIRST = new Set(["observed", "radiated", "born", "rate"]);
 
 /** The row. */
 export function ReadOut(): JSX.Element {
   const here = atCursor.value;
+  const rest = here?.values.filter((entry) => !FIRST.has(entry.name.toLowerCase())) ?? [];
   return (
-    <dl class="read-out" data-resting={cursor.value === null}>
-      {here === null ? (
-        <Item name="Cursor">
-          <span class="quiet">point at the plot</span>
-        </Item>
-      ) : (
-        <>
-          <Item name={<span class="sym">W</span>} strong>
-            {energy(here.w)} <span class="unit">{axisScale(here.w, here.w).unit}</span>
+    <div class="read-out" data-resting={cursor.value === null}>
+      <dl>
+        {here === null ? (
+          <Item name="Cursor">
+            <span class="quiet">point at the plot</span>
           </Item>
-          <Item name="to dial" strong>
-            <Quantity text={here.dial} />
-          </Item>
-          {here.values.map((entry) => (
+        ) : (
+          <>
+            <Item name={<span class="sym">W</span>} strong>
+              {energy(here.w)} <span class="unit">{axisScale(here.w, here.w).unit}</span>
+            </Item>
+            <Item name="to dial" strong>
+              {here.dial === "" ? <span class="quiet">out of reach</span> : <Quantity text={here.dial} />}
+            </Item>
+            {here.values
+              .filter((entry) => FIRST.has(entry.name.toLowerCase()))
+              .map((entry) => (
+                <Item key={entry.name} name={entry.name}>
+                  <Explained name={entry.name} at={here.w}>
+                    <Quantity text={entry.text} />
+                  </Explained>
+                </Item>
+              ))}
+          </>
+        )}
+      </dl>
+      {rest.length > 0 && (
+        <button type="button" class="link" aria-expanded={everything.value} onClick={() => (everything.value = !everything.value)}>
+          {everything.value ? "Less" : "More"}
+        </button>
+      )}
+      {everything.value && rest.length > 0 && (
+        <dl class="read-out-more">
+          {rest.map((entry) => (
             <Item key={entry.name} name={entry.name}>
-              <Explained name={entry.name} at={here.w}>
-                {digits(entry.value)}
-              </Explained>{" "}
-              <span class="unit">{units(entry.unit)}</span>
+              <Quantity text={entry.text} />
             </Item>
           ))}
-        </>
+        </dl>
       )}
-    </dl>
+    </div>
   );
 }
 
@@ -70,7 +92,7 @@ function Explained(props: { name: string; at: number; children: ComponentChildre
 export function readOutText(): string {
   const here = atCursor.value;
   if (here === null) return "no energy chosen";
-  const parts = here.values.map((entry) => `${entry.name} ${digits(entry.value)} ${entry.unit}`);
+  const parts = here.values.filter((entry) => FIRST.has(entry.name.toLowerCase())).map((entry) => `${entry.name} ${entry.text}`);
   return [`W ${energy(here.w)} ${axisScale(here.w, here.w).unit}`, `to dial ${here.dial}`, ...parts].join(", ");
 }
 

@@ -87,9 +87,7 @@ function Convert(): JSX.Element {
         {answer.value?.values.map((entry) => (
           <li key={entry.name}>
             <span class="note">{entry.name}</span>
-            <span>
-              {digits(entry.value, 6)} <span class="unit">{entry.unit}</span>
-            </span>
+            <span>{entry.text}</span>
           </li>
         ))}
       </ul>

@@ -1,6 +1,6 @@
 /** What the worker last answered, in the page's own words. Nothing here is computed by the page. */
 import { computed, signal } from "@preact/signals";
-import type { Refusal, Warning } from "./types";
+import type { Named, Refusal, Warning } from "./types";
 
 /** A curve: energies in GeV and named columns of the same length. */
 export interface Curve {
@@ -35,7 +35,7 @@ export interface PointView {
 export interface CursorView {
   w: number;
   dial: string;
-  values: { name: string; value: number; unit: string }[];
+  values: Named[];
 }
 
 /** One fitted parameter. */
@@ -57,6 +57,8 @@ export interface FitView {
   statistic: number;
   degrees: number;
   p: number | null;
+  /** Counts are large enough for the p-value to be taken from the chi-squared distribution. */
+  pHolds: boolean;
   why: string;
   nuisances: { name: string; pull: number; error: number }[];
   converged: boolean;
@@ -104,7 +106,7 @@ export function pointOf(id: string): PointView | null {
 /** The row that is running now, if one is. */
 export const runningPoint = computed(() => points.value.find((point) => point.running) ?? null);
 
-/** A column of the curve by name. */
+/** A column of the curve by its name in small letters. */
 export function column(name: string): Float64Array | null {
-  return curve.value?.columns.find((entry) => entry.name === name)?.values ?? null;
+  return curve.value?.columns.find((entry) => entry.name.toLowerCase() === name)?.values ?? null;
 }

@@ -14,6 +14,7 @@ interface Prefs {
   traces: Record<string, boolean>;
   allColumns: boolean;
   guided: boolean;
+  everything: boolean;
 }
 
 function stored(): Partial<Prefs> {
@@ -32,6 +33,8 @@ export const theme = signal<Theme>(
   first.theme === "light" || first.theme === "dark" || first.theme === "dim" ? first.theme : "",
 );
 export const room = signal<Room>("shift");
+/** Whether the read-out shows everything it knows. */
+export const everything = signal(first.everything === true);
 /** Whether the first steps are shown. */
 export const guided = signal(first.guided !== false);
 /** Whether the table shows every column in use. */
@@ -64,6 +67,7 @@ export function keepPrefs(): () => void {
       traces: traces.value,
       allColumns: allColumns.value,
       guided: guided.value,
+      everything: everything.value,
     };
     try {
       localStorage.setItem(KEY, JSON.stringify(prefs));

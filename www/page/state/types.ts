@@ -16,7 +16,18 @@ import type { Strength as WholeStrength } from "../../shared/generated/Strength"
 import type { Vertex as WholeVertex } from "../../shared/generated/Vertex";
 
 /** Lists, flags and notes that are left out when empty. */
-type LeftOut = "table" | "channels" | "covariance" | "angle_bins" | "other" | "constraints" | "left_out" | "running" | "comment";
+type LeftOut =
+  | "gaussian_factors"
+  | "energy_covariance"
+  | "table"
+  | "channels"
+  | "covariance"
+  | "angle_bins"
+  | "other"
+  | "constraints"
+  | "left_out"
+  | "running"
+  | "comment";
 
 type MayBeAbsent<T, K extends keyof T> = null extends T[K] ? K : K extends LeftOut ? K : never;
 
