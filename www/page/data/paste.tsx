@@ -48,7 +48,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
 
   const read = understood.value;
   const open = read?.columns.filter((column) => column.question !== "") ?? [];
-  const known = read === null ? 0 : read.rows.length - read.added.length;
+  const known = read?.changes.filter((row) => !row.new).length ?? 0;
   const ready = read !== null && open.length === 0 && read.rows.length > 0;
   return (
     <dialog class="sheet-of-paper" aria-labelledby="paste-title" ref={dialog} onClose={close}>
@@ -93,7 +93,6 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
                   <th scope="col">Column</th>
                   <th scope="col">means</th>
                   <th scope="col">unit of bare numbers</th>
-                  <th scope="col">first cell</th>
                 </tr>
               </thead>
               <tbody>
@@ -124,7 +123,6 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
                       )}
                     </td>
                     <td>{column.unit}</td>
-                    <td>{column.example}</td>
                   </tr>
                 ))}
               </tbody>
@@ -162,17 +160,15 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
 
 /** What reading this table again would change. */
 function Changes({ read }: { read: Understood }): JSX.Element | null {
-  if (read.changes.length === 0 && read.missing.length === 0) return null;
+  const cells = read.changes.flatMap((row) => (row.new ? [] : row.fields.map(([field = "", before = "", after = ""]) => ({ id: row.id, field, before, after }))));
+  if (cells.length === 0) return null;
   return (
     <details>
-      <summary>
-        {read.changes.length} cells differ from those here
-        {read.missing.length > 0 && `; ${read.missing.length} points here are not in the table`}
-      </summary>
+      <summary>{cells.length === 1 ? "1 cell differs" : `${cells.length} cells differ`} from those here</summary>
       <ul class="list">
-        {read.changes.slice(0, 40).map((entry) => (
-          <li key={`${entry.id}${entry.field}`}>
-            {entry.id}, {entry.field.replace(/_/g, " ")}: {entry.before || "nothing"} → {entry.after || "nothing"}
+        {cells.slice(0, 40).map((cell) => (
+          <li key={`${cell.id}${cell.field}`}>
+            {cell.id}, {cell.field.replace(/_/g, " ")}: {cell.before || "nothing"} → {cell.after || "nothing"}
           </li>
         ))}
       </ul>

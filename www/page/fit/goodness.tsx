@@ -91,7 +91,6 @@ export function Goodness({ fit }: { fit: FitView }): JSX.Element {
         <>
           {" "}
           · p {pValue(fit.p)}
-          {!fit.pHolds && <span class="note"> (counts are low: only a guide)</span>}
         </>
       )}
     </p>

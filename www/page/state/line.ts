@@ -9,6 +9,7 @@ interface Waiting<Request, Reply> {
   request: Request;
   done: (reply: Reply) => void;
   failed: (reason: unknown) => void;
+  begun: () => void;
 }
 
 /** Asks in order of importance and drops what has been overtaken. */
@@ -22,9 +23,15 @@ export class Line<Request, Reply> {
     private readonly order: readonly string[],
   ) {}
 
-  /** Puts a request in; one of the same sort that still waits is dropped. */
-  put(sort: string, request: Request, done: (reply: Reply) => void, failed: (reason: unknown) => void): void {
-    this.waiting.set(sort, { request, done, failed });
+  /** Puts a request in; one of the same sort that still waits is dropped. `begun` is called when it is sent. */
+  put(
+    sort: string,
+    request: Request,
+    done: (reply: Reply) => void,
+    failed: (reason: unknown) => void,
+    begun: () => void = () => undefined,
+  ): void {
+    this.waiting.set(sort, { request, done, failed, begun });
     void this.pump();
   }
 
@@ -43,6 +50,7 @@ export class Line<Request, Reply> {
         const next = this.waiting.get(sort);
         this.waiting.delete(sort);
         if (next === undefined) return;
+        next.begun();
         try {
           next.done(await this.desk.ask(next.request));
         } catch (reason) {

@@ -5,7 +5,7 @@ import * as answers from "./answers";
 import { typed } from "../format/typed";
 import { symbolOf } from "./parameters";
 import type { Sheet } from "./types";
-import { usual, whole, type Range } from "./view";
+import { placed, usual, whole, type Range } from "./view";
 
 /** A curve: the first column is W. */
 export function readCurve({ body, columns }: Reply): void {
@@ -47,11 +47,23 @@ export function readPoints({ body }: Reply, sheet: Sheet): void {
   }
   batch(() => {
     answers.points.value = read;
-    const energies = energiesOf(sheet, read);
-    if (energies.length === 0) return;
-    put(whole, withRoom(energies));
-    put(usual, withRoom(withoutStragglers(energies)));
+    place(sheet, read);
   });
+}
+
+/** The rows could not be understood at all: the points go, the axis keeps to the hypothesis. */
+export function readNoPoints(sheet: Sheet): void {
+  batch(() => {
+    answers.points.value = [];
+    if (!placed.peek()) place(sheet, []);
+  });
+}
+
+function place(sheet: Sheet, read: readonly answers.PointView[]): void {
+  const energies = energiesOf(sheet, read);
+  if (energies.length === 0) return;
+  put(whole, withRoom(energies));
+  put(usual, withRoom(withoutStragglers(energies)));
 }
 
 /** A fit, and the one before it for comparison. */
@@ -76,7 +88,6 @@ export function readFit({ body }: Reply, sheet: Sheet): void {
       statistic: body.statistic,
       degrees: body.degrees_of_freedom,
       p: body.p_value ?? null,
-      pHolds: body.p_value_asymptotic,
       why: body.stopped,
       converged: body.converged,
       pulls: body.pulls,

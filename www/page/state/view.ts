@@ -9,6 +9,8 @@ export interface Range {
 
 /** The whole range worth looking at: data, hypothesis, or both. */
 export const whole = signal<Range>({ from: 0, to: 1 });
+/** Whether the range has been set from a sheet; before that there is nothing to ask a curve for. */
+export const placed = computed(() => whole.value.from > 0);
 /** Where most of it happens: the whole without points far off on their own. Seen first. */
 export const usual = signal<Range>({ from: 0, to: 1 });
 const chosen = signal<Range | null>(null);

@@ -3,19 +3,18 @@ import { effect } from "@preact/signals";
 import { Refused, Trapped } from "../bridge/failures";
 import type { Reply } from "../../shared/protocol";
 import * as answers from "./answers";
-import { readCursor, readCurve, readFit, readPoints } from "./read";
+import { readCursor, readCurve, readFit, readNoPoints, readPoints } from "./read";
+import { Curves } from "./curves";
 import { Line } from "./line";
 import { opened, revision, sheet } from "./sheet";
 import type { Request, Sheet } from "./types";
-import { cursor, view, whole } from "./view";
+import { cursor, placed, view, whole } from "./view";
 
 /** What asks: the pool of workers, or a stand-in of a test. */
 export interface Bridge {
   run(request: Request, options?: { background?: boolean; signal?: AbortSignal }): Promise<Reply>;
 }
 
-/** Energies of the curve on the screen; a pixel or two each. */
-const CURVE_POINTS = 700;
 /** A fit starts when the sheet has been still this long, ms. */
 const STILL_MS = 120;
 
@@ -31,6 +30,7 @@ export function ask(request: Request): Promise<Reply> {
 export function work(on: Bridge): () => void {
   bridge = on;
   const live = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["curve", "cursor"]);
+  const curve = new Curves(on, live);
   // Rows of data may be many: what needs them does not stand in the way of the hand.
   const steady = new Line<Request, Reply>({ ask: (request) => on.run(request) }, ["check", "points"]);
   const failed = (reason: unknown): void => {
@@ -55,23 +55,21 @@ export function work(on: Bridge): () => void {
         },
         failed,
       );
-      steady.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), failed);
+      steady.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), (reason) => {
+        if (reason instanceof Refused) readNoPoints(now);
+        else failed(reason);
+      });
     }),
     effect(() => {
-      if (!opened.value) return;
+      if (!opened.value || !placed.value) return;
       const { from, to } = view.value;
-      live.put(
-        "curve",
-        { kind: "curve", sheet: withoutRows(sheet.value), from_gev: from, to_gev: to, points: CURVE_POINTS },
-        readCurve,
-        (reason) => {
-          if (reason instanceof Refused) answers.curve.value = null;
-          else failed(reason);
-        },
-      );
+      curve.ask(withoutRows(sheet.value), from, to, readCurve, (reason) => {
+        if (reason instanceof Refused) answers.curve.value = null;
+        else failed(reason);
+      });
     }),
     effect(() => {
-      if (!opened.value) return;
+      if (!opened.value || !placed.value) return;
       const w = cursor.value ?? answers.runningPoint.value?.w ?? middleOfInterest();
       live.put("cursor", { kind: "cursor", sheet: withoutRows(sheet.value), w_gev: w }, readCursor, (reason) => {
         if (reason instanceof Refused) answers.atCursor.value = null;
@@ -82,6 +80,7 @@ export function work(on: Bridge): () => void {
   ];
   return () => {
     for (const stop of stops) stop();
+    curve.stop();
     bridge = null;
   };
 }
