@@ -85,6 +85,11 @@ function assemble(beside) {
 }
 
 const html = assemble("");
+/** From a stick, over a group's server or on a phone: it has to stay small. */
+const MOST_BYTES = 1_200_000;
+if (Buffer.byteLength(html) > MOST_BYTES) {
+  throw new Error(`the single file has ${Buffer.byteLength(html)} bytes, ${MOST_BYTES} allowed`);
+}
 mkdirSync(dirname(args.out), { recursive: true });
 writeFileSync(args.out, html);
 

@@ -115,6 +115,22 @@ fn version() -> String {
     )
 }
 
+/// Rewrites what is generated from the Rust types and kept in the repository: TypeScript types and
+/// the scan sheet's JSON Schema (that one is compared by a test of the sheet).
+pub fn generated() -> Outcome {
+    types(&shell::root().join("www/shared/generated"))?;
+    let mut schema = shell::cargo();
+    schema.args([
+        "test",
+        "--quiet",
+        "--package",
+        "widthwise-sheet",
+        "--lib",
+        "schema",
+    ]);
+    shell::run_quietly(schema.env("UPDATE_SCHEMA", "1")).map(|_| ())
+}
+
 /// Writes the TypeScript types of requests and answers into a folder.
 pub fn types(folder: &Path) -> Outcome {
     shell::clear(folder)?;

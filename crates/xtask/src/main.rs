@@ -3,6 +3,7 @@
 mod bench;
 mod build;
 mod fetch;
+mod on_wasm;
 mod serve;
 mod shell;
 mod stamp;
@@ -18,7 +19,7 @@ cargo xtask serve [--port N] [--no-open]   build everything, write target/dist/w
 cargo xtask test                           every check: format, lints, rules, native, WebAssembly, page, browser, references
 cargo xtask dist                           build target/dist/widthwise.html and print its size and hash
 cargo xtask page                           the browser tests in Chromium (--all: Firefox and WebKit too)
-cargo xtask types                          rewrite the TypeScript types of requests and answers
+cargo xtask types                          rewrite the TypeScript types of requests and answers, and the JSON Schema
 cargo xtask tidy                           the rules of the house
 cargo xtask validate                       rerun the independent reference scripts and compare
 cargo xtask bench                          one table: native, WebAssembly, independent peer
@@ -33,7 +34,7 @@ fn main() -> std::process::ExitCode {
         Some((&"test", [])) => suites::test(),
         Some((&"dist", [])) => build::dist().map(|_| ()),
         Some((&"page", rest)) => suites::page(rest),
-        Some((&"types", [])) => build::types(&shell::root().join("www/shared/generated")),
+        Some((&"types", [])) => build::generated(),
         Some((&"tidy", [])) => tidy::report(),
         Some((&"validate", rest)) => bench::validate(rest),
         Some((&"bench", rest)) => bench::bench(rest),

@@ -2,21 +2,12 @@
 
 use crate::build;
 use crate::fetch;
+use crate::on_wasm;
 use crate::shell::{self, Outcome, say};
 use crate::tally::Tally;
 use crate::tidy;
-use crate::wasm::Compiler;
 use std::path::{Path, PathBuf};
-use std::process::Command;
 use std::time::Instant;
-
-/// Crates whose tests also run on WebAssembly.
-const ON_WASM: [&str; 4] = [
-    "--package",
-    "widthwise-core",
-    "--package",
-    "widthwise-sheet",
-];
 
 /// Runs every check.
 pub fn test() -> Outcome {
@@ -25,7 +16,8 @@ pub fn test() -> Outcome {
     rules(&mut tally);
     native(&mut tally);
     generated(&mut tally);
-    on_wasm(&mut tally);
+    say("the same tests of core and sheet on WebAssembly");
+    on_wasm::run(&mut tally);
     web(&mut tally);
     references(&mut tally);
     println!("took {} s", start.elapsed().as_secs());
@@ -59,7 +51,8 @@ fn finish(tally: &Tally) -> Outcome {
     }
 }
 
-fn record(tally: &mut Tally, suite: &str, result: Outcome<(bool, String)>) {
+/// Adds a suite that ran, or the reason why it could not.
+pub fn record(tally: &mut Tally, suite: &str, result: Outcome<(bool, String)>) {
     match result {
         Ok((ended_well, printed)) => tally.add(suite, ended_well, &printed),
         Err(message) => tally.check(suite, Err(message)),
@@ -134,109 +127,6 @@ fn same_files(kept: &Path, fresh: &Path) -> Outcome {
         Ok(())
     } else {
         Err(format!("changed: {}", changed.join(", ")))
-    }
-}
-
-/// The same tests of core and sheet, built for WebAssembly and run by Node.js.
-fn on_wasm(tally: &mut Tally) {
-    say("the same tests of core and sheet on WebAssembly");
-    let result = Compiler::find().and_then(|compiler| {
-        let native = harnesses(
-            shell::cargo()
-                .args(["test", "--no-run", "--quiet", "--message-format=json"])
-                .args(ON_WASM),
-        )?;
-        let mut build = compiler.cargo()?;
-        // The property tests take their seeds from the runner; see tests/wasm/run.mjs.
-        build.env(
-            "RUSTFLAGS",
-            "--cfg getrandom_backend=\"custom\" -Clink-arg=--allow-undefined",
-        );
-        build
-            .args([
-                "test",
-                "--no-run",
-                "--quiet",
-                "--message-format=json",
-                "--target",
-                "wasm32-unknown-unknown",
-            ])
-            .args(ON_WASM);
-        Ok((native, harnesses(&mut build)?))
-    });
-    let (native, wasm) = match result {
-        Ok(both) => both,
-        Err(message) => return tally.check("tests on WebAssembly", Err(message)),
-    };
-    if native.len() != wasm.len() {
-        let message = format!(
-            "{} native test programs, but {} for WebAssembly",
-            native.len(),
-            wasm.len()
-        );
-        return tally.check("tests on WebAssembly", Err(message));
-    }
-    for ((source, program), (_, module)) in native.iter().zip(&wasm) {
-        let name = source
-            .strip_prefix(shell::root())
-            .unwrap_or(source)
-            .display()
-            .to_string();
-        record(
-            tally,
-            &format!("{name} on WebAssembly"),
-            run_on_wasm(&name, program, module),
-        );
-    }
-}
-
-fn run_on_wasm(name: &str, program: &Path, module: &Path) -> Outcome<(bool, String)> {
-    let list = shell::run_quietly(shell::program(program).arg("--list"))?;
-    if !list.lines().any(|line| line.ends_with(": test")) {
-        return Ok((
-            true,
-            "test result: ok. 1 passed; 0 failed (no tests in it)".to_owned(),
-        ));
-    }
-    let list_file = shell::target()
-        .join("wasm-tests")
-        .join(name.replace('/', "-"))
-        .with_extension("list");
-    shell::write(&list_file, &list)?;
-    println!("{name}");
-    shell::run_kept(
-        shell::program("node")
-            .arg("tests/wasm/run.mjs")
-            .arg(module)
-            .arg(list_file),
-    )
-}
-
-/// The test programs that a `cargo test --no-run --message-format=json` makes: (source, program), sorted by source.
-fn harnesses(build: &mut Command) -> Outcome<Vec<(PathBuf, PathBuf)>> {
-    let printed = shell::run_quietly(build)?;
-    let field = |line: &str, key: &str| {
-        let (_, rest) = line.split_once(&format!("\"{key}\":\""))?;
-        rest.split_once('"').map(|(value, _)| PathBuf::from(value))
-    };
-    let of_a_test = |line: &&str| {
-        line.contains("\"reason\":\"compiler-artifact\"") && line.contains("\"executable\":\"")
-    };
-    let mut found: Vec<(PathBuf, PathBuf)> = printed
-        .lines()
-        .filter(of_a_test)
-        .filter_map(|line| Some((field(line, "src_path")?, field(line, "executable")?)))
-        .filter(|(source, _)| {
-            !source
-                .components()
-                .any(|part| part.as_os_str() == "examples")
-        })
-        .collect();
-    found.sort();
-    if found.is_empty() {
-        Err("no test programs were built".to_owned())
-    } else {
-        Ok(found)
     }
 }
 
