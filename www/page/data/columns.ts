@@ -13,12 +13,12 @@ export interface ColumnView {
 
 const COLUMNS: readonly (ColumnView & { always?: boolean; rare?: boolean })[] = [
   { field: "id", title: "Point", number: false, width: 4, always: true },
-  { field: "group", title: "Fill", number: false, width: 6 },
-  { field: "setting", always: true, title: "Dial", number: true, width: 11 },
-  { field: "w", title: "W", number: true, width: 11 },
-  { field: "w_error", title: "Error of W", number: true, width: 7 },
+  { field: "group", title: "Fill", number: false, width: 5 },
+  { field: "setting", always: true, title: "Dial", number: true, width: 13 },
+  { field: "w", title: "W", number: true, width: 12 },
+  { field: "w_error", rare: true, title: "Error of W", number: true, width: 7 },
   { field: "sigma_w", title: "σ of W", number: true, width: 8 },
-  { field: "luminosity", title: "Luminosity", number: true, width: 10 },
+  { field: "luminosity", title: "Luminosity", number: true, width: 11 },
   { field: "luminosity_error", rare: true, title: "its error", number: true, width: 9 },
   { field: "live_time", rare: true, title: "Live time", number: true, width: 5 },
   { field: "live_fraction", title: "Live", number: true, width: 7 },

@@ -1,5 +1,6 @@
 /** The legend is the switchboard: each entry shows its line as drawn and turns it on or off. */
 import type { JSX } from "preact";
+import { computing } from "../state/answers";
 import { traces } from "../state/prefs";
 import { partStyles, STAGES, type TraceStyle } from "./line-shape";
 
@@ -32,6 +33,9 @@ export function Legend(): JSX.Element {
             <Sample style={style} /> {style.label}
           </li>
         ))}
+      <li class="note" role="status">
+        {computing.value ? "Computing…" : ""}
+      </li>
     </ul>
   );
 }

@@ -11,6 +11,7 @@ import { Icon } from "../parts/icon";
 import { copy, download, fileName, linkOf, openText, saveSheet, tableText } from "../state/files";
 import { blankSheet } from "../state/blank";
 import { Compare } from "./compare";
+import { Keys } from "./keys";
 import { open, setField, sheet } from "../state/sheet";
 import { versions } from "../state/store";
 import type { Table } from "../state/types";
@@ -145,6 +146,7 @@ export function SheetRoom(): JSX.Element {
           </ul>
         )}
       </fieldset>
+      <Keys />
     </>
   );
 }

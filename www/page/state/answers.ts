@@ -82,6 +82,8 @@ export const fitRefused = signal("");
 export const fitting = signal(false);
 /** Failure of the machinery itself (not of an input); with what can be done. */
 export const broken = signal("");
+/** The curve on the screen is older than the sheet, long enough to be worth a word. */
+export const computing = signal(false);
 
 const byPath = computed(() => {
   const map = new Map<string, Refusal>();

@@ -4,6 +4,7 @@
  */
 import { Cancelled } from "../bridge/failures";
 import type { Reply } from "../../shared/protocol";
+import { computing } from "./answers";
 import type { Line } from "./line";
 import type { Request, Sheet } from "./types";
 import type { Bridge } from "./work";
@@ -14,6 +15,8 @@ const FINE = 700;
 const COARSE = 80;
 /** Time for one curve while something moves, ms. */
 const BUDGET_MS = 24;
+/** A curve that takes longer than this is announced, ms. */
+const WORD_MS = 400;
 /** The hand rests when nothing has come for so long, ms. */
 const REST_MS = 80;
 
@@ -27,6 +30,7 @@ export class Curves {
   private pace = BUDGET_MS / FINE;
   private timer = 0;
   private fine: AbortController | null = null;
+  private word = 0;
 
   constructor(
     private readonly bridge: Bridge,
@@ -36,6 +40,8 @@ export class Curves {
   /** Asks for the curve of a sheet between two energies, GeV; `done` may be called twice, coarse and fine. */
   ask(sheet: Sheet, from: number, to: number, done: (reply: Reply) => void, failed: (reason: unknown) => void): void {
     this.stop();
+    // A word only when one would be waited for.
+    if (this.word === 0) this.word = window.setTimeout(() => (computing.value = true), WORD_MS);
     const points = affordable(this.pace);
     const request = (energies: number): Request => ({ kind: "curve", sheet, from_gev: from, to_gev: to, points: energies });
     let begun = 0;
@@ -44,9 +50,13 @@ export class Curves {
       request(points),
       (reply) => {
         this.pace = Math.max(1e-4, (performance.now() - begun) / points);
+        this.arrived();
         done(reply);
       },
-      failed,
+      (reason) => {
+        this.arrived();
+        failed(reason);
+      },
       () => {
         begun = performance.now();
       },
@@ -64,6 +74,12 @@ export class Curves {
         },
       );
     }, REST_MS);
+  }
+
+  private arrived(): void {
+    clearTimeout(this.word);
+    this.word = 0;
+    computing.value = false;
   }
 
   /** Cancels a fine curve that is still wanted. */

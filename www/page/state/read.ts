@@ -35,14 +35,14 @@ export function readPoints({ body }: Reply, sheet: Sheet): void {
       dial: point.dial,
       used: row.left_out !== true,
       running: row.running === true,
-      sigma: point.sigma_nb ?? null,
+      sigma: finite(point.sigma_nb),
       sigmaError: point.sigma_error_nb,
       luminosity: point.luminosity_nbinv ?? 0,
       time: point.live_time_h ?? 0,
-      expected: point.expected ?? null,
-      seen: point.seen ?? null,
-      pull: point.pull ?? null,
-      p: point.p_value ?? null,
+      expected: finite(point.expected),
+      seen: finite(point.seen),
+      pull: finite(point.pull),
+      p: finite(point.p_value),
     });
   }
   batch(() => {
@@ -96,6 +96,11 @@ export function readFit({ body }: Reply, sheet: Sheet): void {
       warnings: body.warnings,
     };
   });
+}
+
+/** A number that can be drawn, or nothing. */
+function finite(value: number | null | undefined): number | null {
+  return value === null || value === undefined || !Number.isFinite(value) ? null : value;
 }
 
 /** Room on both sides of what there is to see, as a share of it. */

@@ -8,7 +8,7 @@ import { Curves } from "./curves";
 import { Line } from "./line";
 import { opened, revision, sheet } from "./sheet";
 import type { Request, Sheet } from "./types";
-import { cursor, placed, view, whole } from "./view";
+import { cursor, placed, usual, view } from "./view";
 
 /** What asks: the pool of workers, or a stand-in of a test. */
 export interface Bridge {
@@ -70,7 +70,7 @@ export function work(on: Bridge): () => void {
     }),
     effect(() => {
       if (!opened.value || !placed.value) return;
-      const w = cursor.value ?? answers.runningPoint.value?.w ?? middleOfInterest();
+      const w = cursor.value ?? answers.runningPoint.value?.w ?? answers.points.value.at(-1)?.w ?? middleOfInterest();
       live.put("cursor", { kind: "cursor", sheet: withoutRows(sheet.value), w_gev: w }, readCursor, (reason) => {
         if (reason instanceof Refused) answers.atCursor.value = null;
         else failed(reason);
@@ -95,7 +95,7 @@ function withoutRows(now: Sheet): Sheet {
 }
 
 function middleOfInterest(): number {
-  return (whole.value.from + whole.value.to) / 2;
+  return (usual.value.from + usual.value.to) / 2;
 }
 
 function keepFitting(on: Bridge, failed: (reason: unknown) => void): () => void {
