@@ -2,6 +2,7 @@
 
 pub mod gauss_legendre;
 pub mod minimise;
+pub mod polynomial;
 pub mod probability;
 pub mod quadrature;
 pub mod random;
