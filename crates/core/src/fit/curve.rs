@@ -57,6 +57,11 @@ pub trait CurveModel {
     /// The free parameters, in the order of the values.
     fn parameters(&self) -> &[CurveParameter];
 
+    /// Quantities derived from the parameters, if the model has any.
+    fn quantities(&self, _values: &[f64]) -> Option<Vec<super::derived::Quantity>> {
+        None
+    }
+
     /// The curve at every site for every probe. Probes of one call share as much work as the
     /// model can share, so that their differences carry no noise of different quadratures.
     ///

@@ -80,11 +80,19 @@ impl Fitter {
     /// The model's refusal at the start.
     pub fn minimum(&mut self) -> Answer<Minimum> {
         let start = self.problem().start();
-        let first = self.likelihood.full(&start, false)?;
+        self.minimum_from(&start)
+    }
+
+    /// Minimum from `start` and the extra starts of the settings around it.
+    ///
+    /// # Errors
+    /// The model's refusal at the start.
+    pub fn minimum_from(&mut self, start: &[f64]) -> Answer<Minimum> {
+        let first = self.likelihood.full(start, false)?;
         self.likelihood.adapt_steps(&first);
-        let mut best = minimise(&mut self.likelihood, &start, self.settings.tolerance())?;
+        let mut best = minimise(&mut self.likelihood, start, self.settings.tolerance())?;
         for k in 0..self.settings.extra_starts {
-            let other = self.random_start(&start, u64::from(k));
+            let other = self.random_start(start, u64::from(k));
             if let Ok(found) = minimise(&mut self.likelihood, &other, self.settings.tolerance())
                 && found.expansion.value < best.expansion.value - 1e-9
             {
@@ -92,6 +100,52 @@ impl Fitter {
             }
         }
         Ok(best)
+    }
+
+    /// Every different minimum that `starts` random starts find within `window` of the best in 2 NLL, best first;
+    /// what n starts found is not all there is.
+    ///
+    /// # Errors
+    /// The model's refusal at the given start.
+    pub fn solutions(&mut self, starts: u32, window: f64) -> Answer<Vec<Minimum>> {
+        let start = self.problem().start();
+        let mut found = vec![self.minimum()?];
+        for k in 0..starts {
+            let other = self.random_start(&start, u64::from(k));
+            if let Ok(m) = minimise(&mut self.likelihood, &other, self.settings.tolerance())
+                && m.stop.is_minimum()
+            {
+                found.push(m);
+            }
+        }
+        found.sort_by(|a, b| a.expansion.value.total_cmp(&b.expansion.value));
+        let best = found.first().map_or(0.0, |m| m.expansion.value);
+        let mut out: Vec<Minimum> = Vec::new();
+        for m in found {
+            if m.expansion.value > best + window {
+                continue;
+            }
+            // The same place: within a tenth of a conditional error in every parameter, phases by their turn.
+            let same = out.iter().any(|o| {
+                self.problem().coordinates.iter().enumerate().all(|(i, c)| {
+                    let curvature = m.expansion.curvature[(i, i)];
+                    let error = if curvature > 0.0 {
+                        (2.0 / curvature).sqrt()
+                    } else {
+                        c.scale
+                    };
+                    let mut apart = m.x[i] - o.x[i];
+                    if c.unit == "rad" {
+                        apart = reported("rad", apart);
+                    }
+                    apart.abs() < 0.1 * error + 1e-3 * c.scale.min(1e300)
+                })
+            });
+            if !same {
+                out.push(m);
+            }
+        }
+        Ok(out)
     }
 
     /// A start within 3 widths: masses uniformly, positive quantities by a factor up to 3, phases anywhere.

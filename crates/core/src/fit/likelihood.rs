@@ -53,6 +53,18 @@ pub struct Prediction {
     pub error_nb: Vec<f64>,
 }
 
+/// A narrow Gaussian pull of a derived quantity towards a value: how its profile is walked.
+pub struct Target {
+    /// The quantity as a function of the coordinates.
+    pub of: Rc<dyn Fn(&[f64]) -> f64>,
+    /// Where to.
+    pub goal: f64,
+    /// Width of the pull.
+    pub error: f64,
+    /// Steps of its derivative by coordinate; 0: it does not depend on it.
+    pub gradient_steps: Vec<f64>,
+}
+
 /// Statistic of a problem; counts evaluations of the curve.
 pub struct Likelihood {
     problem: Problem,
@@ -66,6 +78,7 @@ pub struct Likelihood {
     last: Option<(Vec<f64>, Rc<Derivatives>)>,
     /// Kept until the steps change: the common start of pseudo-experiments.
     pinned: Option<(Vec<f64>, Rc<Derivatives>)>,
+    target: Option<Target>,
     /// Batches of curve evaluations so far.
     pub batches: u32,
 }
@@ -154,6 +167,7 @@ impl Likelihood {
             second_steps: scales.iter().map(|s| 0.5 * s).collect(),
             last: None,
             pinned: None,
+            target: None,
             batches: 0,
         }
     }
@@ -207,6 +221,11 @@ impl Likelihood {
         }
         self.last = None;
         self.pinned = None;
+    }
+
+    /// Adds or removes the pull of a derived quantity.
+    pub fn pull_to(&mut self, target: Option<Target>) {
+        self.target = target;
     }
 
     /// Keeps what is known of the curve at `x` for fits that start there.
@@ -494,6 +513,28 @@ impl Likelihood {
             out.value += z * z;
             out.gradient[i] += 2.0 * z / error;
             out.curvature[(i, i)] += 2.0 / (error * error);
+        }
+        if let Some(target) = &self.target {
+            let z = ((target.of)(x) - target.goal) / target.error;
+            let slopes: Vec<f64> = (0..n)
+                .map(|i| {
+                    let h = target.gradient_steps.get(i).copied().unwrap_or(0.0);
+                    if h == 0.0 {
+                        return 0.0;
+                    }
+                    let (mut up, mut down) = (x.to_vec(), x.to_vec());
+                    up[i] += h;
+                    down[i] -= h;
+                    ((target.of)(&up) - (target.of)(&down)) / (2.0 * h * target.error)
+                })
+                .collect();
+            out.value += z * z;
+            for i in 0..n {
+                out.gradient[i] += 2.0 * z * slopes[i];
+                for k in 0..=i {
+                    out.curvature[(i, k)] += 2.0 * slopes[i] * slopes[k];
+                }
+            }
         }
         for i in 0..n {
             for k in 0..i {

@@ -3,12 +3,16 @@
 //! [`fit`] is the door: a scan and what is to be free in, a [`FitResult`] out. [`Fitter`] is the
 //! same in steps, for what goes on from a minimum (profiles, contours, trials).
 
+pub mod compare;
 mod contour;
 mod covariance;
 mod curve;
 mod derivatives;
+pub mod derived;
 pub mod equivalent;
 mod fitter;
+pub mod goodness;
+pub mod influence;
 mod likelihood;
 pub mod limits;
 mod nuisance;

@@ -167,6 +167,11 @@ impl CurveModel for ScanCurve {
         &self.parameters
     }
 
+    fn quantities(&self, values: &[f64]) -> Option<Vec<super::derived::Quantity>> {
+        let hypothesis = self.hypothesis(values).ok()?;
+        Some(super::derived::quantities(&hypothesis, &self.beams))
+    }
+
     fn evaluate(&self, sites: &[Site], probes: &[Probe], with_slope: bool) -> Answer<Vec<Curve>> {
         let h = self.slope_step_gev;
         let n = sites.len();

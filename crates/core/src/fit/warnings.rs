@@ -78,6 +78,26 @@ pub fn before(scan: &Scan, settings: &FitSettings, problem: &Problem) -> Vec<War
             }
         }
     }
+    if scan.covariance_nb2.is_none() {
+        let few: Vec<&str> = scan
+            .points
+            .iter()
+            .filter(|p| match p.measured {
+                Measured::CrossSection { sigma_nb, error_nb } => sigma_nb < 4.0 * error_nb,
+                _ => false,
+            })
+            .map(|p| p.id.as_str())
+            .collect();
+        if !few.is_empty() {
+            out.push(Warning::new(
+                "few-events-as-gaussian",
+                format!(
+                    "Cross sections of fewer than about 16 events with sqrt(n) errors pull a fit down, and points without events are easily dropped: enter counts instead (points {}).",
+                    few.join(", ")
+                ),
+            ));
+        }
+    }
     let groups = scan.points.iter().any(|p| p.group.is_some());
     if groups && scan.common.group_energy_gev == 0.0 && scan.common.energy_covariance_gev2.is_none()
     {

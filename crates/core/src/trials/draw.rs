@@ -30,7 +30,20 @@ impl Ensemble {
     /// # Errors
     /// As a fit of the scan.
     pub fn new(scan: &Scan, fit: &FitSettings, settings: TrialSettings) -> Answer<Self> {
-        Self::from_fitter(Fitter::new(scan, fit)?, settings)
+        Self::from_fitter(Fitter::new(scan, fit)?, None, settings)
+    }
+
+    /// With other true values of the parameters, in the order of the fit.
+    ///
+    /// # Errors
+    /// As a fit of the scan.
+    pub fn at(
+        scan: &Scan,
+        fit: &FitSettings,
+        truth: &[f64],
+        settings: TrialSettings,
+    ) -> Answer<Self> {
+        Self::from_fitter(Fitter::new(scan, fit)?, Some(truth), settings)
     }
 
     /// With another curve.
@@ -43,11 +56,18 @@ impl Ensemble {
         model: Rc<dyn CurveModel>,
         settings: TrialSettings,
     ) -> Answer<Self> {
-        Self::from_fitter(Fitter::with_model(scan, fit, model)?, settings)
+        Self::from_fitter(Fitter::with_model(scan, fit, model)?, None, settings)
     }
 
-    fn from_fitter(mut fitter: Fitter, settings: TrialSettings) -> Answer<Self> {
-        let truth = fitter.problem().start();
+    fn from_fitter(
+        mut fitter: Fitter,
+        values: Option<&[f64]>,
+        settings: TrialSettings,
+    ) -> Answer<Self> {
+        let mut truth = fitter.problem().start();
+        for (slot, v) in truth.iter_mut().zip(values.unwrap_or_default()) {
+            *slot = *v;
+        }
         let likelihood = fitter.likelihood();
         let prediction = likelihood.predict(&truth)?;
         let kinds: Vec<Kind> = likelihood.problem().data.iter().map(|d| d.kind).collect();
