@@ -1,12 +1,14 @@
 //! Fits of published data through the chain.
 #![allow(
     clippy::unwrap_used,
+    clippy::panic,
     reason = "test helpers stop where a value is missing"
 )]
 
 use widthwise_core::amplitude::hypothesis::*;
 use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
-use widthwise_core::fit::{FitResult, FitSettings, fit};
+use widthwise_core::fit::influence::influences;
+use widthwise_core::fit::{End, FitResult, FitSettings, Fitter, fit};
 use widthwise_core::scan::*;
 use widthwise_core::units::M_ELECTRON_GEV;
 
@@ -140,6 +142,40 @@ fn lep_seven_points() {
     for nuisance in &result.nuisances {
         assert!(nuisance.pull.abs() < 0.01 && (nuisance.error - 1.0).abs() < 0.01);
     }
+    // The peak as a derived quantity, with its profile: the strength's relative error, nearly symmetric.
+    let mut fitter = Fitter::new(&scan, &settings).unwrap();
+    let minimum = fitter.minimum().unwrap();
+    let covariance = fitter.covariance(&minimum).unwrap();
+    let derived = fitter.derived(&minimum, &covariance, true).unwrap();
+    let get = |id: &str| derived.iter().find(|d| d.id == id).unwrap();
+    let peak = get("r1.peak");
+    assert!((peak.value - 41.466).abs() < 6e-4 && (peak.error - 0.033).abs() < 6e-4);
+    for (end, sign) in [(peak.low.unwrap(), -1.0), (peak.high.unwrap(), 1.0)] {
+        let End::Found { value } = end else {
+            panic!("an end: {end:?}")
+        };
+        assert!(
+            ((value - peak.value) / peak.error - sign).abs() < 0.02,
+            "{value}"
+        );
+    }
+    // Pole of massless channels (PDG: M and sqrt(s_R) differ by 26 and 1.2 MeV at the Z; hep-ph/0001206).
+    let width = result.parameter("r1.width").unwrap().value;
+    assert!((1e3 * (m - get("r1.pole_mass").value) - 26.0).abs() < 0.5);
+    assert!((1e3 * (width - get("r1.pole_width").value) - 1.2).abs() < 0.1);
+    // The profile intervals agree with the curvature errors: nothing here is asymmetric.
+    for p in &result.parameters {
+        let i = fitter.interval(&p.id, 1.0, &minimum, &covariance).unwrap();
+        let error = p.error.unwrap();
+        assert!(
+            ((i.high.value(1.0) - p.value) / error - 1.0).abs() < 0.02,
+            "{i:?}"
+        );
+        assert!(
+            ((p.value - i.low.value(-1.0)) / error - 1.0).abs() < 0.02,
+            "{i:?}"
+        );
+    }
     let degenerate = result
         .warnings
         .iter()
@@ -216,6 +252,17 @@ fn cmd3_phi_scan() {
     );
     assert_eq!(result.degrees_of_freedom, 21);
     assert!(result.stop.is_minimum());
+
+    // Leaving out a point is fitting the other 24.
+    let all = influences(&scan, &settings, &result).unwrap();
+    assert_eq!(all.len(), 25);
+    let mut fewer = scan.clone();
+    fewer.points.remove(11);
+    let again = fit(&fewer, &settings).unwrap();
+    let shift = (again.parameters[0].value - result.parameters[0].value)
+        / result.parameters[0].error.unwrap();
+    assert!((all[11].shifts[0] - shift).abs() < 1e-3, "{shift}");
+    assert!((all[11].statistic_drop - (result.statistic - again.statistic)).abs() < 1e-4);
 
     let Hypothesis::PartialWave(wave) = &mut scan.hypothesis else {
         unreachable!()
