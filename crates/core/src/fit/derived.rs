@@ -3,7 +3,7 @@
 use super::covariance::Covariance;
 use super::equivalent::gamma_product_gev2;
 use super::fitter::Fitter;
-use super::likelihood::Target;
+use super::likelihood::{OfCoordinates, Target};
 use super::profile::End;
 use crate::amplitude::hypothesis::{Form, Hypothesis, Resonance};
 use crate::beam::Beams;
@@ -175,7 +175,7 @@ impl Fitter {
             }
             let (mut low, mut high) = (None, None);
             if profiled {
-                let shared: Rc<dyn Fn(&[f64]) -> f64> = Rc::new(of);
+                let shared: OfCoordinates = Rc::new(of);
                 let mut end = |sign: f64| {
                     self.derived_end(&shared, &gradient, minimum, quantity.value, sign * error)
                 };
@@ -201,7 +201,7 @@ impl Fitter {
     /// the least 2 NLL at the value that the quantity has there.
     fn derived_end(
         &mut self,
-        of: &Rc<dyn Fn(&[f64]) -> f64>,
+        of: &OfCoordinates,
         gradient: &[f64],
         minimum: &Minimum,
         value: f64,

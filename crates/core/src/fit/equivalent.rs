@@ -301,12 +301,12 @@ fn with_poles(wave: &PartialWave, from: &PoleSum, to: &PoleSum) -> PartialWave {
     if let Some(first) = out.resonances.first_mut() {
         first.phase_rad = 0.0;
     }
-    match &mut out.coherent {
-        Some(
-            CoherentBackground::Polynomial { phase_rad, .. }
-            | CoherentBackground::OnePhoton { phase_rad, .. },
-        ) => *phase_rad = wrapped(*phase_rad - turn),
-        _ => {}
+    if let Some(
+        CoherentBackground::Polynomial { phase_rad, .. }
+        | CoherentBackground::OnePhoton { phase_rad, .. },
+    ) = &mut out.coherent
+    {
+        *phase_rad = wrapped(*phase_rad - turn);
     }
     out
 }

@@ -53,10 +53,13 @@ pub struct Prediction {
     pub error_nb: Vec<f64>,
 }
 
+/// A quantity as a function of the coordinates.
+pub type OfCoordinates = Rc<dyn Fn(&[f64]) -> f64>;
+
 /// A narrow Gaussian pull of a derived quantity towards a value: how its profile is walked.
 pub struct Target {
-    /// The quantity as a function of the coordinates.
-    pub of: Rc<dyn Fn(&[f64]) -> f64>,
+    /// The quantity.
+    pub of: OfCoordinates,
     /// Where to.
     pub goal: f64,
     /// Width of the pull.
