@@ -43,9 +43,10 @@ pub fn compare(
     trials: u64,
     seed: u64,
 ) -> Answer<Comparison> {
-    let (Hypothesis::PartialWave(a), Hypothesis::PartialWave(b)) =
-        (&null.0.hypothesis, &alternative.0.hypothesis);
-    if a.twice_j != b.twice_j {
+    if let (Hypothesis::PartialWave(a), Hypothesis::PartialWave(b)) =
+        (&null.0.hypothesis, &alternative.0.hypothesis)
+        && a.twice_j != b.twice_j
+    {
         return Err(Refusal::new(
             "model.j",
             format!("{}/2 and {}/2", a.twice_j, b.twice_j),
@@ -62,8 +63,7 @@ pub fn compare(
         second.problem().parameter_count() as i64 - first.problem().parameter_count() as i64;
     // A resonance that the null lacks has mass, width and phase without meaning there.
     let regular = extra_parameters > 0
-        && a.resonances.len() == b.resonances.len()
-        && a.coherent.is_some() == b.coherent.is_some()
+        && same_terms(&null.0.hypothesis, &alternative.0.hypothesis)
         && !m1.at_bound.iter().any(|at| *at);
     let wilks_p = regular.then(|| chi2_sf(ratio.max(0.0), extra_parameters as f64));
     let mut out = Comparison {
@@ -110,6 +110,20 @@ pub fn compare(
     out.trials_interval = Some(binomial_interval(extreme, total, 1.0));
     out.significance = Some(significance(p));
     Ok(out)
+}
+
+/// Whether both have the same terms, so that every parameter of the one means something in the other.
+fn same_terms(a: &Hypothesis, b: &Hypothesis) -> bool {
+    match (a, b) {
+        (Hypothesis::PartialWave(a), Hypothesis::PartialWave(b)) => {
+            a.resonances.len() == b.resonances.len() && a.coherent.is_some() == b.coherent.is_some()
+        }
+        (Hypothesis::KMatrix(a), Hypothesis::KMatrix(b)) => a.poles.len() == b.poles.len(),
+        (Hypothesis::Diagrams(a), Hypothesis::Diagrams(b)) => {
+            a.mediators.len() == b.mediators.len()
+        }
+        _ => false,
+    }
 }
 
 /// What it takes to tell two hypotheses apart at one energy.

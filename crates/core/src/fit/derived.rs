@@ -5,14 +5,13 @@ use super::equivalent::gamma_product_gev2;
 use super::fitter::Fitter;
 use super::likelihood::{OfCoordinates, Target};
 use super::profile::End;
-use crate::amplitude::hypothesis::{Form, Hypothesis, Resonance};
+use crate::amplitude::hypothesis::Hypothesis;
 use crate::beam::Beams;
 use crate::error::Answer;
 use crate::kinematics::break_up_momentum_gev;
-use crate::math::csqrt;
 use crate::numerics::minimise::{Minimum, Tolerance, minimise};
+use crate::propagator::Propagator;
 use crate::units::{HBAR_GEV_S, HBARC2_GEV2_NB};
-use num_complex::Complex64;
 use serde::{Deserialize, Serialize};
 use std::rc::Rc;
 
@@ -50,13 +49,15 @@ pub struct DerivedValue {
 }
 
 /// What can be derived from a hypothesis: products of strengths, lifetime, peak cross section and area of each
-/// resonance alone, pole position where it has a closed form (constant width, massless channels).
+/// resonance alone, the pole next to the real axis.
 ///
 /// Peak: (2J+1)/(n_a n_b) (4 pi/k^2) B_in B_f at W = M (PDG, "Resonances"); area: pi/2 Gamma times the peak, the
 /// integral of a narrow Breit-Wigner over W.
 #[must_use]
 pub fn quantities(hypothesis: &Hypothesis, beams: &Beams) -> Vec<Quantity> {
-    let Hypothesis::PartialWave(wave) = hypothesis;
+    let Hypothesis::PartialWave(wave) = hypothesis else {
+        return Vec::new();
+    };
     let spins = f64::from(beams.first.spin_states) * f64::from(beams.second.spin_states);
     let weight = (f64::from(wave.twice_j) + 1.0) / spins;
     let mut out = Vec::new();
@@ -69,48 +70,42 @@ pub fn quantities(hypothesis: &Hypothesis, beams: &Beams) -> Vec<Quantity> {
                 value,
             });
         };
-        let product = gamma_product_gev2(&r.strength, r.width_gev);
-        let b_b = product / (r.width_gev * r.width_gev);
-        push(
-            "gamma_in_bf",
-            "entrance width times exit fraction",
-            "GeV",
-            product / r.width_gev,
-        );
-        push("b_in_b_f", "product of branching fractions", "", b_b);
-        push("lifetime", "lifetime", "s", HBAR_GEV_S / r.width_gev);
-        let k = break_up_momentum_gev(r.mass_gev, beams.first.mass_gev, beams.second.mass_gev);
-        let peak = weight * 4.0 * core::f64::consts::PI / (k * k) * b_b * HBARC2_GEV2_NB;
-        push("peak", "peak cross section", "nb", peak);
-        push(
-            "area",
-            "area under the peak",
-            "nb GeV",
-            0.5 * core::f64::consts::PI * r.width_gev * peak,
-        );
-        if let Some(pole) = pole_gev(r) {
-            push("pole_mass", "pole mass (Re sqrt s_R)", "GeV", pole.re);
+        if r.width_gev > 0.0 {
+            push("lifetime", "lifetime", "s", HBAR_GEV_S / r.width_gev);
+        }
+        if let Some(product) = gamma_product_gev2(&r.strength, r.width_gev) {
+            let b_b = product / (r.width_gev * r.width_gev);
+            push(
+                "gamma_in_bf",
+                "entrance width times exit fraction",
+                "GeV",
+                product / r.width_gev,
+            );
+            push("b_in_b_f", "product of branching fractions", "", b_b);
+            let k = break_up_momentum_gev(r.mass_gev, beams.first.mass_gev, beams.second.mass_gev);
+            let peak = weight * 4.0 * core::f64::consts::PI / (k * k) * b_b * HBARC2_GEV2_NB;
+            push("peak", "peak cross section", "nb", peak);
+            push(
+                "area",
+                "area under the peak",
+                "nb GeV",
+                0.5 * core::f64::consts::PI * r.width_gev * peak,
+            );
+        }
+        let pole = Propagator::new(&r.form, r.mass_gev, r.width_gev, "")
+            .ok()
+            .and_then(|p| p.poles().poles.into_iter().next());
+        if let Some(pole) = pole {
+            push("pole_mass", "pole mass (Re sqrt s_R)", "GeV", pole.mass_gev);
             push(
                 "pole_width",
                 "pole width (-2 Im sqrt s_R)",
                 "GeV",
-                -2.0 * pole.im,
+                pole.width_gev,
             );
         }
     }
     out
-}
-
-/// sqrt(s_R) where it has a closed form: s_R = M^2 - i M Gamma, or M^2/(1 + i Gamma/M) for massless channels.
-fn pole_gev(r: &Resonance) -> Option<Complex64> {
-    let (m, g) = (r.mass_gev, r.width_gev);
-    match r.form {
-        Form::ConstantWidth => Some(csqrt(Complex64::new(m * m, -m * g))),
-        Form::MasslessChannels => Some(csqrt(
-            Complex64::new(m * m, 0.0) / Complex64::new(1.0, g / m),
-        )),
-        _ => None,
-    }
 }
 
 const TOLERANCE: Tolerance = Tolerance {

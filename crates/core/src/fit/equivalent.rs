@@ -159,6 +159,12 @@ pub fn has_exact_equivalents(wave: &PartialWave) -> Answer<()> {
                 "equivalent solutions are exact for constant widths only: for other forms several starts look for near ones",
             );
         }
+        if gamma_product_gev2(&r.strength, r.width_gev).is_none() {
+            return refuse(
+                &r.name,
+                "a strength that comes from the form's own couplings cannot be turned",
+            );
+        }
         if r.entrance != first.entrance || r.exit != first.exit {
             return refuse(
                 &r.name,
@@ -191,7 +197,14 @@ pub fn equivalent_solutions(
     hypothesis: &Hypothesis,
     beams: &Beams,
 ) -> Answer<Vec<EquivalentSolution>> {
-    let Hypothesis::PartialWave(wave) = hypothesis;
+    let Hypothesis::PartialWave(wave) = hypothesis else {
+        return Err(Refusal::new(
+            "model",
+            "",
+            "a sum of resonances",
+            "only sums of constant-width resonances have exactly equivalent solutions",
+        ));
+    };
     has_exact_equivalents(wave)?;
     let sum = as_poles(wave, beams);
     let wanted = sum.equivalents()?;
@@ -235,7 +248,9 @@ fn as_poles(wave: &PartialWave, beams: &Beams) -> PoleSum {
             .iter()
             .map(|r| {
                 let m = r.mass_gev;
-                let product = gamma_product_gev2(&r.strength, r.width_gev).max(0.0);
+                let product = gamma_product_gev2(&r.strength, r.width_gev)
+                    .unwrap_or(0.0)
+                    .max(0.0);
                 // A common vertex factor may carry powers of M (M^2/s, s/M^2, q0): they belong to each residue.
                 let own = vertex_scale(&r.entrance, m) * vertex_scale(&r.exit, m);
                 (
@@ -260,22 +275,22 @@ fn vertex_scale(vertex: &Vertex, m: f64) -> f64 {
             let p = barrier_polynomial(two.l, z);
             m * p / crate::math::powi(q, 2 * u32::from(two.l) + 1)
         }
-        #[allow(unreachable_patterns)]
-        _ => 1.0,
+        Vertex::Flatte { .. } | Vertex::Dressed { .. } => 1.0,
     }
 }
 
-/// Gamma_in Gamma_f, GeV^2.
+/// Gamma_in Gamma_f, GeV^2; `None` where a vertex brings its own strength.
 #[must_use]
-pub fn gamma_product_gev2(strength: &Strength, width_gev: f64) -> f64 {
+pub fn gamma_product_gev2(strength: &Strength, width_gev: f64) -> Option<f64> {
     match *strength {
-        Strength::GammaInBf { gev } => gev * width_gev,
-        Strength::BinBf { product } => product * width_gev * width_gev,
-        Strength::Branchings { b_in, b_f } => b_in * b_f * width_gev * width_gev,
+        Strength::GammaInBf { gev } => Some(gev * width_gev),
+        Strength::BinBf { product } => Some(product * width_gev * width_gev),
+        Strength::Branchings { b_in, b_f } => Some(b_in * b_f * width_gev * width_gev),
         Strength::PartialWidths {
             gamma_in_gev,
             gamma_f_gev,
-        } => gamma_in_gev * gamma_f_gev,
+        } => Some(gamma_in_gev * gamma_f_gev),
+        Strength::OneWidth { .. } | Strength::FromForm => None,
     }
 }
 
@@ -295,6 +310,8 @@ fn with_poles(wave: &PartialWave, from: &PoleSum, to: &PoleSum) -> PartialWave {
             Strength::BinBf { product } => *product *= factor,
             Strength::Branchings { b_f, .. } => *b_f *= factor,
             Strength::PartialWidths { gamma_f_gev, .. } => *gamma_f_gev *= factor,
+            // Refused above: these strengths belong to other forms.
+            Strength::OneWidth { .. } | Strength::FromForm => {}
         }
         r.phase_rad = wrapped(arg(-new.1) - turn);
     }

@@ -50,8 +50,8 @@ impl ScanCurve {
         // Widths below the spread are not resolved: the curve then changes over the spread.
         let narrowest = known
             .iter()
-            .filter(|p| p.id.to_string().ends_with(".width"))
-            .map(|p| p.value)
+            .filter(|p| p.id.to_string().ends_with(".mass") && p.scale > 0.0)
+            .map(|p| 5.0 * p.scale)
             .fold(f64::INFINITY, f64::min);
         let feature = if narrowest.is_finite() {
             hypot(narrowest, spread_start_gev)
@@ -98,7 +98,7 @@ impl ScanCurve {
             let mut scale = spec.scale;
             let mut lower = spec.lower.unwrap_or(f64::NEG_INFINITY);
             if id.ends_with(".mass") {
-                scale = 0.2 * hypot(5.0 * scale, spread_start_gev);
+                scale = hypot(scale, 0.2 * spread_start_gev);
             } else if id.ends_with(".width") {
                 // A width of 0 is no width: the fit stops short of it and says so.
                 lower = lower.max(1e-3 * spec.value);

@@ -1,6 +1,5 @@
 //! Asymptotic CLs (arXiv:1007.1727, section 3), and the limit where the signal interferes.
 
-use crate::amplitude::hypothesis::Hypothesis;
 use crate::error::Answer;
 use crate::fit::{FitSettings, Fitter, Kind};
 use crate::numerics::minimise::{Tolerance, minimise};
@@ -51,7 +50,6 @@ pub fn limit_against_phase(
 }
 
 fn one_limit(scan: &Scan, settings: &FitSettings, level: f64) -> Answer<Option<f64>> {
-    let Hypothesis::PartialWave(_) = &scan.hypothesis;
     let mut data = Fitter::new(scan, settings)?;
     let reference = data.problem().start()[0];
     // Background only: strength 0 may be outside the model; a 1e-12 part of it is not visible.

@@ -4,6 +4,7 @@ use super::template::{Limit, Template, significance_of};
 use crate::amplitude::hypothesis::{Hypothesis, Strength};
 use crate::counts::Exposure;
 use crate::error::{Answer, Refusal};
+use crate::fit::equivalent::gamma_product_gev2;
 use crate::line_shape::Chain;
 use crate::math::exp;
 use crate::numerics::probability::normal_cdf;
@@ -24,7 +25,7 @@ pub struct WindowSettings {
     pub seed: u64,
 }
 
-/// One mass of the window. Strengths are in the unit of the first resonance's strength.
+/// One mass of the window. Strengths are Gamma_in B_f in GeV where the sheet gives that, else B_in B_f.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 #[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
 pub struct WindowPlace {
@@ -138,7 +139,14 @@ type Templates = (Vec<f64>, Vec<Option<Template>>);
 
 /// Counts, and the template of each mass.
 fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
-    let Hypothesis::PartialWave(wave) = &scan.hypothesis;
+    let Hypothesis::PartialWave(wave) = &scan.hypothesis else {
+        return Err(Refusal::new(
+            "model",
+            "",
+            "a resonance over a background",
+            "limits over a mass window are worked out for a resonance as incoherent signal",
+        ));
+    };
     if wave.resonances.is_empty() {
         return Err(Refusal::new(
             "model.resonances",
@@ -154,17 +162,13 @@ fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
     let mut unit = 1.0;
     if let Some(r) = signal_wave.resonances.first_mut() {
         // Strengths are reported in the parameter's unit; the template is made at the present one.
+        let width = r.width_gev;
         unit = match r.strength {
             Strength::GammaInBf { gev } => gev,
-            Strength::BinBf { product } => product,
-            Strength::Branchings { b_in, b_f } => b_in * b_f,
-            Strength::PartialWidths {
-                gamma_in_gev,
-                gamma_f_gev,
-            } => gamma_in_gev * gamma_f_gev,
+            _ => gamma_product_gev2(&r.strength, width).unwrap_or(0.0) / (width * width),
         };
     }
-    if unit <= 0.0 {
+    if unit.is_nan() || unit <= 0.0 {
         return Err(Refusal::new(
             "model.resonances[0].strength",
             unit,
