@@ -151,7 +151,13 @@ impl Fitter {
                     let (mut up, mut down) = (minimum.x.clone(), minimum.x.clone());
                     up[i] += h;
                     down[i] -= h;
-                    (of(&up) - of(&down)) / (2.0 * h)
+                    let slope = (of(&up) - of(&down)) / (2.0 * h);
+                    // Rounding of a quantity that does not depend on this parameter is no slope.
+                    if (slope * h).abs() < 1e-12 * quantity.value.abs() {
+                        0.0
+                    } else {
+                        slope
+                    }
                 })
                 .collect();
             let mut variance = 0.0;
