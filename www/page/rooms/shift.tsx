@@ -29,18 +29,21 @@ export function ShiftRoom(): JSX.Element {
 function RunningForm({ row, index }: { row: Row; index: number }): JSX.Element {
   const id = useId();
   const comment = useSignal("");
+  // What is being typed; `null`: what the sheet says. It reaches the sheet with Enter or on leaving the field.
+  const n = useSignal<string | null>(null);
+  const l = useSignal<string | null>(null);
   const unit = columnUnit("luminosity");
-  const bare = withoutUnit(row.luminosity ?? "", unit);
   const here = answers.points.value.find((point) => point.id === row.id) ?? null;
-  const enter = (form: HTMLFormElement): void => {
-    const values = new FormData(form);
-    const n = String(values.get("n") ?? "").trim();
-    const l = withUnit(String(values.get("l") ?? ""), unit);
-    if (n !== (row.counts ?? "")) setCell(index, "counts", n);
-    if (l !== (row.luminosity ?? "")) setCell(index, "luminosity", l);
+  const enter = (): void => {
+    if (n.value !== null && n.value.trim() !== (row.counts ?? "")) setCell(index, "counts", n.value.trim());
+    if (l.value !== null) {
+      const text = withUnit(l.value, unit);
+      if (text !== (row.luminosity ?? "")) setCell(index, "luminosity", text);
+    }
+    n.value = null;
+    l.value = null;
   };
-  const countsProblem = answers.problemAt(`data.rows[${index}].counts`);
-  const lumiProblem = answers.problemAt(`data.rows[${index}].luminosity`);
+  const problems = ["counts", "luminosity"].map((field) => answers.problemAt(`data.rows[${index}].${field}`)?.message ?? "");
   return (
     <fieldset>
       <legend>Running point {row.id}</legend>
@@ -48,27 +51,49 @@ function RunningForm({ row, index }: { row: Row; index: number }): JSX.Element {
         class="entry"
         onSubmit={(event) => {
           event.preventDefault();
-          enter(event.currentTarget);
+          enter();
         }}
-        onChange={(event) => enter(event.currentTarget)}
+        onChange={enter}
       >
         <div class="field">
           <label for={`${id}n`}>
             Counts <span class="sym">n</span>
           </label>
-          <input id={`${id}n`} class="big" name="n" type="text" inputMode="numeric" autocomplete="off" defaultValue={row.counts ?? ""} key={`n${row.counts ?? ""}`} aria-invalid={countsProblem ? "true" : undefined} aria-describedby={`${id}p`} />
+          <input
+            id={`${id}n`}
+            class="big"
+            name="n"
+            type="text"
+            inputMode="numeric"
+            autocomplete="off"
+            value={n.value ?? row.counts ?? ""}
+            aria-invalid={problems[0] ? "true" : undefined}
+            aria-describedby={`${id}p`}
+            onInput={(event) => (n.value = event.currentTarget.value)}
+          />
         </div>
         <div class="field">
           <label for={`${id}l`}>
             Luminosity <span class="sym">L</span> <span class="quiet">({units(unit)})</span>
           </label>
-          <input id={`${id}l`} class="big" name="l" type="text" inputMode="decimal" autocomplete="off" defaultValue={bare} key={`l${row.luminosity ?? ""}`} aria-invalid={lumiProblem ? "true" : undefined} aria-describedby={`${id}p`} />
+          <input
+            id={`${id}l`}
+            class="big"
+            name="l"
+            type="text"
+            inputMode="decimal"
+            autocomplete="off"
+            value={l.value ?? withoutUnit(row.luminosity ?? "", unit)}
+            aria-invalid={problems[1] ? "true" : undefined}
+            aria-describedby={`${id}p`}
+            onInput={(event) => (l.value = event.currentTarget.value)}
+          />
         </div>
         <button type="submit" class="button button-main">
           Enter
         </button>
         <p class="problem" id={`${id}p`} role="status">
-          {[countsProblem?.message, lumiProblem?.message].filter(Boolean).join(" ")}
+          {problems.filter(Boolean).join(" ")}
         </p>
       </form>
       {here !== null && <Health point={here} />}
