@@ -5,7 +5,9 @@
 //! mediators at once, by diagram, totals inside a cut. No closed form enters either.
 #![allow(clippy::unwrap_used)] // a test may
 
+use num_complex::Complex64;
 use serde_json::Value;
+use widthwise_core::amplitude::Region;
 use widthwise_core::amplitude::born::{Born, Energy};
 use widthwise_core::amplitude::diagrams::PreparedDiagrams;
 use widthwise_core::amplitude::diagrams::total::DiagramTotal;
@@ -82,6 +84,13 @@ fn model(
         },
         beams(reaction, m, other, phi),
     )
+}
+
+fn whole(model: &Diagrams, beams: &Beams) -> DiagramTotal {
+    let region = model
+        .cos_cut
+        .map_or(Region::all(), |cut| Region::cos(-cut, cut).unwrap());
+    DiagramTotal::new(PreparedDiagrams::new(model, beams).unwrap(), region)
 }
 
 fn of_point(point: &Value, cut: Option<f64>) -> (Diagrams, Beams) {
@@ -224,7 +233,7 @@ fn totals_inside_a_cut() {
     assert!(cuts.len() >= 30);
     for point in cuts {
         let (model, beams) = of_point(point, Some(number(&point["abs_cos_below"])));
-        let total = DiagramTotal::new(PreparedDiagrams::new(&model, &beams).unwrap());
+        let total = whole(&model, &beams);
         let at = Energy::at(number(&point["w_gev"]));
         let expected = number(&point["sigma_nb"]);
         assert!(
@@ -252,7 +261,7 @@ fn sharp_forward_peaks_are_integrated() {
             0.0,
             None,
         );
-        let total = DiagramTotal::new(PreparedDiagrams::new(&model, &beams).unwrap());
+        let total = whole(&model, &beams);
         let w = 20.0;
         let a = mass * mass / (w * w);
         let by_hand =
@@ -387,6 +396,131 @@ fn grid_is_the_pointwise_function() {
             );
         }
     }
+}
+
+#[test]
+fn partial_waves_are_those_of_explicit_spinors() {
+    let file: Value =
+        serde_json::from_str(include_str!("../../../tests/reference/spinor_points.json")).unwrap();
+    let waves = file["partial_waves"].as_array().unwrap();
+    assert!(waves.len() >= 50);
+    for case in waves {
+        let phi = mediator(
+            case["kind"].as_str().unwrap(),
+            number(&case["mass_gev"]),
+            number(&case["width_gev"]),
+            number(&case["g_f"]),
+            number(&case["g_F"]),
+        );
+        let name = case["process"].as_str().unwrap();
+        let (model, beams) = model(
+            name,
+            vec![phi],
+            number(&case["m_f_gev"]),
+            number(&case["m_F_gev"]),
+            None,
+        );
+        let total = whole(&model, &beams);
+        let at = Energy::at(number(&case["w_gev"]));
+        let twice_j = case["twice_j"].as_u64().unwrap() as u8;
+        let ours: Vec<_> = total
+            .helicity_waves(at, twice_j)
+            .into_iter()
+            .filter(|wave| wave.twice_j == twice_j)
+            .collect();
+        let by = case["abs_by_helicity"].as_object().unwrap();
+        assert_eq!(by.len(), ours.len(), "{case}");
+        let mark = |h: i8| match h {
+            0 => '0',
+            1 => '+',
+            _ => '-',
+        };
+        for wave in &ours {
+            let ((a, b), (c, d)) = (wave.initial, wave.outgoing);
+            let key: String = [a, b, c, d].map(mark).iter().collect();
+            let found = widthwise_core::math::abs(wave.amplitude);
+            assert!(
+                (found - number(&by[&key])).abs() < 1e-10,
+                "{key} {found} {case}"
+            );
+        }
+        // The change to states of definite parity is unitary.
+        let norm: f64 = total
+            .waves(at, twice_j)
+            .iter()
+            .filter(|wave| wave.twice_j == twice_j)
+            .map(|wave| wave.amplitude.norm_sqr())
+            .sum();
+        assert!((norm - number(&case["sum_abs2"])).abs() < 1e-10 * (1.0 + norm));
+    }
+}
+
+#[test]
+fn s_channel_wave_is_the_unitary_completion() {
+    // a^0 = M Gamma(s) (-Delta) between states of definite parity, unitary: |S| = 1.
+    for pseudoscalar in [false, true] {
+        let phi = Mediator {
+            propagator: MediatorPropagator::Dressed { others: vec![] },
+            pseudoscalar,
+            ..mediator("scalar", 2.2, 0.0, 1.5, 0.0)
+        };
+        let (model, beams) = model("f fbar -> F Fbar", vec![phi], 0.5, 0.5, None);
+        // F = f with its own loop switched off: the pair's s channel alone.
+        let mut model = model;
+        model.mediators[0].g_other = 1.5;
+        let total = whole(&model, &beams);
+        let propagator = total.diagrams().mediator_propagators().next().unwrap();
+        for w in [1.3, 2.2, 3.0] {
+            let waves = total.waves(Energy::at(w), 8);
+            assert_eq!(waves.len(), 1, "{waves:?}");
+            // Two equal channels: half of the unitary amplitude each. Between different pairs the
+            // sign is a convention of the states.
+            let inverse = propagator.inverse_gev2(Energy::at(w));
+            let expected = inverse.inv() * (-0.5 * inverse.im);
+            let ours = waves[0].amplitude;
+            let miss = (ours - expected)
+                .norm_sqr()
+                .min((ours + expected).norm_sqr());
+            assert!(miss < 1e-22, "{w}");
+            let s = Complex64::new(0.0, 4.0) * expected + 1.0;
+            assert!((s.norm_sqr() - 1.0).abs() < 1e-13);
+        }
+    }
+}
+
+#[test]
+fn strong_coupling_breaks_unitarity_somewhere() {
+    let (strong, beams) = model(
+        "f fbar -> f fbar",
+        vec![mediator("scalar", 2.0, 0.02, 6.0, 1.0)],
+        0.5,
+        0.5,
+        None,
+    );
+    let strong = whole(&strong, &beams);
+    let breaches = strong.unitarity_breaches(1.01, 6.0, 40, 8);
+    assert!(!breaches.is_empty());
+    for breach in &breaches {
+        let above = strong.waves(Energy::at(breach.w_gev), 8);
+        let same = above
+            .iter()
+            .find(|w| {
+                w.twice_j == breach.wave.twice_j
+                    && w.initial == breach.wave.initial
+                    && w.outgoing == breach.wave.outgoing
+            })
+            .unwrap();
+        assert!(same.amplitude.re.abs() > 0.5);
+    }
+    let (weak, beams) = model(
+        "f fbar -> f fbar",
+        vec![mediator("scalar", 2.0, 0.02, 0.1, 1.0)],
+        0.5,
+        0.5,
+        None,
+    );
+    let weak = whole(&weak, &beams);
+    assert!(weak.unitarity_breaches(2.1, 6.0, 20, 8).is_empty());
 }
 
 #[test]

@@ -13,6 +13,79 @@ pub enum Hypothesis {
     KMatrix(KMatrix),
     /// Tree-level diagrams.
     Diagrams(Diagrams),
+    /// Several partial waves with their angles.
+    Waves(Waves),
+}
+
+/// Partial waves of several J (or several LS or helicity states of one J) with angles. In the
+/// total they add incoherently; inside a cut or a bin those of common helicities interfere.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct Waves {
+    /// Waves; their resonances are numbered through.
+    pub waves: Vec<AngularWave>,
+    /// Total inside |cos theta| < this; `None`: all angles.
+    pub cos_cut: Option<f64>,
+    /// Background outside the modulus, isotropic.
+    pub incoherent: Option<IncoherentBackground>,
+}
+
+/// One partial wave with its couplings.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct AngularWave {
+    /// T^J(W).
+    pub wave: PartialWave,
+    /// Phase against the first wave, rad; 0 for the first.
+    pub phase_rad: f64,
+    /// Helicities of the beams.
+    pub entrance: Couplings,
+    /// Helicities of the final state.
+    pub exit: Couplings,
+}
+
+/// How a state of given J is made of two particles; only ratios count, the size is in T.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[serde(tag = "kind", rename_all = "snake_case")]
+pub enum Couplings {
+    /// Helicity amplitudes.
+    Helicity {
+        /// Those that are not zero.
+        amplitudes: Vec<HelicityCoupling>,
+    },
+    /// LS couplings.
+    Ls {
+        /// Twice the spin of particle 1.
+        twice_s1: u8,
+        /// Twice the spin of particle 2.
+        twice_s2: u8,
+        /// Terms.
+        terms: Vec<LsTerm>,
+    },
+}
+
+/// One helicity amplitude.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+pub struct HelicityCoupling {
+    /// 2 lambda_1.
+    pub twice_l1: i8,
+    /// 2 lambda_2.
+    pub twice_l2: i8,
+    /// Modulus.
+    pub magnitude: f64,
+    /// Phase, rad.
+    pub phase_rad: f64,
+}
+
+/// One LS term.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize, Deserialize)]
+pub struct LsTerm {
+    /// L.
+    pub l: u8,
+    /// 2S.
+    pub twice_s: u8,
+    /// Modulus.
+    pub magnitude: f64,
+    /// Phase, rad.
+    pub phase_rad: f64,
 }
 
 /// Two-channel K-matrix of one partial wave.

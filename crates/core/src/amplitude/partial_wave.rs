@@ -6,7 +6,7 @@ use super::born::{Born, Energy, Feature};
 use super::hypothesis::{PartialWave, Resonance, Strength};
 use super::vertex::PreparedVertex;
 use crate::beam::Beams;
-use crate::error::{Answer, Refusal};
+use crate::error::{Answer, Refusal, Warning};
 use crate::kinematics::momentum_squared_gev2;
 use crate::math;
 use crate::propagator::Propagator;
@@ -154,6 +154,35 @@ impl PreparedPartialWave {
         momentum_squared_gev2(at.w_gev(), above, self.m1_gev, self.m2_gev)
     }
 
+    /// Largest |T|^2 against its bound between two energies (GeV): 1 for elastic scattering or
+    /// the total, 1/4 for one inelastic final state. Above 1 the sum of resonances breaks
+    /// unitarity there, as a sum of Breit-Wigners can; returns (W, ratio) of the worst point.
+    #[must_use]
+    pub fn unitarity(&self, from_gev: f64, to_gev: f64, points: u32, elastic: bool) -> (f64, f64) {
+        let bound = if elastic { 1.0 } else { 0.25 };
+        let points = points.max(2);
+        let mut worst = (from_gev, 0.0);
+        let mut include = |w: f64| {
+            let ratio = self.amplitude(Energy::at(w)).norm_sqr() / bound;
+            if ratio > worst.1 {
+                worst = (w, ratio);
+            }
+        };
+        for i in 0..points {
+            include(from_gev + (to_gev - from_gev) * f64::from(i) / f64::from(points - 1));
+        }
+        for term in &self.terms {
+            let (mass, width) = (term.propagator.mass_gev(), term.propagator.width_gev());
+            for step in -8..=8 {
+                let w = mass + 0.25 * f64::from(step) * width;
+                if w >= from_gev && w <= to_gev {
+                    include(w);
+                }
+            }
+        }
+        worst
+    }
+
     /// T_f of the whole coherent sum (the point of the Argand diagram); 0 below threshold.
     #[must_use]
     pub fn amplitude(&self, at: Energy) -> Complex64 {
@@ -235,6 +264,13 @@ impl Born for PreparedPartialWave {
         if let Some(slot) = slots.next() {
             *slot = self.incoherent.sigma_nb(at);
         }
+    }
+
+    fn warnings(&self) -> Vec<Warning> {
+        self.terms
+            .iter()
+            .flat_map(|term| term.propagator.warnings())
+            .collect()
     }
 
     #[inline]

@@ -5,9 +5,13 @@
 //! closed polynomials of `structures`; everything else is sums of c. Fermion-number signs and
 //! the products between scalar and pseudoscalar mediators in different channels are in them.
 
+mod helicity;
 mod prepare;
 mod structures;
 pub mod total;
+pub mod waves;
+
+pub use helicity::Helicities;
 
 use super::background::Incoherent;
 use super::born::Energy;
@@ -114,8 +118,6 @@ pub struct PreparedDiagrams {
     mediators: Vec<PreparedMediator>,
     diagrams: Vec<(Channel, usize)>,
     names: Vec<String>,
-    pub(crate) cos_cut: f64,
-    cut_given: bool,
     pub(crate) incoherent: Incoherent,
     warnings: Vec<Warning>,
 }
@@ -125,7 +127,7 @@ impl PreparedDiagrams {
     ///
     /// # Errors
     /// Beams that are not those of the reaction; no or too many mediators; a mediator that the
-    /// s channel reaches on shell without a width; an unstable external scalar; a cut outside 0 to 1.
+    /// s channel reaches on shell without a width; an unstable external scalar.
     pub fn new(model: &Diagrams, beams: &Beams) -> Answer<Self> {
         use super::born::Checked;
         beams.check("beam")?;
@@ -154,15 +156,6 @@ impl PreparedDiagrams {
             .first()
             .map_or(0.0, |mediator| mediator.mass_gev);
         let masses = prepare::check_beams(model, beams, phi)?;
-        let cut = model.cos_cut.unwrap_or(1.0);
-        if !(cut > 0.0 && cut <= 1.0) {
-            return Err(Refusal::new(
-                format!("{path}.cos_cut"),
-                cut,
-                "above 0 and at most 1",
-                "the cut on |cos theta| lies between 0 and 1",
-            ));
-        }
         if reaction == Reaction::Compton && phi >= 2.0 * m {
             return Err(Refusal::new(
                 format!("{path}.mediators[0].mass"),
@@ -209,8 +202,6 @@ impl PreparedDiagrams {
             names: prepare::names(model, &diagrams),
             mediators,
             diagrams,
-            cos_cut: cut,
-            cut_given: model.cos_cut.is_some(),
             incoherent: Incoherent::new(model.incoherent.as_ref(), path)?,
             warnings,
         })
@@ -232,11 +223,8 @@ impl PreparedDiagrams {
         self.reaction.channels() != [Channel::S]
     }
 
-    pub(crate) fn cut_given(&self) -> bool {
-        self.cut_given
-    }
-
-    pub(crate) fn propagators(&self) -> impl Iterator<Item = &Propagator> {
+    /// Propagators of the mediators, in their order.
+    pub fn mediator_propagators(&self) -> impl Iterator<Item = &Propagator> {
         self.mediators.iter().map(|mediator| &mediator.propagator)
     }
 

@@ -1,4 +1,4 @@
-//! Totals of the tree-level reactions inside |cos theta| < c, as a Born cross section.
+//! Totals of the tree-level reactions inside an angular region, as a Born cross section.
 //!
 //! s channel alone: isotropic, closed. Otherwise Gauss-Legendre panels in the logarithm of the
 //! distance from the nearest denominator beyond cos theta = +-1, in which forward and backward
@@ -6,6 +6,7 @@
 
 use super::{PreparedDiagrams, Stu};
 use crate::amplitude::born::{Born, Energy, Feature};
+use crate::amplitude::waves::Region;
 use crate::error::{Answer, Refusal, Warning};
 use crate::numerics::gauss_legendre::gauss_legendre;
 
@@ -18,15 +19,17 @@ const PANEL: f64 = 3.0;
 #[derive(Debug, Clone, PartialEq)]
 pub struct DiagramTotal {
     diagrams: PreparedDiagrams,
+    region: Region,
     rule: Vec<(f64, f64)>,
 }
 
 impl DiagramTotal {
-    /// Adds the angular quadrature.
+    /// Adds the angular quadrature over a region (an incoherent background counts as isotropic).
     #[must_use]
-    pub fn new(diagrams: PreparedDiagrams) -> Self {
+    pub fn new(diagrams: PreparedDiagrams, region: Region) -> Self {
         Self {
             diagrams,
+            region,
             rule: gauss_legendre(NODES),
         }
     }
@@ -37,25 +40,39 @@ impl DiagramTotal {
         &self.diagrams
     }
 
-    /// Calls `at_node(cos, weight)` for a rule on [-c, c] that suits the poles of the reaction at W.
-    pub(crate) fn each_node(&self, w_gev: f64, cut: f64, mut at_node: impl FnMut(f64, f64)) {
+    /// Calls `at_node(cos, weight)` for a rule on the intervals that suits the poles of the
+    /// reaction at W.
+    pub(crate) fn each_node(
+        &self,
+        w_gev: f64,
+        intervals: &[(f64, f64)],
+        mut at_node: impl FnMut(f64, f64),
+    ) {
         let (right, left) = self.diagrams.angular_poles(w_gev);
-        self.half(right, cut, &mut at_node);
-        self.half(-left, cut, |cos, weight| at_node(-cos, weight));
+        for &(from, to) in intervals {
+            if to > 0.0 {
+                self.half(right, from.max(0.0), to, &mut at_node);
+            }
+            if from < 0.0 {
+                self.half(-left, (-to).max(0.0), -from, |cos, weight| {
+                    at_node(-cos, weight)
+                });
+            }
+        }
     }
 
-    /// The interval [0, c] with a pole at `pole` >= 1 (possibly infinite).
-    fn half(&self, pole: f64, cut: f64, mut at_node: impl FnMut(f64, f64)) {
+    /// The interval [a, b], 0 <= a < b <= 1, with a pole at `pole` >= 1 (possibly infinite).
+    fn half(&self, pole: f64, a: f64, b: f64, mut at_node: impl FnMut(f64, f64)) {
         // Far poles need no stretching.
         if pole > 4.0 {
             for (x, weight) in &self.rule {
-                at_node(0.5 * cut * (x + 1.0), 0.5 * cut * weight);
+                at_node(a + 0.5 * (b - a) * (x + 1.0), 0.5 * (b - a) * weight);
             }
             return;
         }
         // A pole at 1 itself (massless exchange at the edge) is cut at rounding.
-        let near = (pole - cut).max(1e-15);
-        let length = crate::math::ln(pole / near);
+        let near = (pole - b).max(1e-15);
+        let length = crate::math::ln((pole - a) / near);
         let panels = (length / PANEL).ceil().max(1.0);
         let step = length / panels;
         let mut start = crate::math::ln(near);
@@ -72,13 +89,12 @@ impl DiagramTotal {
         let w = at.w_gev();
         let s_part = self.diagrams.s_sums(at);
         let (middle, forward) = (self.diagrams.stu(w, 0.0), self.diagrams.stu(w, 1.0));
-        let cut = self.diagrams.cos_cut;
         if !self.diagrams.has_exchange() {
             let sums = self.diagrams.sums(at, &middle, s_part);
-            return 2.0 * cut * self.diagrams.m2_of(&sums, &middle);
+            return 2.0 * self.region.fraction() * self.diagrams.m2_of(&sums, &middle);
         }
         let mut total = 0.0;
-        self.each_node(w, cut, |cos, weight| {
+        self.each_node(w, self.region.intervals(), |cos, weight| {
             let x = between(&middle, &forward, cos);
             total += weight * self.diagrams.m2_of(&self.diagrams.sums(at, &x, s_part), &x);
         });
@@ -104,7 +120,7 @@ impl Born for DiagramTotal {
             return f64::INFINITY;
         }
         self.diagrams
-            .propagators()
+            .mediator_propagators()
             .map(crate::propagator::Propagator::upper_limit_gev)
             .fold(f64::INFINITY, f64::min)
     }
@@ -114,7 +130,7 @@ impl Born for DiagramTotal {
             w_gev: self.threshold_gev(),
         }];
         if self.diagrams.has_s_mediator() {
-            for propagator in self.diagrams.propagators() {
+            for propagator in self.diagrams.mediator_propagators() {
                 features.extend(propagator.features());
             }
         }
@@ -133,11 +149,11 @@ impl Born for DiagramTotal {
         let w = at.w_gev();
         let scale = self.diagrams.prefactor_nb(w) * self.diagrams.reaction.identical_factor();
         let (middle, forward) = (self.diagrams.stu(w, 0.0), self.diagrams.stu(w, 1.0));
-        self.each_node(w, self.diagrams.cos_cut, |cos, weight| {
+        self.each_node(w, self.region.intervals(), |cos, weight| {
             self.diagrams
                 .add_parts(at, &between(&middle, &forward, cos), scale * weight, out);
         });
-        let incoherent = self.diagrams.incoherent.sigma_nb(at);
+        let incoherent = self.region.fraction() * self.diagrams.incoherent.sigma_nb(at);
         if self.diagrams.incoherent != crate::amplitude::background::Incoherent::None
             && let Some(last) = out.last_mut()
         {
@@ -151,7 +167,7 @@ impl Born for DiagramTotal {
         }
         let scale =
             self.diagrams.prefactor_nb(at.w_gev()) * self.diagrams.reaction.identical_factor();
-        scale * self.integrate(at) + self.diagrams.incoherent.sigma_nb(at)
+        scale * self.integrate(at) + self.region.fraction() * self.diagrams.incoherent.sigma_nb(at)
     }
 
     fn warnings(&self) -> Vec<Warning> {
@@ -162,7 +178,7 @@ impl Born for DiagramTotal {
         if !self.diagrams.has_exchange() {
             return Ok(Vec::new());
         }
-        if !self.diagrams.cut_given() {
+        if self.region == Region::all() {
             return Err(Refusal::new(
                 "model.cos_cut",
                 "none",

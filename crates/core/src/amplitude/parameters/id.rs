@@ -21,6 +21,8 @@ pub enum ParameterId {
     KConstant(u8),
     /// Of a mediator of the diagrams: `d1.g`.
     Mediator(u16, MediatorParameter),
+    /// Phase of a wave against the first: `w2.phase`.
+    WavePhase(u16),
 }
 
 /// Parameters of one resonance.
@@ -132,6 +134,7 @@ impl fmt::Display for ParameterId {
             Self::Resonance(i, parameter) => {
                 write!(f, "r{}.{}", i + 1, name(&RESONANCE, parameter))
             }
+            Self::WavePhase(i) => write!(f, "w{}.phase", i + 1),
             Self::CoherentPhase => write!(f, "coherent.phase"),
             Self::Coherent(i) => write!(f, "coherent.{i}"),
             Self::Incoherent(i) => write!(f, "incoherent.{i}"),
@@ -166,6 +169,9 @@ impl FromStr for ParameterId {
                 let parameter = find(&RESONANCE, rest)
                     .or_else(|| coupling(rest).map(ResonanceParameter::Coupling))?;
                 return Some(Self::Resonance(i, parameter));
+            }
+            if let (Some(i), "phase") = (index(room, 'w'), rest) {
+                return Some(Self::WavePhase(i));
             }
             if let Some(i) = index(room, 'k') {
                 return Some(Self::KPole(i, find(&K_POLE, rest)?));

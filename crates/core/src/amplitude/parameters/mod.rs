@@ -2,7 +2,7 @@
 
 use super::hypothesis::{
     CoherentBackground, Diagrams, Form, Hypothesis, IncoherentBackground, KMatrix, Loop,
-    MediatorPropagator, PartialWave, Reaction, Resonance, Strength,
+    MediatorPropagator, PartialWave, Reaction, Resonance, Strength, Waves,
 };
 use crate::error::{Answer, Refusal};
 use core::fmt;
@@ -47,6 +47,7 @@ impl Hypothesis {
             Self::PartialWave(wave) => wave_parameters(wave),
             Self::KMatrix(model) => kmatrix_parameters(model),
             Self::Diagrams(model) => diagram_parameters(model),
+            Self::Waves(model) => waves_parameters(model),
         }
     }
 
@@ -100,6 +101,7 @@ impl Hypothesis {
             Self::PartialWave(wave) => wave_slot(wave, id),
             Self::KMatrix(model) => kmatrix_slot(model, id),
             Self::Diagrams(model) => diagram_slot(model, id),
+            Self::Waves(model) => waves_slot(model, id),
         }
     }
 }
@@ -227,6 +229,62 @@ fn diagram_slot(model: &mut Diagrams, id: ParameterId) -> Option<&mut f64> {
             MediatorPropagator::Dressed { others } => loop_slot(others, n),
         },
     }
+}
+
+/// Resonances are numbered through all waves; the coherent background is the first wave's.
+fn waves_slot(model: &mut Waves, id: ParameterId) -> Option<&mut f64> {
+    match id {
+        ParameterId::Resonance(index, parameter) => {
+            let mut left = usize::from(index);
+            for wave in &mut model.waves {
+                let count = wave.wave.resonances.len();
+                if left < count {
+                    let local = ParameterId::Resonance(u16::try_from(left).ok()?, parameter);
+                    return wave_slot(&mut wave.wave, local);
+                }
+                left -= count;
+            }
+            None
+        }
+        ParameterId::WavePhase(0) => None,
+        ParameterId::WavePhase(i) => model
+            .waves
+            .get_mut(usize::from(i))
+            .map(|wave| &mut wave.phase_rad),
+        ParameterId::Incoherent(i) => incoherent_slot(&mut model.incoherent, i),
+        ParameterId::Coherent(_) | ParameterId::CoherentPhase => {
+            wave_slot(&mut model.waves.first_mut()?.wave, id)
+        }
+        _ => None,
+    }
+}
+
+fn waves_parameters(model: &Waves) -> Vec<ParameterSpec> {
+    let mut all = Vec::new();
+    let mut before = 0u16;
+    for (i, wave) in (0u16..).zip(&model.waves) {
+        for mut one in wave_parameters(&wave.wave) {
+            match &mut one.id {
+                ParameterId::Resonance(index, _) => *index += before,
+                _ if i > 0 => continue,
+                _ => {}
+            }
+            all.push(one);
+        }
+        if i > 0 {
+            let label = format!("phase of wave {}", i + 1);
+            all.push(spec(
+                ParameterId::WavePhase(i),
+                label,
+                "rad",
+                wave.phase_rad,
+                FREE,
+            ));
+        }
+        before += u16::try_from(wave.wave.resonances.len()).unwrap_or(0);
+    }
+    incoherent_parameters(model.incoherent.as_ref(), &mut all);
+    all
 }
 
 fn kmatrix_parameters(model: &KMatrix) -> Vec<ParameterSpec> {
