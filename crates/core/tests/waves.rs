@@ -214,14 +214,18 @@ fn parameters_run_through_the_waves() {
     let sigma = |h: &Hypothesis| {
         h.prepare_in(&beams(), &region)
             .unwrap()
-            .sigma_nb(Energy::at(3.0))
+            .sigma_nb(Energy::at(3.03))
     };
     let before = sigma(&hypothesis);
     for id in ids {
         let value = hypothesis.get(&id).unwrap();
         hypothesis.set(&id, 1.01 * value + 1e-3).unwrap();
-        if id != "incoherent.1" {
-            assert!((sigma(&hypothesis) / before - 1.0).abs() > 1e-9, "{id}");
+        let change = (sigma(&hypothesis) / before - 1.0).abs();
+        // The third wave has the other parity: its phase is seen at no angle.
+        if id == "w3.phase" {
+            assert!(change < 1e-13);
+        } else {
+            assert!(change > 1e-9, "{id}");
         }
         hypothesis.set(&id, value).unwrap();
     }
