@@ -2,6 +2,7 @@
 
 use crate::{Row, list, number, table, text};
 use serde_json::Value;
+use widthwise_core::amplitude::Region;
 use widthwise_core::amplitude::born::{Born, Energy};
 use widthwise_core::amplitude::diagrams::PreparedDiagrams;
 use widthwise_core::amplitude::diagrams::total::DiagramTotal;
@@ -12,7 +13,7 @@ use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
 
 const SOURCE: &str = "tests/reference/spinors.py: explicit Dirac spinors and matrices, NumPy";
 
-fn prepared(entry: &Value, cos_cut: Option<f64>) -> PreparedDiagrams {
+fn prepared(entry: &Value) -> PreparedDiagrams {
     let reaction = match text(&entry["process"]) {
         "f fbar -> F Fbar" => Reaction::PairToOtherPair,
         "f F -> f F" => Reaction::OtherElastic,
@@ -62,7 +63,7 @@ fn prepared(entry: &Value, cos_cut: Option<f64>) -> PreparedDiagrams {
         reaction,
         other_mass_gev: other,
         mediators,
-        cos_cut,
+        cos_cut: None,
         incoherent: None,
     };
     PreparedDiagrams::new(&model, &beams).unwrap()
@@ -88,7 +89,7 @@ pub fn rows() -> Vec<Row> {
     );
     for entry in list(&file["points"]) {
         let (w, cos) = (number(&entry["w_gev"]), number(&entry["cos_theta"]));
-        let model = prepared(entry, None);
+        let model = prepared(entry);
         let theirs = number(&entry["m2_avg"]);
         let largest = entry["by_diagram"]
             .as_object()
@@ -115,8 +116,9 @@ pub fn rows() -> Vec<Row> {
     );
     for entry in list(&file["cut_totals"]) {
         let w = number(&entry["w_gev"]);
-        let model = prepared(entry, Some(number(&entry["abs_cos_below"])));
-        let ours = DiagramTotal::new(model).sigma_nb(Energy::at(w));
+        let edge = number(&entry["abs_cos_below"]);
+        let region = Region::cos(-edge, edge).unwrap();
+        let ours = DiagramTotal::new(prepared(entry), region).sigma_nb(Energy::at(w));
         total.relative(
             ours,
             number(&entry["sigma_nb"]),
