@@ -4,26 +4,37 @@
 //! 0 for W' <= W_min; F takes W' before radiation, everything inside sigma the W that is left.
 //! sigma_obs(W) = int G(W'-W) sigma_rad(W') dW' over W' > 0, sigma_W constant inside the integral.
 
-mod direct;
+mod blurred;
+mod engine;
+mod radiated;
 mod radiator;
+mod shape;
+mod skeleton;
+mod smear;
+mod source;
+mod targets;
 
 pub use radiator::{Emission, Radiator};
 
 use crate::amplitude::born::{Born, Energy};
 use crate::beam::Beams;
 use crate::error::{Answer, Refusal, Warning};
-use crate::math;
-use crate::numerics::quadrature::Rule;
 use crate::scan::{ChainSettings, Spread, Stage};
-use direct::{Shape, Source};
+use blurred::Law;
+use engine::{Engine, Spreading};
+use source::BornSource;
 
 /// What acts on a Born cross section before the detector sees it.
+///
+/// It remembers kernels and rows of recent energies, so that a second model at the same energies
+/// costs little; the answers do not depend on what is remembered. One chain serves one thread:
+/// clone it for others.
 #[derive(Debug, Clone)]
 pub struct Chain {
     radiator: Option<Radiator>,
     spread: Spread,
     accuracy: f64,
-    rule: Rule,
+    engine: Engine,
 }
 
 /// The total at requested energies.
@@ -101,26 +112,46 @@ impl Chain {
             radiator,
             spread: settings.spread.clone(),
             accuracy: settings.accuracy,
-            rule: Rule::new(),
+            engine: Engine::default(),
         })
+    }
+
+    fn law(&self) -> Option<Law> {
+        match self.spread {
+            Spread::Gaussian {
+                sigma_gev,
+                w0_gev,
+                power,
+            } => Some(Law {
+                sigma_gev,
+                w0_gev,
+                power,
+            }),
+            Spread::None | Spread::Table { .. } => None,
+        }
     }
 
     /// sigma_W of the Gaussian spread at a nominal setting, GeV; `None` if there is no
     /// Gaussian spread.
     #[must_use]
     pub fn sigma_w_gev(&self, w_gev: f64) -> Option<f64> {
-        match self.spread {
-            Spread::Gaussian {
-                sigma_gev,
-                w0_gev,
-                power,
-            } => Some(sigma_gev * math::pow(w_gev / w0_gev, power)),
-            Spread::None | Spread::Table { .. } => None,
-        }
+        self.law().map(|law| law.at(w_gev))
+    }
+
+    /// The radiation, if any.
+    #[must_use]
+    pub fn radiator(&self) -> Option<&Radiator> {
+        self.radiator.as_ref()
+    }
+
+    /// Requested relative accuracy.
+    #[must_use]
+    pub fn accuracy(&self) -> f64 {
+        self.accuracy
     }
 
     /// The total at `w_gev` (any order, duplicates allowed), compared at `stage`.
-    /// `sigma_w_gev`, one entry per energy, overrides the Gaussian spread where it is `Some`.
+    /// `sigma_w_gev`, one entry per energy, overrides the spread where it is `Some`.
     ///
     /// # Errors
     /// An energy or a spread that is not a number above 0.
@@ -132,22 +163,52 @@ impl Chain {
         stage: Stage,
     ) -> Answer<CrossSections> {
         check_energies(w_gev)?;
-        let source = Source::new(born, false);
-        let mut values_nb = Vec::with_capacity(w_gev.len());
-        for (index, &w) in w_gev.iter().enumerate() {
-            let own = sigma_w_gev.and_then(|list| list.get(index).copied().flatten());
-            values_nb.push(
-                self.at_stage(&source, w, own, stage)?
-                    .first()
-                    .copied()
-                    .unwrap_or(0.0),
-            );
-        }
-        Ok(CrossSections {
-            values_nb,
-            accuracy: self.accuracy,
+        let mut out = CrossSections {
+            values_nb: vec![0.0; w_gev.len()],
+            accuracy: 0.0,
             warnings: Vec::new(),
-        })
+        };
+        let radiator = match stage {
+            Stage::Observed => self.radiator.as_ref(),
+            Stage::RadiationRemoved => None,
+            Stage::Born => {
+                for (slot, w) in out.values_nb.iter_mut().zip(w_gev) {
+                    *slot = born.sigma_nb(Energy::at(*w));
+                }
+                return Ok(out);
+            }
+        };
+        let source = BornSource::new(born, false, radiator.map_or(0.0, |r| r.w_min_gev));
+        // Energies of one spread go through the chain together.
+        let mut groups: Vec<(Option<f64>, Vec<usize>)> = Vec::new();
+        for index in 0..w_gev.len() {
+            let own = sigma_w_gev.and_then(|list| list.get(index).copied().flatten());
+            if let Some(sigma) = own
+                && !(sigma.is_finite() && sigma > 0.0)
+            {
+                return Err(bad_sigma("points.sigma_w", sigma));
+            }
+            match groups.iter_mut().find(|group| group.0 == own) {
+                Some(group) => group.1.push(index),
+                None => groups.push((own, vec![index])),
+            }
+        }
+        for (own, members) in groups {
+            let energies: Vec<f64> = members.iter().map(|&i| w_gev[i]).collect();
+            let reached = self.engine.run(
+                radiator,
+                self.spreading(own),
+                self.accuracy,
+                &source,
+                &energies,
+            );
+            out.accuracy = out.accuracy.max(reached.accuracy);
+            for (member, value) in members.into_iter().zip(reached.total()) {
+                out.values_nb[member] = value;
+            }
+        }
+        out.warnings.extend(self.shortfall(out.accuracy));
+        Ok(out)
     }
 
     /// Born, radiated and observed cross section and each contribution at `w_gev`.
@@ -156,63 +217,63 @@ impl Chain {
     /// An energy that is not a number above 0.
     pub fn curve(&self, born: &dyn Born, w_gev: &[f64]) -> Answer<Curve> {
         check_energies(w_gev)?;
-        let (total, split) = (Source::new(born, false), Source::new(born, true));
-        let mut curve = Curve {
+        let floor = self.radiator.map_or(0.0, |r| r.w_min_gev);
+        let (total, split) = (
+            BornSource::new(born, false, floor),
+            BornSource::new(born, true, floor),
+        );
+        let born_nb: Vec<f64> = w_gev.iter().map(|&w| born.sigma_nb(Energy::at(w))).collect();
+        let radiator = self.radiator.as_ref();
+        let run = |spreading, source| {
+            self.engine
+                .run(radiator, spreading, self.accuracy, source, w_gev)
+        };
+        let observed = run(self.spreading(None), &split);
+        let (radiated_nb, radiated_accuracy) = if radiator.is_none() {
+            (born_nb.clone(), 0.0)
+        } else {
+            let radiated = run(Spreading::None, &total);
+            (radiated.total(), radiated.accuracy)
+        };
+        let accuracy = observed.accuracy.max(radiated_accuracy);
+        Ok(Curve {
             w_gev: w_gev.to_vec(),
-            born_nb: Vec::with_capacity(w_gev.len()),
-            radiated_nb: Vec::with_capacity(w_gev.len()),
-            observed_nb: Vec::with_capacity(w_gev.len()),
+            born_nb,
+            radiated_nb,
+            observed_nb: observed.total(),
             contributions: born
                 .contribution_names()
                 .into_iter()
-                .map(|name| (name, Vec::with_capacity(w_gev.len())))
+                .zip(observed.channels)
                 .collect(),
-            accuracy: self.accuracy,
-            warnings: Vec::new(),
-        };
-        for &w in w_gev {
-            curve.born_nb.push(born.sigma_nb(Energy::at(w)));
-            let radiated = direct::before_spread(&self.rule, self.radiator.as_ref(), &total, w);
-            curve
-                .radiated_nb
-                .push(radiated.first().copied().unwrap_or(0.0));
-            let parts = self.at_stage(&split, w, None, Stage::Observed)?;
-            curve.observed_nb.push(parts.iter().sum());
-            for (part, (_, column)) in parts.iter().zip(&mut curve.contributions) {
-                column.push(*part);
-            }
-        }
-        Ok(curve)
+            accuracy,
+            warnings: self.shortfall(accuracy),
+        })
     }
 
-    fn at_stage(
-        &self,
-        source: &Source<'_>,
-        w_gev: f64,
-        own_sigma_gev: Option<f64>,
-        stage: Stage,
-    ) -> Answer<Vec<f64>> {
-        let radiator = match stage {
-            Stage::Observed => self.radiator.as_ref(),
-            Stage::RadiationRemoved => None,
-            Stage::Born => return Ok(direct::before_spread(&self.rule, None, source, w_gev)),
-        };
-        if let Some(sigma) = own_sigma_gev
-            && !(sigma.is_finite() && sigma > 0.0)
-        {
-            return Err(bad_sigma("points.sigma_w", sigma));
-        }
-        let shape = match (&self.spread, own_sigma_gev.or(self.sigma_w_gev(w_gev))) {
-            (_, Some(sigma_gev)) => Shape::Gaussian { sigma_gev },
-            (Spread::Table { rows }, None) => Shape::Table {
+    fn spreading(&self, own_sigma_gev: Option<f64>) -> Spreading<'_> {
+        match (own_sigma_gev, &self.spread, self.law()) {
+            (Some(sigma), ..) => Spreading::Gaussian(Law::constant(sigma)),
+            (None, _, Some(law)) => Spreading::Gaussian(law),
+            (None, Spread::Table { rows }, None) => Spreading::Rows {
                 rows,
                 area: trapezium_area(rows),
             },
-            _ => return Ok(direct::before_spread(&self.rule, radiator, source, w_gev)),
-        };
-        Ok(direct::after_spread(
-            &self.rule, radiator, source, w_gev, &shape,
-        ))
+            _ => Spreading::None,
+        }
+    }
+
+    fn shortfall(&self, reached: f64) -> Vec<Warning> {
+        if reached <= self.accuracy {
+            return Vec::new();
+        }
+        vec![Warning::new(
+            "accuracy-not-reached",
+            format!(
+                "The curve is accurate to {reached:.1e} only; {:.1e} was asked for.",
+                self.accuracy
+            ),
+        )]
     }
 }
 
