@@ -33,7 +33,11 @@ fn main() {
         accuracy: 1e-6,
     };
     let chain = || Chain::new(&settings, &electrons()).expect("valid settings");
-    for (name, n) in [("12 energies", 12), ("500 energies", 500), ("10,000 energies", 10_000)] {
+    for (name, n) in [
+        ("12 energies", 12),
+        ("500 energies", 500),
+        ("10,000 energies", 10_000),
+    ] {
         let w: Vec<f64> = (0..n)
             .map(|i| line.mass - 8e-3 + 20e-3 * f64::from(i) / f64::from(n - 1))
             .collect();
@@ -45,7 +49,9 @@ fn main() {
         for round in 0..15 {
             let chain = chain();
             let start = Instant::now();
-            let first = chain.cross_sections(&line, &w, None, Stage::Observed).expect("valid");
+            let first = chain
+                .cross_sections(&line, &w, None, Stage::Observed)
+                .expect("valid");
             cold.push(1e3 * start.elapsed().as_secs_f64());
             let other = Line {
                 width: line.width * (1.0 + 0.01 * f64::from(round)),
@@ -53,7 +59,9 @@ fn main() {
                 ..line.clone()
             };
             let start = Instant::now();
-            chain.cross_sections(&other, &w, None, Stage::Observed).expect("valid");
+            chain
+                .cross_sections(&other, &w, None, Stage::Observed)
+                .expect("valid");
             warm.push(1e3 * start.elapsed().as_secs_f64());
             let start = Instant::now();
             chain.curve(&other, &w).expect("valid");

@@ -69,7 +69,7 @@ impl GaussBlocks {
 pub(super) struct Table {
     law: Law,
     w_min_gev: f64,
-    /// W_s.
+    /// ln W_s.
     settings: Vec<f64>,
     /// Panels in (W-w)/W: [2^-(k+1), 2^-k] for k = 1..=middle.
     middle: usize,
@@ -79,7 +79,9 @@ pub(super) struct Table {
     coefficients: Vec<Vec<AtNodes>>,
 }
 
-fn chebyshev_points(low: f64, high: f64, n: usize) -> Vec<f64> {
+/// ln W of a few energies: the kernel is nearly a power of W.
+fn chebyshev_points(low_gev: f64, high_gev: f64, n: usize) -> Vec<f64> {
+    let (low, high) = (math::ln(low_gev), math::ln(high_gev));
     (0..n)
         .map(|k| {
             let angle = core::f64::consts::PI * (k as f64 + 0.5) / n as f64;
@@ -164,7 +166,8 @@ impl Table {
                 high_gev + REACH * widest,
             )
         });
-        for &w in &table.settings {
+        for &ln_w in &table.settings {
+            let w = math::exp(ln_w);
             let sigma = law.at(w);
             let mut panels = match &common {
                 Some(curves) => curves.panels(rule, w),
@@ -218,7 +221,7 @@ impl Table {
         let mut weights = [0.0; 4];
         let n = self.settings.len();
         if let Some(weights) = weights.get_mut(..n) {
-            lagrange(&self.settings, w_gev, weights);
+            lagrange(&self.settings, math::ln(w_gev), weights);
         }
         let panels = NEAR_PANELS + self.middle + self.lower;
         let mut coefficients = vec![[0.0; NODES]; panels];
@@ -259,7 +262,7 @@ impl NearCurves {
         let points = chebyshev_points(low, high, if high < 1.025 * low { 3 } else { 5 });
         let curves = points
             .iter()
-            .map(|&w| Self::curve(rule, gauss, radiator, sigma, w))
+            .map(|&ln_w| Self::curve(rule, gauss, radiator, sigma, math::exp(ln_w)))
             .collect();
         Self {
             sigma,
@@ -279,6 +282,7 @@ impl NearCurves {
         let mut weighted = [[0.0; NODES]; NEAR_PANELS];
         let first = radiator.at(w);
         let power = rule.power_weights(first.beta);
+        let power_log = rule.power_log_weights(first.beta);
         let log = rule.log_weights();
         for (panel, out) in weighted.iter_mut().enumerate() {
             for m in 0..NODES {
@@ -289,18 +293,16 @@ impl NearCurves {
                     out[m] = 2.0 * rule.weights[m] * radiated_density(radiator, prime, w, y);
                     continue;
                 }
-                // u^(beta-1) and ln u are integrated exactly; x/u is smooth.
+                // u^(beta-1) and ln u are integrated exactly; x/u is smooth. beta itself grows
+                // with W': to first order that adds a term in u^(beta-1) ln u.
                 let emission = radiator.at(prime);
                 let scale = 1.0 / (prime * prime);
                 let x = y * (prime + w) * scale;
-                let ln_u = math::ln(u);
-                let ln_ratio = math::ln(x) - ln_u;
-                let soft = emission.soft
-                    * math::exp(
-                        (emission.beta - 1.0) * ln_ratio + (emission.beta - first.beta) * ln_u,
-                    );
+                let ln_ratio = math::ln((prime + w) * scale * 2.0 * sigma);
+                let soft = emission.soft * math::exp((emission.beta - 1.0) * ln_ratio);
+                let growth = emission.beta - first.beta;
                 out[m] = 2.0
-                    * (power[m] * soft
+                    * (soft * (power[m] + growth * power_log[m])
                         - emission.log_factor(x) * (log[m] + rule.weights[m] * ln_ratio)
                         + rule.weights[m] * emission.regular(x, 2.0 * math::ln(w / prime)))
                     * 2.0
@@ -313,9 +315,7 @@ impl NearCurves {
                 let mut sums = [0.0; NODES];
                 for (other, weighted) in weighted.iter().enumerate() {
                     // Panel P begins at t = 2P - 12, panel Q of y/sigma at 2Q.
-                    let Some(block) = panel
-                        .checked_sub(other)
-                        .and_then(|d| gauss.blocks.get(d))
+                    let Some(block) = panel.checked_sub(other).and_then(|d| gauss.blocks.get(d))
                     else {
                         continue;
                     };
@@ -340,7 +340,8 @@ impl NearCurves {
                 let mut values = [0.0; NODES];
                 for (m, value) in values.iter_mut().enumerate() {
                     let t = 2.0 * (panel as f64 + rule.nodes[m]) - REACH;
-                    lagrange(&self.points, w_gev - t * self.sigma, &mut weights);
+                    let ln_w = math::ln(w_gev - t * self.sigma);
+                    lagrange(&self.points, ln_w, &mut weights);
                     for (weight, curve) in weights.iter().zip(&self.curves) {
                         if let Some(panel) = curve.get(panel) {
                             *value += weight * panel[m];

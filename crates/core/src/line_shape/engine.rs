@@ -5,7 +5,7 @@ use super::radiated::Radiated;
 use super::radiator::Radiator;
 use super::shape::{Panels, RadiatedSource, Shape};
 use super::skeleton::{Kernel, Observed, Row, Skeleton};
-use super::smear::{Gaussian, REACH};
+use super::smear::{CELL_ERROR, Gaussian, REACH};
 use super::source::{BornSource, Source};
 use super::targets::Targets;
 use crate::amplitude::born::Energy;
@@ -46,7 +46,7 @@ impl Reached {
 /// Cells and rows for one spread over one interval of energies.
 #[derive(Debug, Clone)]
 struct Bench {
-    key: [u64; 6],
+    key: [u64; 7],
     table: Option<Table>,
     skeleton: Skeleton,
     rows: BTreeMap<u64, Row>,
@@ -67,6 +67,9 @@ pub(super) struct Engine {
 /// Values at and below this part of what the spread could show at best are "nothing": their
 /// accuracy is relative to it.
 const NOTHING: f64 = 1e-9;
+/// Requests finer than cells of two sigma allow. (The table of the blurred radiator has no
+/// finer version: the answer then says what was reached.)
+const FINEST: f64 = 5e-8;
 /// Rounding of the sums.
 const ROUNDING: f64 = 1e-13;
 
@@ -95,7 +98,14 @@ impl Engine {
                     let part = match radiator {
                         Some(radiator) if widest > WIDEST * block[0] => {
                             let shape = |w: f64| Shape::Gaussian(law.at(w));
-                            self.shaped(Some(radiator), source, block, tolerance, REACH * widest, &shape)
+                            self.shaped(
+                                Some(radiator),
+                                source,
+                                block,
+                                tolerance,
+                                REACH * widest,
+                                &shape,
+                            )
                         }
                         _ => self.gaussian(radiator, law, source, block, accuracy),
                     };
@@ -139,7 +149,6 @@ impl Engine {
             let error = radiated.at(w, &mut at);
             push(&mut out, &at, error, 0.0);
         }
-        out.unresolved = radiated.unresolved;
         out
     }
 
@@ -167,7 +176,6 @@ impl Engine {
                     born: source,
                 };
                 let mut panels = Panels::new(rule, &smooth, low, high, tolerance);
-                panels.unresolved += radiated.unresolved;
                 panels.inherited = 3.0 * tolerance;
                 panels
             }
@@ -177,7 +185,6 @@ impl Engine {
             let error = panels.spread(rule, &shape(w), w, &mut at);
             push(&mut out, &at, error, 0.0);
         }
-        out.unresolved = panels.unresolved;
         out
     }
 
@@ -192,6 +199,11 @@ impl Engine {
         let (lowest, highest) = (energies[0], energies[energies.len() - 1]);
         let (low, high) = interval(lowest, highest);
         let mut benches = self.benches.borrow_mut();
+        let (cell, kernel_error): (f64, f64) = if accuracy < FINEST && radiator.is_none() {
+            (1.0, CELL_ERROR[1])
+        } else {
+            (2.0, CELL_ERROR[0])
+        };
         let key = [
             law.sigma_gev.to_bits(),
             law.w0_gev.to_bits(),
@@ -199,15 +211,16 @@ impl Engine {
             low.to_bits(),
             high.to_bits(),
             radiator.map_or(0, |r| r.w_min_gev.to_bits()),
+            cell.to_bits(),
         ];
         let found = benches.iter().position(|bench| bench.key == key);
         let mut bench = match found {
             Some(index) => benches.swap_remove(index),
-            None => self.bench(radiator, law, low, high, key),
+            None => self.bench(radiator, law, cell, (low, high), key),
         };
         if bench.rows.len() > MOST_ROWS || bench.skeleton.cells() > MOST_CELLS {
             bench.rows.clear();
-            bench.skeleton = Skeleton::new(unit(&law, low, high), reach(&law, low, high));
+            bench.skeleton = Skeleton::new(unit(&law, cell, low, high), reach(&law, low, high));
         }
         let rule = &self.rule;
         let tolerance = 0.2 * accuracy;
@@ -223,6 +236,7 @@ impl Engine {
                             let kernel = Gaussian {
                                 w_gev: w,
                                 sigma_gev: law.at(w),
+                                cell,
                             };
                             bench.skeleton.row(rule, &kernel as &dyn Kernel)
                         }
@@ -234,7 +248,9 @@ impl Engine {
                 .iter()
                 .filter_map(|w| bench.rows.get(&w.to_bits()))
                 .collect();
-            let observed = bench.skeleton.observe(rule, source, tolerance, &rows);
+            let observed = bench
+                .skeleton
+                .observe(rule, source, tolerance, kernel_error, &rows);
             if let Some(done) = targets.finish(rule, energies, observed, tolerance) {
                 break done;
             }
@@ -250,9 +266,9 @@ impl Engine {
         &self,
         radiator: Option<&Radiator>,
         law: Law,
-        low: f64,
-        high: f64,
-        key: [u64; 6],
+        cell: f64,
+        (low, high): (f64, f64),
+        key: [u64; 7],
     ) -> Bench {
         let table = radiator.map(|radiator| {
             let mut gauss = self.gauss.borrow_mut();
@@ -262,15 +278,15 @@ impl Engine {
         Bench {
             key,
             table,
-            skeleton: Skeleton::new(unit(&law, low, high), reach(&law, low, high)),
+            skeleton: Skeleton::new(unit(&law, cell, low, high), reach(&law, low, high)),
             rows: BTreeMap::new(),
         }
     }
 }
 
-/// A cell of at most two of the smallest sigma whose multiples are exact: a few bits long.
-fn unit(law: &Law, low: f64, high: f64) -> f64 {
-    let most = 2.0 * law.at(low).min(law.at(high));
+/// A cell of at most `cell` times the smallest sigma whose multiples are exact: a few bits long.
+fn unit(law: &Law, cell: f64, low: f64, high: f64) -> f64 {
+    let most = cell * law.at(low).min(law.at(high));
     let mut unit = 1.0;
     while unit > most {
         unit *= 0.5;
@@ -327,7 +343,6 @@ fn empty(channels: usize) -> Observed {
         values: vec![Vec::new(); channels],
         error: Vec::new(),
         scale: Vec::new(),
-        unresolved: 0,
     }
 }
 
@@ -345,7 +360,6 @@ fn append(out: &mut Observed, part: Observed) {
     }
     out.error.extend(part.error);
     out.scale.extend(part.scale);
-    out.unresolved += part.unresolved;
 }
 
 /// From the sorted list back to the order of the request.

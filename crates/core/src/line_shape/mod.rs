@@ -222,7 +222,10 @@ impl Chain {
             BornSource::new(born, false, floor),
             BornSource::new(born, true, floor),
         );
-        let born_nb: Vec<f64> = w_gev.iter().map(|&w| born.sigma_nb(Energy::at(w))).collect();
+        let born_nb: Vec<f64> = w_gev
+            .iter()
+            .map(|&w| born.sigma_nb(Energy::at(w)))
+            .collect();
         let radiator = self.radiator.as_ref();
         let run = |spreading, source| {
             self.engine

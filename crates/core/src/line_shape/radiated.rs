@@ -31,7 +31,6 @@ pub(super) struct Radiated<'a> {
     roots: Vec<usize>,
     tolerance: f64,
     log: [f64; NODES],
-    pub unresolved: usize,
 }
 
 impl<'a> Radiated<'a> {
@@ -53,7 +52,6 @@ impl<'a> Radiated<'a> {
             roots: Vec::new(),
             tolerance,
             log: rule.log_weights(),
-            unresolved: 0,
         };
         let mut leaves: Vec<usize> = Vec::new();
         let mut divider = Divider::new(rule, source, tolerance, Purpose::Integral);
@@ -81,7 +79,6 @@ impl<'a> Radiated<'a> {
             }
             from = to;
         }
-        out.unresolved = divider.unresolved;
         out.join(leaves);
         out
     }
@@ -233,7 +230,7 @@ impl Target<'_, '_> {
             .sample(w_gev - end, end, all.rule, &mut self.values);
         let power = all.rule.power_weights(self.emission.beta);
         let scale = 1.0 / (w_gev * w_gev);
-        for m in 0..NODES {
+        for (m, power) in power.iter().enumerate() {
             // Nodes are symmetric: the node at u = y/end is the one at 1 - u in w.
             let mirrored = NODES - 1 - m;
             let y = end * all.rule.nodes[m];
@@ -241,15 +238,14 @@ impl Target<'_, '_> {
             let slope = (w_gev + w) * scale * end;
             let ln_slope = math::ln(slope);
             let x = slope * all.rule.nodes[m];
-            let weight = (self.emission.soft
-                * math::exp((self.emission.beta - 1.0) * ln_slope)
-                * power[m]
-                - self.emission.log_factor(x) * (all.log[m] + all.rule.weights[m] * ln_slope)
-                + all.rule.weights[m] * self.emission.regular(x, 2.0 * math::ln(w / w_gev)))
-                * 2.0
-                * w
-                * scale
-                * end;
+            let weight =
+                (self.emission.soft * math::exp((self.emission.beta - 1.0) * ln_slope) * power
+                    - self.emission.log_factor(x) * (all.log[m] + all.rule.weights[m] * ln_slope)
+                    + all.rule.weights[m] * self.emission.regular(x, 2.0 * math::ln(w / w_gev)))
+                    * 2.0
+                    * w
+                    * scale
+                    * end;
             for (slot, channel) in self.out.iter_mut().zip(self.values.chunks(NODES)) {
                 *slot += weight * channel[mirrored];
                 self.error += all.tolerance * (weight * channel[mirrored]).abs();

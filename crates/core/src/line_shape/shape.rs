@@ -19,7 +19,9 @@ impl Shape<'_> {
     /// Offsets between which the density is smooth.
     fn joints(&self) -> Vec<f64> {
         match self {
-            Shape::Gaussian(sigma) => (-6..=6).map(|k| REACH / 6.0 * sigma * f64::from(k)).collect(),
+            Shape::Gaussian(sigma) => (-6..=6)
+                .map(|k| REACH / 6.0 * sigma * f64::from(k))
+                .collect(),
             Shape::Rows { rows, .. } => rows.iter().map(|row| row.0).collect(),
         }
     }
@@ -73,7 +75,6 @@ pub(super) struct Panels {
     panels: Vec<(f64, f64, f64)>,
     /// `values[(panel * channels + channel) * 16 + m]`, nb.
     values: Vec<f64>,
-    pub unresolved: usize,
     /// Relative error of the values themselves.
     pub inherited: f64,
 }
@@ -84,7 +85,6 @@ impl Panels {
             channels: source.channels(),
             panels: Vec::new(),
             values: Vec::new(),
-            unresolved: 0,
             inherited: 0.0,
         };
         let mut divider = Divider::new(rule, source, tolerance, Purpose::Values);
@@ -92,7 +92,6 @@ impl Panels {
             out.panels.push((low, size, error / size));
             out.values.extend_from_slice(values);
         });
-        out.unresolved = divider.unresolved;
         out
     }
 
@@ -122,8 +121,7 @@ impl Panels {
                 };
                 for m in 0..NODES {
                     let offset = a + (b - a) * rule.nodes[m];
-                    let weight =
-                        rule.weights[m] * (b - a) * shape.density(segment, offset);
+                    let weight = rule.weights[m] * (b - a) * shape.density(segment, offset);
                     bound += weight * error;
                     let cardinal = rule.cardinal((offset - (low - w_gev)) / size);
                     for (slot, channel) in out.iter_mut().zip(values.chunks(NODES)) {

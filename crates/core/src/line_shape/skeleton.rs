@@ -48,11 +48,6 @@ pub(super) struct Skeleton {
     cells: Vec<Cell>,
 }
 
-/// Relative error of replacing a kernel on a smooth cell by its polynomial of degree 15,
-/// in units of the kernel's largest value there. For a Gaussian on a cell of 2 sigma:
-/// 2 (1/2)^16 sqrt(16!)/16! = 7e-12 sqrt(16!)/sqrt(16!)..., measured 2e-9.
-const KERNEL_ERROR: f64 = 3e-9;
-
 /// Values at the targets and the bound on their error.
 #[derive(Debug, Clone)]
 pub(super) struct Observed {
@@ -62,7 +57,6 @@ pub(super) struct Observed {
     pub error: Vec<f64>,
     /// Largest that the sum could be if the spread were centred best, nb: the scale of "nothing".
     pub scale: Vec<f64>,
-    pub unresolved: usize,
 }
 
 impl Skeleton {
@@ -131,12 +125,14 @@ impl Skeleton {
         }
     }
 
-    /// Applies `rows` to a source.
+    /// Applies `rows` to a source. `kernel_error`: how far a kernel on a cell is from its
+    /// polynomial of degree 15, in units of its largest value there.
     pub fn observe(
         &self,
         rule: &Rule,
         source: &dyn Source,
         tolerance: f64,
+        kernel_error: f64,
         rows: &[&Row],
     ) -> Observed {
         let channels = source.channels();
@@ -164,13 +160,12 @@ impl Skeleton {
             values: vec![Vec::with_capacity(rows.len()); channels],
             error: Vec::with_capacity(rows.len()),
             scale: Vec::with_capacity(rows.len()),
-            unresolved: divider.unresolved,
         };
         let stride = channels * NODES;
         for row in rows {
             let (mut error, mut largest, mut nearby) = (0.0, 0.0f64, 0.0);
             for &(cell, peak) in &row.cells {
-                error += peak * (moments.error[cell] + KERNEL_ERROR * moments.size[cell]);
+                error += peak * (moments.error[cell] + kernel_error * moments.size[cell]);
                 if peak > 0.0 {
                     largest = largest.max(peak);
                     nearby += moments.size[cell];
@@ -217,8 +212,8 @@ impl Moments<'_> {
     fn mark(&mut self) {
         // Halves come after their cell.
         for (index, cell) in self.skeleton.cells.iter().enumerate().rev() {
-            let below = cell.halves != 0
-                && (self.wanted[cell.halves] || self.wanted[cell.halves + 1]);
+            let below =
+                cell.halves != 0 && (self.wanted[cell.halves] || self.wanted[cell.halves + 1]);
             self.wanted[index] = self.used[index] || below;
         }
     }

@@ -41,7 +41,11 @@ impl<'a> BornSource<'a> {
         breaks.dedup();
         Self {
             born,
-            contributions: if split { born.contribution_names().len() } else { 1 },
+            contributions: if split {
+                born.contribution_names().len()
+            } else {
+                1
+            },
             split,
             peaks,
             breaks,
@@ -123,12 +127,17 @@ pub(super) struct Divider<'a> {
     pub purpose: Purpose,
     values: Vec<f64>,
     total: [f64; NODES],
-    /// Panels that were not good enough when the division had to stop.
-    pub unresolved: usize,
+    panels: usize,
 }
 
-/// How often a range is halved at most.
+/// How often a range is halved at most, and how many panels there may be: below the noise of
+/// the source halving never ends. What is then left is in the error that is reported.
 const DEEPEST: u32 = 48;
+const MOST_PANELS: usize = 1000;
+
+/// Takes a panel: low end, size, `values[channel * 16 + m]`, and the absolute error of its
+/// integral (for values: of a value times the size), nb GeV.
+pub(super) type Sink<'a> = dyn FnMut(f64, f64, &[f64], f64) + 'a;
 
 impl<'a> Divider<'a> {
     pub fn new(rule: &'a Rule, source: &'a dyn Source, tolerance: f64, purpose: Purpose) -> Self {
@@ -139,19 +148,13 @@ impl<'a> Divider<'a> {
             purpose,
             values: vec![0.0; source.channels() * NODES],
             total: [0.0; NODES],
-            unresolved: 0,
+            panels: 0,
         }
     }
 
-    /// Calls `sink(low, size, values, error)` for panels that cover the part of
-    /// [low, high] above the source's floor, in rising order. `values[channel * 16 + m]`;
-    /// `error` is the absolute error of the panel's integral (or value times size), nb GeV.
-    pub fn divide(
-        &mut self,
-        low_gev: f64,
-        high_gev: f64,
-        sink: &mut dyn FnMut(f64, f64, &[f64], f64),
-    ) {
+    /// Gives `sink` panels that cover the part of [low, high] above the source's floor, in
+    /// rising order.
+    pub fn divide(&mut self, low_gev: f64, high_gev: f64, sink: &mut Sink<'_>) {
         let source = self.source;
         let mut from = low_gev;
         if let Some(&floor) = source.breaks().first() {
@@ -168,16 +171,9 @@ impl<'a> Divider<'a> {
         }
     }
 
-    fn panel(
-        &mut self,
-        low: f64,
-        size: f64,
-        whole: f64,
-        depth: u32,
-        sink: &mut dyn FnMut(f64, f64, &[f64], f64),
-    ) {
+    fn panel(&mut self, low: f64, size: f64, whole: f64, depth: u32, sink: &mut Sink<'_>) {
         let mut whole = whole;
-        if !self.hides_a_peak(low, size) || depth >= DEEPEST {
+        if !self.hides_a_peak(low, size) || depth >= DEEPEST || self.panels >= MOST_PANELS {
             self.source.sample(low, size, self.rule, &mut self.values);
             self.total = [0.0; NODES];
             for channel in self.values.chunks(NODES) {
@@ -195,10 +191,9 @@ impl<'a> Divider<'a> {
                 Purpose::Integral => self.tolerance * (decay.scale * size).max(1e-2 * whole),
                 Purpose::Values => self.tolerance * (decay.scale * size).max(1e-6 * whole),
             };
-            if error * size <= allowed || depth >= DEEPEST {
-                if error * size > allowed {
-                    self.unresolved += 1;
-                }
+            let stop = depth >= DEEPEST || self.panels >= MOST_PANELS;
+            if error * size <= allowed || stop {
+                self.panels += 1;
                 sink(low, size, &self.values, error * size);
                 return;
             }

@@ -34,14 +34,7 @@ impl Targets {
     }
 
     /// Halves until the observed curve should be smooth on a panel.
-    fn divide(
-        &mut self,
-        low: f64,
-        size: f64,
-        sigma: f64,
-        source: &BornSource<'_>,
-        most: usize,
-    ) {
+    fn divide(&mut self, low: f64, size: f64, sigma: f64, source: &BornSource<'_>, most: usize) {
         let distance = |w: f64| (low - w).max(w - (low + size)).max(0.0) - 6.0 * sigma;
         let mut limit = f64::INFINITY;
         for &(peak, width) in source.peaks() {
@@ -119,7 +112,6 @@ impl Targets {
             values: vec![Vec::with_capacity(energies.len()); observed.values.len()],
             error: Vec::with_capacity(energies.len()),
             scale: Vec::with_capacity(energies.len()),
-            unresolved: observed.unresolved,
         };
         let mut start = 0;
         for (index, &(low, size)) in self.panels.iter().enumerate() {
@@ -142,8 +134,12 @@ impl Targets {
                 column.resize(begin + positions.len(), 0.0);
                 chebyshev_sum(&series, &positions, &mut column[begin..]);
             }
-            let error = observed.error[nodes.clone()].iter().fold(0.0f64, |a, e| a.max(*e));
-            let scale = observed.scale[nodes].iter().fold(f64::INFINITY, |a, e| a.min(*e));
+            let error = observed.error[nodes.clone()]
+                .iter()
+                .fold(0.0f64, |a, e| a.max(*e));
+            let scale = observed.scale[nodes]
+                .iter()
+                .fold(f64::INFINITY, |a, e| a.min(*e));
             out.error.resize(end, error + missed[index]);
             out.scale.resize(end, scale);
             start = end;

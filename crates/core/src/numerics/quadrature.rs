@@ -79,8 +79,8 @@ impl Rule {
             let cardinal = rule.cardinal(0.5 * (1.0 + math::cos(angle)));
             for k in 0..NODES {
                 let factor = if k == 0 { 1.0 } else { 2.0 } * math::cos(k as f64 * angle) / n;
-                for m in 0..NODES {
-                    rule.chebyshev[k][m] += factor * cardinal[m];
+                for (slot, c) in rule.chebyshev[k].iter_mut().zip(&cardinal) {
+                    *slot += factor * c;
                 }
             }
         }
@@ -163,10 +163,20 @@ impl Rule {
         };
         let tail = coefficient(15) + coefficient(14);
         let middle = coefficient(8) + coefficient(7);
-        let scale = self.weights.iter().zip(values).map(|(w, v)| w * v.abs()).sum();
+        let scale = self
+            .weights
+            .iter()
+            .zip(values)
+            .map(|(w, v)| w * v.abs())
+            .sum();
         // The coefficients fall by tail/middle over seven degrees; the rule is exact up to
-        // degree 31, so that what it misses is about two such falls below the tail.
-        let fall = if tail < middle { tail / middle } else { 1.0 };
+        // degree 31, so that what it misses is about two such falls below the tail - if they
+        // fall geometrically, which next to a threshold they do not: then the tail itself counts.
+        let fall = if tail < 0.06 * middle {
+            tail / middle
+        } else {
+            1.0
+        };
         Decay {
             scale,
             interpolation: tail,
@@ -190,6 +200,23 @@ impl Rule {
         self.weights_from_moments(&moments)
     }
 
+    /// Weights v_m with sum_m v_m g(u_m) = int_0^1 u^(beta-1) ln(u) g(u) du, 0 < beta < 1, exact
+    /// for polynomials g up to degree 15: the derivative of the moments above by beta.
+    #[must_use]
+    pub fn power_log_weights(&self, beta: f64) -> AtNodes {
+        let a = beta - 1.0;
+        let mut moments = [0.0; NODES];
+        let mut moment = 1.0 / beta;
+        let mut slope = -1.0 / beta;
+        for (k, slot) in moments.iter_mut().enumerate() {
+            *slot = moment * slope;
+            let k = k as f64;
+            moment *= (a - k) / (beta + k + 1.0);
+            slope += 1.0 / (a - k) - 1.0 / (beta + k + 1.0);
+        }
+        self.weights_from_moments(&moments)
+    }
+
     /// Weights with sum_m v_m g(u_m) = int_0^1 ln(u) g(u) du, exact up to degree 15:
     /// the moments are -1 and (-1)^(k+1)/(k(k+1)).
     #[must_use]
@@ -209,7 +236,10 @@ const RECURRENCE: [(f64, f64); NODES] = {
     let mut k = 1;
     while k < NODES {
         let degree = k as f64;
-        out[k] = ((2.0 * degree + 1.0) / (degree + 1.0), degree / (degree + 1.0));
+        out[k] = (
+            (2.0 * degree + 1.0) / (degree + 1.0),
+            degree / (degree + 1.0),
+        );
         k += 1;
     }
     out
@@ -275,6 +305,15 @@ mod tests {
                     .sum();
                 assert!((sum - 1.0 / (beta + f64::from(degree))).abs() < 2e-14 / beta);
             }
+            // int u^(beta-1+d) ln u = -1/(beta+d)^2.
+            let both = rule.power_log_weights(beta);
+            for degree in 0..16 {
+                let sum: f64 = (0..NODES)
+                    .map(|m| both[m] * math::powi(rule.nodes[m], degree))
+                    .sum();
+                let below = beta + f64::from(degree);
+                assert!((sum + 1.0 / (below * below)).abs() < 2e-14 / (beta * beta));
+            }
         }
         let log = rule.log_weights();
         for degree in 0..16 {
@@ -323,9 +362,17 @@ mod tests {
                 let values = rule.nodes.map(f);
                 let sum: f64 = values.iter().zip(&rule.weights).map(|(v, w)| v * w).sum();
                 let decay = rule.decay(&values);
-                assert!((sum - exact).abs() <= decay.quadrature + 1e-15, "{centre} {g}");
+                assert!(
+                    (sum - exact).abs() <= decay.quadrature + 1e-15,
+                    "{centre} {g}"
+                );
                 for u in [0.0, 0.21, 0.5, 1.0] {
-                    let p: f64 = rule.cardinal(u).iter().zip(&values).map(|(c, v)| c * v).sum();
+                    let p: f64 = rule
+                        .cardinal(u)
+                        .iter()
+                        .zip(&values)
+                        .map(|(c, v)| c * v)
+                        .sum();
                     assert!((p - f(u)).abs() < 4.0 * decay.interpolation + 1e-14);
                 }
             }
