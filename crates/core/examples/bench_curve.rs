@@ -1,6 +1,6 @@
 //! Times the line shape on the problem of the benchmark's peer: one narrow vector, 500 energies,
 //! radiation and spread, and prints a few values. `cargo run --release --example bench_curve`.
-#![allow(missing_docs)]
+#![allow(missing_docs, clippy::expect_used)]
 
 #[path = "../tests/stand_in/mod.rs"]
 mod stand_in;

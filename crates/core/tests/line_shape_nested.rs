@@ -1,6 +1,6 @@
 //! The chain against nested double integrals computed apart from it
 //! (`tests/reference/lineshape_nested.py`, NumPy; spot checks by literal mpmath quadrature).
-#![allow(missing_docs)]
+#![allow(missing_docs, clippy::unwrap_used)]
 
 use serde_json::Value;
 use widthwise_core::amplitude::hypothesis::Hypothesis;
