@@ -4,7 +4,7 @@ import { useLayoutEffect, useRef } from "preact/hooks";
 import { effect } from "@preact/signals";
 import uPlot from "uplot";
 import "uplot/dist/uPlot.min.css";
-import { theme } from "../state/prefs";
+import { look } from "../state/prefs";
 import { view } from "../state/view";
 import { GUTTER, MARGIN, tickTexts } from "./axis";
 import { ink, plotFont } from "./ink";
@@ -68,7 +68,7 @@ export function Chart({ height, labelled, draw }: ChartProps): JSX.Element {
     };
     const stop = effect(() => {
       void view.value;
-      void theme.value;
+      void look.value;
       drawing = draw();
       if (frame === 0) frame = requestAnimationFrame(commit);
     });

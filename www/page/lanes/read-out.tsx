@@ -1,14 +1,12 @@
 /** Everything at the cursor, in one row that never moves: W, the number to dial, cross sections, rate. */
 import type { ComponentChildren, JSX } from "preact";
-import { axisScale, digits, fixed } from "../format/number";
-import { assumptionsOf } from "../hand-over/assumptions";
+import { axisScale, fixed } from "../format/number";
 import { BEHIND } from "../parts/formulas";
 import { Quantity } from "../parts/quantity";
 import { Why } from "../parts/why";
 import { WhyList } from "../parts/why-list";
-import { atCursor, curve } from "../state/answers";
+import { atCursor } from "../state/answers";
 import { everything } from "../state/prefs";
-import { sheet } from "../state/sheet";
 import { cursor, view } from "../state/view";
 
 /** What is read out at all times; the rest is one gesture away. */
@@ -79,11 +77,7 @@ function Explained(props: { name: string; at: number; children: ComponentChildre
   const { unit, per } = axisScale(props.at, props.at);
   return (
     <Why title={`${props.name} at W = ${fixed(props.at / per, 3)} ${unit}`} value={props.children}>
-      <WhyList
-        behind={behind}
-        inputs={assumptionsOf(sheet.value)}
-        accuracy={digits(curve.value?.accuracy ?? Number.NaN, 1)}
-      />
+      <WhyList behind={behind} />
     </Why>
   );
 }

@@ -15,9 +15,10 @@ export function Quantity({ text }: { text: string }): JSX.Element {
   );
 }
 
-/** Powers written as powers: nb^-1 -> nb⁻¹. */
+/** Powers written as powers: nb^-1 -> nb⁻¹. Only after a unit's letters: "-130 deg" and "3.5e-4" stay as they are. */
 export function units(text: string): string {
-  return text.replace(/\^?(-\d+)|\^(\d+)/g, (_all, minus: string | undefined, plus: string | undefined) =>
-    [...(minus ?? plus ?? "")].map((c) => (c === "-" ? "⁻" : ("⁰¹²³⁴⁵⁶⁷⁸⁹"[Number(c)] ?? c))).join(""),
-  );
+  return text.replace(/\b([a-zA-Zµ]{1,3})(?:\^(-?\d+)|(-\d+))/g, (_all, unit: string, power: string | undefined, bare: string | undefined) => {
+    const marks = [...(power ?? bare ?? "")].map((c) => (c === "-" ? "⁻" : ("⁰¹²³⁴⁵⁶⁷⁸⁹"[Number(c)] ?? c)));
+    return unit + marks.join("");
+  });
 }

@@ -1,16 +1,20 @@
 /** The inside of "why this number": formula, inputs with values, accuracy, source. */
 import type { JSX } from "preact";
+import { digits } from "../format/number";
+import { assumptionsOf } from "../hand-over/assumptions";
+import { curve } from "../state/answers";
+import { sheet } from "../state/sheet";
 import type { Behind } from "./formulas";
 import { units } from "./quantity";
 
 /** The explanation. */
-export function WhyList(props: { behind: Behind; inputs: readonly (readonly [string, string])[]; accuracy: string }): JSX.Element {
+export function WhyList({ behind }: { behind: Behind }): JSX.Element {
   return (
     <>
-      {props.behind.formula}
-      <p>{props.behind.words}</p>
+      {behind.formula}
+      <p>{behind.words}</p>
       <dl class="inputs">
-        {props.inputs.map(([name, text]) => (
+        {assumptionsOf(sheet.value).map(([name, text]) => (
           <div key={name}>
             <dt>{name}</dt>
             <dd>{units(text)}</dd>
@@ -18,10 +22,10 @@ export function WhyList(props: { behind: Behind; inputs: readonly (readonly [str
         ))}
         <div>
           <dt>Relative accuracy reached</dt>
-          <dd>{props.accuracy}</dd>
+          <dd>{digits(curve.value?.accuracy ?? Number.NaN, 1)}</dd>
         </div>
       </dl>
-      <p class="note">{props.behind.source}</p>
+      <p class="note">{behind.source}</p>
     </>
   );
 }

@@ -1,5 +1,5 @@
 /** How this person likes the page: kept apart from the sheet, and never needed to read one. */
-import { effect, signal } from "@preact/signals";
+import { computed, effect, signal } from "@preact/signals";
 
 /** Themes; "" follows the system. */
 export type Theme = "" | "light" | "dark" | "dim";
@@ -54,6 +54,13 @@ function flags(value: unknown): Record<string, boolean> {
   if (value === null || typeof value !== "object") return {};
   return Object.fromEntries(Object.entries(value).filter((entry) => typeof entry[1] === "boolean"));
 }
+
+const system = matchMedia("(prefers-color-scheme: dark)");
+const dark = signal(system.matches);
+system.addEventListener("change", (event) => (dark.value = event.matches));
+
+/** How the page looks now: the chosen theme, or the system's. Applied before anything that reads it draws. */
+export const look = computed(() => (theme.value !== "" ? theme.value : dark.value ? "dark" : "light"));
 
 /** Applies and keeps the preferences; where storage is forbidden they last as long as the page. */
 export function keepPrefs(): () => void {

@@ -50,8 +50,8 @@ export function work(on: Bridge): () => void {
         { kind: "check", sheet: now },
         ({ body }) => {
           if (body.kind !== "sheet") return;
-          answers.problems.value = body.problems;
-          answers.warnings.value = body.warnings;
+          if (!same(answers.problems.peek(), body.problems)) answers.problems.value = body.problems;
+          if (!same(answers.warnings.peek(), body.warnings)) answers.warnings.value = body.warnings;
         },
         failed,
       );
@@ -83,6 +83,11 @@ export function work(on: Bridge): () => void {
     curve.stop();
     bridge = null;
   };
+}
+
+/** Equal lists stay the same list, so that nothing is drawn again for them. */
+function same(before: readonly object[], now: readonly object[]): boolean {
+  return before.length === now.length && (now.length === 0 || JSON.stringify(before) === JSON.stringify(now));
 }
 
 /**
