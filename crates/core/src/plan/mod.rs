@@ -11,12 +11,16 @@
 
 pub mod certificate;
 pub mod clock;
+pub mod comb;
 pub mod criterion;
 pub mod elfving;
 mod exact;
+pub mod for_scan;
+pub mod hypotheses;
 pub mod problem;
 pub mod relaxed;
 pub mod rounding;
+pub mod scan_rates;
 mod search;
 pub mod task;
 pub mod timetable;

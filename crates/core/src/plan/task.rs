@@ -333,6 +333,79 @@ impl Planner {
             .collect()
     }
 
+    /// Error of a combination of the parameters after these rows, for the best guess.
+    #[must_use]
+    pub fn error_of(&self, rows: &[Row], gradient: &[f64]) -> Option<f64> {
+        let info = timetable_information(
+            &self.base,
+            self.base.draws.first()?,
+            rows,
+            self.task.fill_energy_gev,
+        );
+        combination_error(&info, &self.base, gradient)
+    }
+
+    /// The same for an allocation of the relaxed problem.
+    #[must_use]
+    pub fn relaxed_error_of(&self, hours: &[f64], gradient: &[f64]) -> Option<f64> {
+        let info = self
+            .relaxed
+            .scaled_information(self.relaxed.draws.first()?, hours);
+        combination_error(&info, &self.relaxed, gradient)
+    }
+
+    /// Equal time at every allowed energy.
+    #[must_use]
+    pub fn uniform(&self) -> Vec<f64> {
+        self.relaxed.uniform()
+    }
+
+    /// Error of a combination for the relaxed optimum of this planner's criterion against hours of beam.
+    ///
+    /// # Errors
+    /// Hours not above 0, an undetermined goal.
+    pub fn best_goal_against_hours(
+        &self,
+        hours: &[f64],
+        gradient: Vec<f64>,
+    ) -> Answer<Vec<Option<f64>>> {
+        hours
+            .iter()
+            .map(|&h| {
+                let problem = self.relaxed.with_hours(h)?;
+                let best = optimise(&problem, &self.relaxed_criterion, self.task.wanted)?;
+                Ok(problem.draws.first().and_then(|draw| {
+                    let info = problem.scaled_information(draw, &best.hours);
+                    combination_error(&info, &problem, &gradient)
+                }))
+            })
+            .collect()
+    }
+
+    /// Square root of the criterion of the relaxed optimum, for a variance criterion.
+    ///
+    /// # Errors
+    /// An undetermined goal.
+    pub fn least_error(&self) -> Answer<f64> {
+        let best = optimise(&self.relaxed, &self.relaxed_criterion, 0.99)?;
+        Ok(math::exp(0.5 * best.criterion))
+    }
+
+    /// Relative difference of the criterion of rows between even and odd truths; `None` below 8 truths.
+    #[must_use]
+    pub fn truths_accuracy(&self, rows: &[Row]) -> Option<f64> {
+        let k = self.task.truths.len();
+        if k < 8 {
+            return None;
+        }
+        let half = |first: usize| {
+            let mut judge = self.judge(&self.task.machine, &self.windows, &self.task.demands);
+            judge.draws = (first..k).step_by(2).collect();
+            judge.value(rows)
+        };
+        Some(math::expm1((half(0) - half(1)).abs()))
+    }
+
     /// Efficiency of rows if `truth` (not among those planned for) holds, against the best for it.
     ///
     /// # Errors
@@ -551,6 +624,14 @@ impl Planner {
         }
         warnings
     }
+}
+
+fn combination_error(info: &DMatrix<f64>, problem: &Problem, gradient: &[f64]) -> Option<f64> {
+    let mut c = DMatrix::zeros(info.nrows(), 1);
+    for (i, g) in gradient.iter().enumerate().take(info.nrows()) {
+        c[(i, 0)] = g / problem.scale[i];
+    }
+    covariance_of(info, &c).map(|v| v[(0, 0)].sqrt())
 }
 
 /// Adds the energy common to a fill as a parameter. With F fills alike (by concavity the best

@@ -1,0 +1,350 @@
+//! From a scan to the arrays of a planning task: rates at the allowed energies, what is known
+//! already, nuisances common to all points, and the truths that the prior allows.
+
+use super::problem::{Rates, refuse};
+use crate::counts::{Exposure, rate_and_gradient};
+use crate::error::Answer;
+use crate::fit::{BACKGROUND_CROSS_SECTION, BACKGROUND_RATE, FitSettings, SPREAD};
+use crate::numerics::probability::normal_quantile;
+use crate::scan::{Measured, Point, Scan};
+use nalgebra::{DMatrix, DVector};
+
+/// Parameters of a task: the free ones first, then nuisances with a unit constraint.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Parameters {
+    /// Ids of the free parameters.
+    pub free: Vec<String>,
+    /// Names of the nuisances after them.
+    pub nuisances: Vec<String>,
+    with_spread: bool,
+}
+
+impl Parameters {
+    /// Of a scan and what its fit leaves free.
+    ///
+    /// # Errors
+    /// A parameter listed or constrained twice.
+    pub fn new(scan: &Scan, fit: &FitSettings) -> Answer<Self> {
+        let free = fit.varying()?;
+        let common = &scan.common;
+        let mut nuisances = Vec::new();
+        let with_spread = common.spread > 0.0 && !free.iter().any(|f| f == SPREAD);
+        for (name, error) in [
+            ("common energy", common.energy_gev),
+            ("common scale", common.scale),
+            ("common luminosity", common.luminosity),
+        ] {
+            if error > 0.0 {
+                nuisances.push(name.to_string());
+            }
+        }
+        if with_spread {
+            nuisances.push("common spread".to_string());
+        }
+        Ok(Self {
+            free,
+            nuisances,
+            with_spread,
+        })
+    }
+
+    /// All names.
+    #[must_use]
+    pub fn names(&self) -> Vec<String> {
+        self.free.iter().chain(&self.nuisances).cloned().collect()
+    }
+}
+
+/// Values of the free parameters in a scan.
+///
+/// # Errors
+/// An unknown id.
+pub fn value_of(scan: &Scan, id: &str) -> Answer<f64> {
+    match id {
+        BACKGROUND_CROSS_SECTION => Ok(scan.detection.sigma_bg_nb),
+        BACKGROUND_RATE => Ok(scan.detection.rate_bg_per_h),
+        SPREAD => match scan.chain.spread {
+            crate::scan::Spread::Gaussian { sigma_gev, .. } => Ok(sigma_gev),
+            _ => Err(refuse(
+                "fit.free",
+                id,
+                "a Gaussian spread",
+                "There is no Gaussian spread to be free.",
+            )),
+        },
+        other => scan.hypothesis.get(other),
+    }
+}
+
+/// The scan with a parameter at another value.
+///
+/// # Errors
+/// An unknown id, a value the hypothesis refuses.
+pub fn set_value(scan: &mut Scan, id: &str, value: f64) -> Answer<()> {
+    match id {
+        BACKGROUND_CROSS_SECTION => scan.detection.sigma_bg_nb = value,
+        BACKGROUND_RATE => scan.detection.rate_bg_per_h = value,
+        SPREAD => {
+            if let crate::scan::Spread::Gaussian { sigma_gev, .. } = &mut scan.chain.spread {
+                *sigma_gev = value;
+            }
+        }
+        other => return scan.hypothesis.set(other, value),
+    }
+    Ok(())
+}
+
+/// Rates at `w_gev` for the truth that `scan` holds, with the information of its constraints,
+/// its common errors and its points (expected information at this truth: Gaussian).
+///
+/// # Errors
+/// What chain, hypothesis and detection refuse.
+pub fn rates(
+    scan: &Scan,
+    fit: &FitSettings,
+    parameters: &Parameters,
+    w_gev: &[f64],
+    weight: f64,
+) -> Answer<Rates> {
+    let measured: Vec<&Point> = scan
+        .points
+        .iter()
+        .filter(|p| !matches!(p.measured, Measured::Nothing))
+        .collect();
+    let mut ids = parameters.free.clone();
+    if parameters.with_spread {
+        ids.push(SPREAD.to_string());
+    }
+    let mut all = w_gev.to_vec();
+    all.extend(measured.iter().map(|p| p.w_gev));
+    let r = rate_and_gradient(scan, &ids, &all)?;
+    let p = parameters.free.len() + parameters.nuisances.len();
+    let free = parameters.free.len();
+    // Row of derivatives at energy j of the list: signal scaled by `s`, background exposures `l` (1/nb) and `t` (h).
+    let row = |j: usize, s: f64, l: f64, t: f64| {
+        let mut g = Vec::with_capacity(p);
+        for (id, column) in parameters.free.iter().zip(&r.gradient_per_h) {
+            g.push(match id.as_str() {
+                BACKGROUND_CROSS_SECTION => l,
+                BACKGROUND_RATE => t,
+                _ => s * column.get(j).copied().unwrap_or(0.0),
+            });
+        }
+        let signal = s * r.signal_per_h.get(j).copied().unwrap_or(0.0);
+        for name in &parameters.nuisances {
+            g.push(match name.as_str() {
+                "common energy" => {
+                    s * r.slope_per_h_gev.get(j).copied().unwrap_or(0.0) * scan.common.energy_gev
+                }
+                "common scale" => signal * scan.common.scale,
+                "common luminosity" => {
+                    (signal + l * scan.detection.sigma_bg_nb) * scan.common.luminosity
+                }
+                _ => {
+                    let by_sigma = r
+                        .gradient_per_h
+                        .get(free)
+                        .and_then(|c| c.get(j))
+                        .copied()
+                        .unwrap_or(0.0);
+                    s * by_sigma * scan.common.spread * value_of(scan, SPREAD).unwrap_or(0.0)
+                }
+            });
+        }
+        g
+    };
+    let hour = Exposure::per_hour(&scan.detection);
+    let n = w_gev.len();
+    let mut gradient_per_h = Vec::with_capacity(n * p);
+    for j in 0..n {
+        gradient_per_h.extend(row(j, 1.0, hour.luminosity_nbinv, 1.0));
+    }
+    let mut prior = DMatrix::zeros(p, p);
+    for c in &fit.constraints {
+        if let Some(i) = parameters.free.iter().position(|f| *f == c.parameter) {
+            prior[(i, i)] += 1.0 / (c.error * c.error);
+        }
+    }
+    for i in free..p {
+        prior[(i, i)] += 1.0;
+    }
+    let places: Vec<Place> = measured
+        .iter()
+        .enumerate()
+        .map(|(i, point)| {
+            let e = Exposure::of(point, &scan.detection);
+            let s = e.signal_nbinv / hour.signal_nbinv;
+            let j = n + i;
+            let signal = s * r.signal_per_h.get(j).copied().unwrap_or(0.0);
+            let slope = s * r.slope_per_h_gev.get(j).copied().unwrap_or(0.0);
+            let b = e.background(&scan.detection);
+            let background = match point.measured {
+                Measured::Counts {
+                    off: Some((n_off, tau)),
+                    ..
+                } => b.max(n_off / tau),
+                _ => b,
+            };
+            place(
+                point,
+                signal,
+                background,
+                slope,
+                row(j, s, e.luminosity_nbinv, e.live_time_h),
+                e.luminosity_nbinv,
+            )
+        })
+        .collect();
+    add_points(&mut prior, &measured, &places, scan.common.group_energy_gev);
+    Ok(Rates {
+        weight,
+        rate_per_h: r.rate_per_h.iter().take(n).copied().collect(),
+        gradient_per_h,
+        slope_per_h_gev: r.slope_per_h_gev.iter().take(n).copied().collect(),
+        rate_without_beam_per_h: scan.detection.rate_bg_per_h,
+        prior,
+    })
+}
+
+/// A measured point: gradient, slope and variance of its expected counts.
+struct Place {
+    gradient: DVector<f64>,
+    slope: f64,
+    variance: f64,
+}
+
+fn place(
+    point: &Point,
+    signal: f64,
+    background: f64,
+    slope: f64,
+    gradient: Vec<f64>,
+    luminosity: f64,
+) -> Place {
+    let counts = match point.measured {
+        // A background of its own, known from the off region only.
+        Measured::Counts {
+            off: Some((_, tau)),
+            ..
+        } => signal + background * (1.0 + 1.0 / tau),
+        Measured::CrossSection { sigma_nb, error_nb } if sigma_nb != 0.0 => {
+            let relative = error_nb / sigma_nb;
+            signal * signal * relative * relative
+        }
+        _ => signal + background,
+    };
+    let energy = slope * point.w_error_gev;
+    let lumi = if luminosity > 0.0 {
+        signal * point.luminosity_error_nbinv / luminosity
+    } else {
+        0.0
+    };
+    Place {
+        gradient: DVector::from_vec(gradient),
+        slope,
+        variance: counts + energy * energy + lumi * lumi,
+    }
+}
+
+fn add_points(
+    prior: &mut DMatrix<f64>,
+    points: &[&Point],
+    places: &[Place],
+    group_energy_gev: f64,
+) {
+    let p = prior.nrows();
+    let mut done = vec![false; points.len()];
+    for i in 0..points.len() {
+        if done[i] {
+            continue;
+        }
+        let group = points[i].group.as_ref().filter(|_| group_energy_gev > 0.0);
+        let mut shared = DVector::<f64>::zeros(p);
+        let mut q = 1.0 / (group_energy_gev * group_energy_gev);
+        for k in i..points.len() {
+            let same = k == i || (group.is_some() && points[k].group.as_ref() == group);
+            if !same || done[k] || places[k].variance <= 0.0 {
+                continue;
+            }
+            done[k] = true;
+            let place = &places[k];
+            *prior += &place.gradient * place.gradient.transpose() / place.variance;
+            shared += &place.gradient * (place.slope / place.variance);
+            q += place.slope * place.slope / place.variance;
+        }
+        if group.is_some() {
+            *prior -= &shared * shared.transpose() / q;
+        }
+    }
+}
+
+/// Covariance of the free parameters from what is known (constraints and points), where all of
+/// it is determined; else from the constraints alone (others known exactly, as far as planning goes).
+#[must_use]
+pub fn known_covariance(
+    prior: &DMatrix<f64>,
+    fit: &FitSettings,
+    parameters: &Parameters,
+) -> DMatrix<f64> {
+    let free = parameters.free.len();
+    let all = DMatrix::identity(prior.nrows(), free);
+    // With the nuisances' unit constraints the whole matrix is regular if the free part is.
+    if let Some(covariance) = super::criterion::covariance_of(prior, &all) {
+        return covariance;
+    }
+    let mut covariance = DMatrix::zeros(free, free);
+    for c in &fit.constraints {
+        if let Some(i) = parameters.free.iter().position(|f| *f == c.parameter) {
+            covariance[(i, i)] = c.error * c.error;
+        }
+    }
+    covariance
+}
+
+/// The scan moved to truth `k` of a quasi-random sequence (Halton) through a Gaussian of this
+/// covariance; `None` where a parameter would leave its range.
+#[must_use]
+pub fn moved(
+    scan: &Scan,
+    parameters: &Parameters,
+    covariance: &DMatrix<f64>,
+    k: u32,
+) -> Option<Scan> {
+    const PRIMES: [u32; 16] = [2, 3, 5, 7, 11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53];
+    let free = parameters.free.len();
+    let eigen = covariance.clone().symmetric_eigen();
+    // The widest direction gets the best-spread coordinate of the sequence.
+    let mut order: Vec<usize> = (0..free).collect();
+    let relative = |i: usize| eigen.eigenvalues[i];
+    order.sort_by(|&a, &b| relative(b).total_cmp(&relative(a)).then(a.cmp(&b)));
+    let mut shift = DVector::<f64>::zeros(free);
+    for (place, &i) in order.iter().enumerate() {
+        let prime = *PRIMES.get(place)?;
+        let z = normal_quantile(halton(k, prime));
+        shift += eigen.eigenvectors.column(i) * (z * eigen.eigenvalues[i].max(0.0).sqrt());
+    }
+    let mut other = scan.clone();
+    for (id, s) in parameters.free.iter().zip(shift.iter()) {
+        let value = value_of(scan, id).ok()? + s;
+        let positive = id.ends_with(".width")
+            || id.ends_with(".mass")
+            || id.ends_with("strength")
+            || id == SPREAD
+            || id.starts_with("background");
+        if !value.is_finite() || (positive && value <= 0.0 && *s != 0.0) {
+            return None;
+        }
+        set_value(&mut other, id, value).ok()?;
+    }
+    Some(other)
+}
+
+fn halton(k: u32, base: u32) -> f64 {
+    let (mut left, mut digit, mut out) = (k, 1.0 / f64::from(base), 0.0);
+    while left > 0 {
+        out += f64::from(left % base) * digit;
+        left /= base;
+        digit /= f64::from(base);
+    }
+    out
+}
