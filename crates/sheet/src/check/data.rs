@@ -3,7 +3,7 @@
 use super::log::Log;
 use crate::doc::{self, Sheet};
 use crate::quantity::Dimension::{
-    self, CrossSectionSquared, Energy, EnergySquared, Number, NumberPerEnergy, Time,
+    self, CrossSectionSquared, Energy, EnergySquared, Number, NumberPerEnergy,
 };
 use widthwise_core::scan::{CommonErrors, Stage};
 
@@ -158,20 +158,4 @@ fn matrix(
         }
     }
     matrix
-}
-
-/// Texts of fit and plan that no other part reads.
-pub fn check_plan_and_fit(sheet: &Sheet, log: &mut Log) {
-    let plan = &sheet.plan;
-    for (field, text, dimension) in [
-        ("from", &plan.from, Energy),
-        ("to", &plan.to, Energy),
-        ("step", &plan.step, Energy),
-        ("hours", &plan.hours, Time),
-        ("dwell_step", &plan.dwell_step, Time),
-        ("least_dwell", &plan.least_dwell, Time),
-        ("settle", &plan.settle, Time),
-    ] {
-        log.optional(&format!("plan.{field}"), text.as_ref(), dimension);
-    }
 }

@@ -10,10 +10,12 @@ mod data;
 mod detection;
 mod log;
 mod model;
+mod plan;
 mod resonance;
 mod rows;
 
 pub use beam::{Frame, dial_dimension, setting_kind};
+pub use plan::PlanReading;
 pub use rows::RowReading;
 
 use crate::doc::Sheet;
@@ -115,6 +117,20 @@ pub fn understand(sheet: &Sheet) -> Understood {
     }
 }
 
+/// Understands what the plan may do.
+///
+/// # Errors
+/// Everything that is wrong with it.
+pub fn plan(sheet: &Sheet) -> Result<PlanReading, Vec<Refusal>> {
+    let mut log = Log::default();
+    let reading = plan::read(sheet, &mut log);
+    if log.problems.is_empty() {
+        Ok(reading)
+    } else {
+        Err(log.problems)
+    }
+}
+
 /// Understands all but the rows.
 ///
 /// # Errors
@@ -138,7 +154,7 @@ fn frame_into(sheet: &Sheet, log: &mut Log) -> Option<Frame> {
     let chain = model::chain(sheet, beams.as_ref(), spread, w0, log);
     let detection = detection::detection(sheet, log);
     let common = data::common_errors(sheet, log);
-    data::check_plan_and_fit(sheet, log);
+    plan::read(sheet, log);
     if log.problems.len() > before {
         return None;
     }
