@@ -20,7 +20,7 @@ use nalgebra::DMatrix;
 /// Rates at different energies.
 pub fn contrast(first_rate_per_h: &[f64], second: &Rates) -> Answer<(Rates, Criterion)> {
     let n = second.rate_per_h.len();
-    if first_rate_per_h.len() != n || n == 0 || second.gradient_per_h.len() % n != 0 {
+    if first_rate_per_h.len() != n || n == 0 || !second.gradient_per_h.len().is_multiple_of(n) {
         return Err(refuse(
             "plan.rival",
             "",
