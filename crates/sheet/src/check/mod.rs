@@ -15,7 +15,7 @@ mod resonance;
 mod rows;
 
 pub use beam::{Frame, dial_dimension, setting_kind};
-pub use plan::PlanReading;
+pub use plan::{GoalReading, PlanReading, Wanted};
 pub use rows::RowReading;
 
 use crate::doc::Sheet;

@@ -53,8 +53,28 @@ pub struct PlanReading {
     pub others_share: f64,
     /// Truths; `None`: as many as usual.
     pub truths: Option<u32>,
-    /// (text of the quantity, wanted: (error in GeV or relative, true if relative), weight).
-    pub goals: Vec<(String, Option<(f64, bool)>, f64)>,
+    /// Goals.
+    pub goals: Vec<GoalReading>,
+}
+
+/// One goal.
+#[derive(Debug, Clone, PartialEq)]
+pub struct GoalReading {
+    /// The quantity as typed.
+    pub quantity: String,
+    /// Error wanted.
+    pub wanted: Option<Wanted>,
+    /// Weight beside other goals.
+    pub weight: f64,
+}
+
+/// Error wanted of a goal.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Wanted {
+    /// GeV.
+    Energy(f64),
+    /// Relative to the value.
+    Relative(f64),
 }
 
 /// Reads the section.
@@ -136,7 +156,11 @@ pub fn read(sheet: &Sheet, log: &mut Log) -> PlanReading {
         );
     }
     if let Some(goal) = &p.goal {
-        reading.goals.push((goal.clone(), None, 1.0));
+        reading.goals.push(GoalReading {
+            quantity: goal.clone(),
+            wanted: None,
+            weight: 1.0,
+        });
     }
     for (i, goal) in p.goals.iter().enumerate() {
         let path = format!("plan.goals[{i}]");
@@ -146,11 +170,17 @@ pub fn read(sheet: &Sheet, log: &mut Log) -> PlanReading {
         let wanted = goal.wanted.as_ref().map(|text| {
             // An energy has a unit; what has none is relative.
             let field = format!("{path}.wanted");
-            let relative = crate::quantity::read(text, Number).is_ok();
-            let dimension = if relative { Number } else { Energy };
-            (log.value(&field, text, dimension), relative)
+            if crate::quantity::read(text, Number).is_ok() {
+                Wanted::Relative(log.value(&field, text, Number))
+            } else {
+                Wanted::Energy(log.value(&field, text, Energy))
+            }
         });
-        reading.goals.push((goal.quantity.clone(), wanted, weight));
+        reading.goals.push(GoalReading {
+            quantity: goal.quantity.clone(),
+            wanted,
+            weight,
+        });
     }
     reading
 }
