@@ -5,6 +5,8 @@
 //! * [`limits`] - the one table of what every number may be.
 //! * [`particles`] - common beam and final-state particles.
 //! * [`check`] - from the sheet to the core's scan, or everything that is wrong with it.
+//! * [`table`] - CSV in and out.
+//! * [`json`], [`demos`] - the sheet as a file, invented examples.
 //! * [`requests`] - what can be asked of a sheet, and the answers; the page's worker and the
 //!   batch program are thin shells over it.
 

@@ -1,12 +1,24 @@
 //! What can be asked of a sheet, and the answers. Page and batch program send the same requests.
 
 mod convert;
+mod csv;
+mod cursor;
+mod curve;
+mod fit;
+mod parameter;
+mod points;
+mod ready;
 mod reply;
 mod sheets;
 mod table;
 mod tables;
 
+pub use csv::csv_of;
+pub use fit::settings as fit_settings;
+pub use parameter::{Parameter, find as find_parameter};
+pub use ready::Ready;
 pub use reply::*;
+pub use table::range as energy_range;
 
 use crate::doc::Sheet;
 use serde::{Deserialize, Serialize};
@@ -117,7 +129,15 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
             answers,
         } => table::read_table(sheet, text, answers),
         Request::WriteTable { sheet, table } => table::write_table(sheet, *table),
-        _ => Err(Refusal::new("", "", "", "This request has no answer yet.")),
+        Request::Curve {
+            sheet,
+            from_gev,
+            to_gev,
+            points,
+        } => curve::answer(sheet, *from_gev, *to_gev, *points),
+        Request::Cursor { sheet, w_gev } => cursor::answer(sheet, *w_gev),
+        Request::Points { sheet } => points::answer(sheet),
+        Request::Fit { sheet } => fit::answer(sheet),
     }
 }
 

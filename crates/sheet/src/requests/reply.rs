@@ -100,9 +100,11 @@ pub enum Body {
         /// 2 NLL (BC form for counts, chi2 for cross sections) at the minimum, without constraints' part hidden.
         statistic: f64,
         /// Points and constraints minus free parameters.
-        degrees_of_freedom: u32,
+        degrees_of_freedom: i32,
         /// Probability of a larger value, where it can be told.
         p_value: Option<f64>,
+        /// The chi-squared distribution may be used for it: every expected count is at least 20.
+        p_value_asymptotic: bool,
         /// Pull of each point in use: (row id, pull).
         pulls: Vec<(String, f64)>,
         /// Nuisances: name, pull and its error.
@@ -212,7 +214,7 @@ pub struct ColumnReading {
 }
 
 /// One row of data as the chain understands it.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[derive(Debug, Clone, Default, PartialEq, Serialize, Deserialize)]
 #[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
 pub struct PointReading {
     /// The row's id.
@@ -243,6 +245,14 @@ pub struct PointReading {
     pub rate_per_h: Option<f64>,
     /// Hours to a relative error of 10 % on the signal; absent: never, or unknown.
     pub hours_to_tenth: Option<f64>,
+    /// No beam time gets there.
+    pub never: bool,
+    /// Relative error of the signal that remains after any beam time.
+    pub floor: Option<f64>,
+    /// Left out of the fit.
+    pub left_out: bool,
+    /// Running now.
+    pub running: bool,
 }
 
 /// One fitted parameter.

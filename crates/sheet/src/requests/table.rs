@@ -63,8 +63,16 @@ fn fitted(sheet: &Sheet) -> Answer<Body> {
 }
 
 /// From a fifth of the data's span below the lowest to a fifth above the highest point.
-fn range(sheet: &Sheet) -> Answer<(f64, f64)> {
-    let w: Vec<f64> = points(sheet)?.iter().filter_map(|p| p.w_gev).collect();
+///
+/// # Errors
+/// No two energies to span a range.
+pub fn range(sheet: &Sheet) -> Answer<(f64, f64)> {
+    let understood = crate::check::understand(sheet);
+    let w: Vec<f64> = understood
+        .rows
+        .iter()
+        .filter_map(|row| row.point.as_ref().map(|p| p.w_gev))
+        .collect();
     let (low, high) = w
         .iter()
         .fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), w| {
@@ -82,7 +90,8 @@ fn range(sheet: &Sheet) -> Answer<(f64, f64)> {
     ))
 }
 
-fn fit_table(body: &Body) -> String {
+/// A fit as CSV text.
+pub fn fit_table(body: &Body) -> String {
     let mut records = vec![
         ["parameter", "id", "value", "error", "unit"]
             .map(String::from)

@@ -1,0 +1,47 @@
+//! Answers as CSV, for the batch program.
+
+use super::{Body, Column, Reply};
+use crate::table::write;
+use widthwise_core::error::{Answer, Refusal};
+
+/// The columns of a reply as CSV, or its table where it has one.
+///
+/// # Errors
+/// A reply that is no table.
+pub fn csv_of(reply: &Reply) -> Answer<String> {
+    match &reply.body {
+        Body::Fit { .. } => Ok(super::table::fit_table(&reply.body)),
+        Body::Points { points, .. } => {
+            let column = |name: &str, unit: &str, values: Vec<f64>| Column {
+                name: name.into(),
+                unit: unit.into(),
+                values,
+            };
+            let or_gap = |v: Option<f64>| v.unwrap_or(f64::NAN);
+            let of = |f: &dyn Fn(&super::PointReading) -> Option<f64>| {
+                points.iter().map(|p| or_gap(f(p))).collect::<Vec<f64>>()
+            };
+            let text = write::columns(&[
+                column("W", "GeV", of(&|p| p.w_gev)),
+                column("W error", "GeV", of(&|p| Some(p.w_error_gev))),
+                column("luminosity", "nb^-1", of(&|p| p.luminosity_nbinv)),
+                column("live time", "h", of(&|p| p.live_time_h)),
+                column("cross section", "nb", of(&|p| p.sigma_nb)),
+                column(
+                    "cross section error",
+                    "nb",
+                    of(&|p| p.sigma_nb.map(|_| p.sigma_error_nb)),
+                ),
+                column("seen", "", of(&|p| p.seen)),
+                column("expected", "", of(&|p| p.expected)),
+                column("pull", "", of(&|p| p.pull)),
+                column("p-value", "", of(&|p| p.p_value)),
+                column("rate", "1/h", of(&|p| p.rate_per_h)),
+                column("time to 10 %", "h", of(&|p| p.hours_to_tenth)),
+            ]);
+            Ok(text)
+        }
+        _ if !reply.columns.is_empty() => Ok(write::columns(&reply.columns)),
+        _ => Err(Refusal::new("", "", "", "this answer is no table")),
+    }
+}

@@ -1,0 +1,169 @@
+//! Parameters of a fit by id: where their text stands in the sheet, what they measure.
+
+use crate::check;
+use crate::doc::{Coherent, Incoherent, Sheet, SpreadKind, Strength};
+use crate::quantity::unit::{Unit, read_unit};
+use crate::quantity::{Dimension, read};
+use widthwise_core::error::{Answer, Refusal};
+use widthwise_core::scan::Spread;
+
+/// A parameter of the sheet.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Parameter {
+    /// Path of its text.
+    pub field: String,
+    /// What the text measures.
+    pub dimension: Dimension,
+    /// The unit it is typed in.
+    pub unit: Unit,
+    /// The core's value over the sheet's (both in core units): not 1 where the core fits sigma_W
+    /// and the sheet says a spread of each beam.
+    pub core_per_sheet: f64,
+}
+
+/// The parameter with this id.
+///
+/// # Errors
+/// The sheet has no such parameter.
+pub fn find(sheet: &Sheet, id: &str) -> Answer<Parameter> {
+    let (field, dimension, text) = place(sheet, id).ok_or_else(|| {
+        Refusal::new(
+            "fit.free",
+            id,
+            "a parameter of this sheet, such as r1.mass, r1.width, r1.strength, spread, background.rate",
+            format!("this sheet has no parameter {id}"),
+        )
+    })?;
+    let core = || read_unit(dimension.core_unit()).unwrap_or_default();
+    let reading = text.and_then(|text| read(text, dimension).ok());
+    let unit = reading.as_ref().map_or_else(core, |r| r.unit.clone());
+    let core_per_sheet = match (id, &reading) {
+        ("spread", Some(reading)) if reading.value > 0.0 => sigma_w(sheet) / reading.value,
+        _ => 1.0,
+    };
+    Ok(Parameter {
+        field,
+        dimension,
+        unit,
+        core_per_sheet: if core_per_sheet > 0.0 {
+            core_per_sheet
+        } else {
+            1.0
+        },
+    })
+}
+
+fn sigma_w(sheet: &Sheet) -> f64 {
+    match check::frame(sheet).map(|(frame, _)| frame.scan.chain.spread) {
+        Ok(Spread::Gaussian { sigma_gev, .. }) => sigma_gev,
+        _ => 0.0,
+    }
+}
+
+type Place<'a> = (String, Dimension, Option<&'a String>);
+
+fn place<'a>(sheet: &'a Sheet, id: &str) -> Option<Place<'a>> {
+    let (owner, name) = id.split_once('.').unwrap_or((id, ""));
+    if let Some(number) = owner
+        .strip_prefix('r')
+        .and_then(|n| n.parse::<usize>().ok())
+    {
+        return resonance(sheet, number.checked_sub(1)?, name);
+    }
+    match (owner, name) {
+        ("spread", "") => {
+            let dimension = match sheet.beam.spread.kind {
+                SpreadKind::W => Dimension::Energy,
+                SpreadKind::Relative => Dimension::Number,
+                SpreadKind::Each => check::dial_dimension(sheet.beam.dial),
+                SpreadKind::None | SpreadKind::Table => return None,
+            };
+            Some((
+                "beam.spread.first".into(),
+                dimension,
+                sheet.beam.spread.first.as_ref(),
+            ))
+        }
+        ("background", "cross_section") => Some((
+            "detection.background_cross_section".into(),
+            Dimension::CrossSection,
+            sheet.detection.background_cross_section.as_ref(),
+        )),
+        ("background", "rate") => Some((
+            "detection.background_rate".into(),
+            Dimension::Rate,
+            sheet.detection.background_rate.as_ref(),
+        )),
+        ("coherent", name) => coherent(sheet.model.coherent.as_ref()?, name),
+        ("incoherent", name) => incoherent(sheet.model.incoherent.as_ref()?, name),
+        _ => None,
+    }
+}
+
+fn resonance<'a>(sheet: &'a Sheet, index: usize, name: &str) -> Option<Place<'a>> {
+    let r = sheet.model.resonances.get(index)?;
+    let path = format!("model.resonances[{index}]");
+    let energy =
+        |field: &str, text| Some((format!("{path}.{field}"), Dimension::Energy, Some(text)));
+    let number =
+        |field: &str, text| Some((format!("{path}.{field}"), Dimension::Number, Some(text)));
+    match (name, &r.strength) {
+        ("mass", _) => energy("mass", &r.mass),
+        ("width", _) => energy("width", &r.width),
+        ("phase", _) => Some((format!("{path}.phase"), Dimension::Angle, r.phase.as_ref())),
+        ("strength", Strength::GammaInBf { value }) => energy("strength.value", value),
+        ("strength", Strength::BinBf { value }) => number("strength.value", value),
+        ("b_in", Strength::Branchings { b_in, .. }) => number("strength.b_in", b_in),
+        ("b_f", Strength::Branchings { b_f, .. }) => number("strength.b_f", b_f),
+        ("gamma_in", Strength::PartialWidths { gamma_in, .. }) => {
+            energy("strength.gamma_in", gamma_in)
+        }
+        ("gamma_f", Strength::PartialWidths { gamma_f, .. }) => energy("strength.gamma_f", gamma_f),
+        _ => None,
+    }
+}
+
+fn coherent<'a>(background: &'a Coherent, name: &str) -> Option<Place<'a>> {
+    let phase_path = || "model.coherent.phase".to_string();
+    match (background, name) {
+        (Coherent::Polynomial { phase, .. } | Coherent::OnePhoton { phase, .. }, "phase") => {
+            Some((phase_path(), Dimension::Angle, Some(phase)))
+        }
+        (Coherent::OnePhoton { c, .. }, "0") => {
+            Some(("model.coherent.c".into(), Dimension::CrossSection, Some(c)))
+        }
+        (Coherent::SharedVertices { c }, "0") => {
+            Some(("model.coherent.c".into(), Dimension::Number, Some(c)))
+        }
+        (Coherent::Polynomial { coefficients, .. }, index) => {
+            let i: u8 = index.parse().ok()?;
+            let text = coefficients.get(usize::from(i))?;
+            Some((
+                format!("model.coherent.coefficients[{i}]"),
+                Dimension::NumberPerEnergy(i),
+                Some(text),
+            ))
+        }
+        _ => None,
+    }
+}
+
+fn incoherent<'a>(background: &'a Incoherent, name: &str) -> Option<Place<'a>> {
+    match (background, name) {
+        (Incoherent::Power { c0, .. }, "0") => Some((
+            "model.incoherent.c0".into(),
+            Dimension::CrossSection,
+            Some(c0),
+        )),
+        (Incoherent::Polynomial { coefficients, .. }, index) => {
+            let i: u8 = index.parse().ok()?;
+            let text = coefficients.get(usize::from(i))?;
+            Some((
+                format!("model.incoherent.coefficients[{i}]"),
+                Dimension::CrossSectionPerEnergy(i),
+                Some(text),
+            ))
+        }
+        _ => None,
+    }
+}
