@@ -1,0 +1,7 @@
+//! The sheet from outside: scenarios, bad input, tables, and any sheet that the limits allow.
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic)]
+
+mod bad_input;
+mod properties;
+mod scenarios;
+mod tables;
