@@ -1,6 +1,7 @@
 //! Cutting a text into cells: which sign separates them, where the header is, whether numbers
 //! are written with a decimal comma.
 
+use super::guard::unguarded;
 use widthwise_core::error::{Answer, Refusal};
 
 /// Longest text of a table, bytes.
@@ -85,6 +86,9 @@ pub fn cut(text: &str) -> Answer<Cells> {
             .unwrap_or_default()
     };
     let has_header = !headers.is_empty();
+    for header in &mut headers {
+        *header = unguarded(header).to_string();
+    }
     headers.resize(width, String::new());
     distinct(&mut headers);
     Ok(Cells {
