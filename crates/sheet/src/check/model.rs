@@ -85,7 +85,7 @@ pub fn reference_gev(hypothesis: &Hypothesis) -> Option<f64> {
     match hypothesis {
         Hypothesis::PartialWave(wave) => wave.resonances.first().map(|r| r.mass_gev),
         // The sheet does not declare these yet.
-        Hypothesis::KMatrix(_) | Hypothesis::Diagrams(_) => None,
+        _ => None,
     }
 }
 
