@@ -114,6 +114,10 @@ degrees_of_freedom: number,
  */
 p_value: number | null, 
 /**
+ * The chi-squared distribution may be used for it: every expected count is at least 20.
+ */
+p_value_asymptotic: boolean, 
+/**
  * Pull of each point in use: (row id, pull).
  */
 pulls: Array<[string, number]>, 

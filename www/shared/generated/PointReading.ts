@@ -59,4 +59,20 @@ rate_per_h: number | null,
 /**
  * Hours to a relative error of 10 % on the signal; absent: never, or unknown.
  */
-hours_to_tenth: number | null, };
+hours_to_tenth: number | null, 
+/**
+ * No beam time gets there.
+ */
+never: boolean, 
+/**
+ * Relative error of the signal that remains after any beam time.
+ */
+floor: number | null, 
+/**
+ * Left out of the fit.
+ */
+left_out: boolean, 
+/**
+ * Running now.
+ */
+running: boolean, };
