@@ -54,7 +54,7 @@ class Batch:
 
     def observed(self, scan, w_gev, stage="observed", accuracy="1e-9"):
         """Observed cross sections: the counts expected at 1/nb and full efficiency."""
-        rows = [{"id": f"p{i}", "w": sheets.gev(w), "luminosity": "1 nb^-1", "counts": "0"} for i, w in enumerate(w_gev)]
+        rows = [{"id": f"p{i}", "w": sheets.gev(w), "luminosity": "1 nb^-1", "live_time": "1 h", "counts": "0"} for i, w in enumerate(w_gev)]
         points = self.ask("points", sheets.sheet(scan, rows, stage, accuracy))["points"]
         return [p["expected"] for p in points]
 
@@ -148,7 +148,12 @@ def lep_fit(batch):
     for name, common in (("points alone", {}), ("with common errors", {"common_energy_error": "1.7 MeV", "common_scale_error": "0.07 %"})):
         fit = batch.ask("fit", sheets.sheet(s, data, "born", "1e-6", ["r1.mass", "r1.width", "r1.strength"], data=common))
         ref = load("published.json")["lep_fit"][name]
-        m = [p for p in fit["parameters"] if p["id"] == "r1.mass"][0]["value"]
+        got = {p["id"]: p for p in fit["parameters"]}
+        m, b = got["r1.mass"], got["r1.strength"]
+        # sigma0 = 12 pi b/M^2: its error needs the correlation of b with M
+        a, k, rho = b["error"] / b["value"], 2 * m["error"] / m["value"], fit["correlation"][2][0]
+        b["error"] = b["value"] * np.sqrt(a * a + k * k - 2 * rho * a * k)
+        m = m["value"]
         take_fit(rows, fit, {"r1.mass": ("m", 1, 0), "r1.width": ("g", 1, 0), "r1.strength": ("s0", 12 * np.pi * c.HBARC2_GEV2_NB / m ** 2, 0)}, ref, name)
         rows[2].take(fit["statistic"] - ref["chi2"], name)
     return list(rows)

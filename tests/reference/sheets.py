@@ -39,7 +39,7 @@ def resonance(r):
     if r["phase_rad"]:
         out["phase"] = quantity(r["phase_rad"], "rad")
     if r["form"].get("channels"):
-        out["channels"] = [{"name": c["name"], "fraction": repr(c["fraction"]), "shape": shape(c["shape"])} for c in r["form"]["channels"]]
+        out["channels"] = [{"name": c.get("name", f"channel {i}"), "fraction": repr(c["fraction"]), "shape": shape(c["shape"])} for i, c in enumerate(r["form"]["channels"])]
     return out
 
 
@@ -88,5 +88,5 @@ def sheet(scan, rows, stage="observed", accuracy="1e-9", free=(), constraints=()
         model["final_threshold"] = gev(h["final_threshold_gev"])
     return {"format": "widthwise scan sheet", "version": 1, "title": "independent check",
             "beam": {"arrangement": "equal_beams", "first": particle(b["first"], 0), "second": particle(b["second"], 1), "dial": "w", "spread": spread(scan["chain"]["spread"])},
-            "model": model, "detection": {"efficiency": "1", **(detection or {})}, "data": {"stage": stage, "rows": rows, **(data or {})},
+            "model": model, "detection": {"efficiency": "1", "background_rate": "0 events/h", **(detection or {})}, "data": {"stage": stage, "rows": rows, **(data or {})},
             "fit": {"free": list(free), "constraints": list(constraints)}}

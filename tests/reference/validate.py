@@ -17,8 +17,8 @@ SCRIPTS = ["special_functions.py", "self_energy.py", "poles.py", "spinors.py", "
 # Checked by the crates' own tests against values written into them; the source stands there.
 IN_TESTS = [
     ("beam conversions: equal, unequal, crossing angle, fixed target", "worked by hand, crates/core/tests and beam", "relative", 1e-12, "rounding"),
-    ("c- and D-optimal designs, relaxed", "make_plan_cvxpy.py: cvxpy (Clarabel), 20 random sheets", "relative in the criterion", 1e-4, "accuracy of the interior-point solver"),
-    ("textbook designs, efficient rounding", "Elfving 1952, Dette, Haines & Imhof 1999, Pukelsheim & Rieder 1992", "relative", 1e-6, "closed forms"),
+    ("designs with visit errors, prior draws and several goals", "make_plan_cvxpy.py: cvxpy (Clarabel), 20 random sheets", "relative in the criterion", 1e-4, "accuracy of the interior-point solver"),
+    ("textbook designs", "Elfving 1952; Dette, Haines & Imhof 1999; closed Breit-Wigner results", "relative", 1e-6, "closed forms"),
     ("particle masses, widths, spins", "data/pdg2026_readout.csv: Review of Particle Physics 2026", "as printed", 0.0, "copied numbers"),
 ]
 
