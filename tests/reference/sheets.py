@@ -2,7 +2,7 @@
 
 
 def gev(x):
-    return f"{x!r} GeV"
+    return f"{float(x)!r} GeV"
 
 
 def quantity(x, unit):
