@@ -2,12 +2,28 @@
 
 use crate::shell::{self, Outcome, say};
 use crate::stamp::{self, Ingredients};
+use crate::wasm::Compiler;
 use std::path::{Path, PathBuf};
 
 /// Version of wasm-pack, built once into the cache.
 const WASM_PACK: &str = "0.15.1";
 /// Version of the WebDriver for Firefox.
 const GECKODRIVER: &str = "0.37.1";
+
+/// All that `serve` and `test` need.
+pub fn everything() -> Outcome {
+    let compiler = Compiler::find()?;
+    say(format!(
+        "compiler for WebAssembly: {}",
+        compiler.version()?.lines().next().unwrap_or_default()
+    ));
+    wasm_tools()?;
+    npm_packages()?;
+    python()?;
+    chromium()?;
+    say("fetching the crates");
+    shell::run(shell::cargo().args(["fetch", "--quiet", "--locked"]))
+}
 
 /// Debian packages, installed if a file they bring is missing.
 pub fn debian(packages: &[&str], why: &str, brings: &[&str]) -> Outcome {

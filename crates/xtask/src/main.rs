@@ -18,6 +18,7 @@ const HELP: &str = "\
 cargo xtask serve [--port N] [--no-open]   build everything, write target/dist/widthwise.html, serve it on localhost
 cargo xtask test                           every check: format, lints, rules, native, WebAssembly, page, browser, references
 cargo xtask dist                           build target/dist/widthwise.html and print its size and hash
+cargo xtask fetch                          only what the others need from outside, e.g. before a machine goes offline
 cargo xtask page                           the browser tests in Chromium (--all: Firefox and WebKit too)
 cargo xtask types                          rewrite the TypeScript types of requests and answers, and the JSON Schema
 cargo xtask tidy                           the rules of the house
@@ -34,6 +35,7 @@ fn main() -> std::process::ExitCode {
         Some((&"test", [])) => suites::test(),
         Some((&"dist", [])) => build::dist().map(|_| ()),
         Some((&"page", rest)) => suites::page(rest),
+        Some((&"fetch", [])) => fetch::everything(),
         Some((&"types", [])) => build::generated(),
         Some((&"tidy", [])) => tidy::report(),
         Some((&"validate", rest)) => bench::validate(rest),
