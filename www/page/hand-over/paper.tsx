@@ -10,7 +10,7 @@ import { Quantity, units } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import * as answers from "../state/answers";
 import { calibrationAge, needsAttention } from "../state/health";
-import { planned } from "../state/plan";
+import { nextStop } from "../state/plan";
 import { sheet } from "../state/sheet";
 import { version } from "../state/version";
 import { Assumptions } from "./assumptions";
@@ -68,7 +68,7 @@ export function Paper(): JSX.Element {
 
 function Where(): JSX.Element {
   const running = answers.runningPoint.value;
-  const next = planned.value.find((stop) => stop.next);
+  const next = nextStop.value;
   return (
     <dl class="facts">
       <div>
@@ -77,7 +77,7 @@ function Where(): JSX.Element {
       </div>
       <div>
         <dt>Next</dt>
-        <dd>{next === undefined ? "not planned" : `${next.dial} for ${hours(next.hours)}, ${next.why}`}</dd>
+        <dd>{next === null ? "not planned" : `${next.dial} for ${hours(next.hours)}, ${next.why}`}</dd>
       </div>
       <div>
         <dt>Beam time left</dt>

@@ -6,7 +6,7 @@ import { Quantity } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import * as answers from "../state/answers";
 import { calibrationAge, needsAttention } from "../state/health";
-import { planned } from "../state/plan";
+import { nextStop, planned } from "../state/plan";
 import { room } from "../state/prefs";
 import { rows, runningIndex, sheet } from "../state/sheet";
 
@@ -107,7 +107,7 @@ function Running(): JSX.Element {
         ) : (
           "no luminosity yet"
         )}
-        {timeLeft(here.id, here.time)}
+        {timeLeft(here.w, here.time)}
       </p>
     </Cell>
   );
@@ -124,11 +124,15 @@ function goToEntry(): void {
   });
 }
 
-function timeLeft(id: string, done: number): string {
-  const stop = planned.value.find((entry) => entry.id === id);
+/** Time left of the running point, if the plan has a stop where it stands. */
+function timeLeft(w: number, done: number): string {
+  const stop = planned.value.find((entry) => Math.abs(entry.w - w) <= SAME_PLACE * w);
   if (stop === undefined || !(stop.hours > done)) return "";
   return ` · ${hours(stop.hours - done)} left`;
 }
+
+/** Two energies closer than this, relative, are one setting. */
+const SAME_PLACE = 2e-6;
 
 /** At most three results: mass, width, strength of the first resonance, or whatever is free first. */
 function Results(): JSX.Element {
@@ -176,10 +180,10 @@ function Results(): JSX.Element {
 }
 
 function Next(): JSX.Element {
-  const next = planned.value.find((stop) => stop.next);
+  const next = nextStop.value;
   return (
     <Cell name="Next setting" kind="cell-next">
-      {next === undefined ? (
+      {next === null ? (
         <>
           <p class="figure quiet">–</p>
           <p class="note">

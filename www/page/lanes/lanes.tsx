@@ -4,6 +4,7 @@ import { useLayoutEffect, useRef } from "preact/hooks";
 import { signal, useSignal } from "@preact/signals";
 import { axisScale } from "../format/number";
 import { Icon } from "../parts/icon";
+import { plan } from "../state/plan";
 import { lanes, traces } from "../state/prefs";
 import { atCursor, points } from "../state/answers";
 import { cursor, isZoomed, showAll, slide, view, zoomAt } from "../state/view";
@@ -11,6 +12,7 @@ import { GUTTER, MARGIN, shareOf } from "./axis";
 import { AsTable } from "./as-table";
 import { drawBeamTime } from "./beam-time";
 import { Chart, type Drawing } from "./chart";
+import { drawInformation } from "./information";
 import { drawLineShape } from "./line-shape";
 import { Legend } from "./legend";
 import { listen, marked } from "./pointer";
@@ -24,12 +26,22 @@ interface Lane {
   /** Height, CSS pixels, on a window of this height. */
   height: (window: number) => number;
   draw: () => Drawing;
+  /** Whether there is anything to show; always, if absent. */
+  there?: () => boolean;
 }
 
 /** The lanes there are, top to bottom. A new lane is one entry here. */
 const LANES: readonly Lane[] = [
   { id: "line-shape", title: "Cross section", unit: "nb", height: (window) => Math.round(Math.max(240, Math.min(620, innerWidth < 700 ? 260 : window * 0.38))), draw: drawLineShape },
   { id: "pulls", title: "Residuals", unit: "errors", height: (window) => (window > 1000 ? 140 : 112), draw: drawPulls },
+  {
+    id: "information",
+    title: "Information per hour",
+    unit: "%",
+    height: (window) => (window > 1000 ? 120 : 96),
+    draw: drawInformation,
+    there: () => plan.value?.gain != null,
+  },
   { id: "beam-time", title: "Beam time", unit: "h", height: (window) => (window > 1000 ? 120 : 96), draw: drawBeamTime },
 ];
 
@@ -40,7 +52,7 @@ addEventListener("resize", () => (tall.value = innerHeight));
 export function Lanes(): JSX.Element {
   const box = useRef<HTMLDivElement>(null);
   useLayoutEffect(() => (box.current === null ? undefined : listen(box.current)), []);
-  const shown = LANES.filter((lane) => lanes.value[lane.id] !== false);
+  const shown = LANES.filter((lane) => lanes.value[lane.id] !== false && (lane.there?.() ?? true));
   const { from, to } = view.value;
   return (
     <section class="lanes" aria-labelledby="lanes-title">

@@ -5,7 +5,7 @@ import { useId } from "preact/hooks";
 import { hours } from "../format/number";
 import { Quantity, units } from "../parts/quantity";
 import * as answers from "../state/answers";
-import { planned } from "../state/plan";
+import { nextStop } from "../state/plan";
 import { room } from "../state/prefs";
 import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
 import { rows, runningIndex } from "../state/sheet";
@@ -140,11 +140,11 @@ function StartForm(): JSX.Element {
 }
 
 function NextStop(): JSX.Element {
-  const next = planned.value.find((stop) => stop.next);
+  const next = nextStop.value;
   return (
     <fieldset>
       <legend>Next setting</legend>
-      {next === undefined ? (
+      {next === null ? (
         <p class="empty">
           No plan yet.{" "}
           <button type="button" class="link" onClick={() => (room.value = "plan")}>
