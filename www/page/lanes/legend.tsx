@@ -33,8 +33,10 @@ export function Legend(): JSX.Element {
             <Sample style={style} /> {style.label}
           </li>
         ))}
-      <li class="note" role="status">
-        {computing.value ? "Computing…" : ""}
+      <li>
+        <span class="note" role="status">
+          {computing.value ? "Computing…" : ""}
+        </span>
       </li>
     </ul>
   );
