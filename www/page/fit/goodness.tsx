@@ -91,6 +91,7 @@ export function Goodness({ fit }: { fit: FitView }): JSX.Element {
         <>
           {" "}
           · p {pValue(fit.p)}
+          {!fit.pHolds && <span class="note"> (counts are low: only a guide)</span>}
         </>
       )}
     </p>

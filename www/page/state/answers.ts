@@ -57,6 +57,8 @@ export interface FitView {
   statistic: number;
   degrees: number;
   p: number | null;
+  /** Counts are large enough for the p-value to be taken from the chi-squared distribution. */
+  pHolds: boolean;
   why: string;
   nuisances: { name: string; pull: number; error: number }[];
   converged: boolean;

@@ -88,6 +88,7 @@ export function readFit({ body }: Reply, sheet: Sheet): void {
       statistic: body.statistic,
       degrees: body.degrees_of_freedom,
       p: body.p_value ?? null,
+      pHolds: body.p_value_asymptotic,
       why: body.stopped,
       converged: body.converged,
       pulls: body.pulls,

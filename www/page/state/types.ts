@@ -18,6 +18,8 @@ import type { Vertex as WholeVertex } from "../../shared/generated/Vertex";
 /** Lists, flags and notes that are left out when empty. */
 type LeftOut =
   | "gaussian_factors"
+  | "goals"
+  | "blocked"
   | "energy_covariance"
   | "table"
   | "channels"
