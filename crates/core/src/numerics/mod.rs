@@ -1,5 +1,6 @@
 //! Numerical routines shared by the rooms.
 
+pub mod faddeeva;
 pub mod gauss_legendre;
 pub mod minimise;
 pub mod polynomial;
