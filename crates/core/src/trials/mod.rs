@@ -14,8 +14,10 @@ use serde::{Deserialize, Serialize};
 
 /// One pseudo-experiment's outcome.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
 pub struct TrialRow {
     /// Number of the trial.
+    #[cfg_attr(feature = "typescript", ts(type = "number"))]
     pub k: u64,
     /// The fit ended in a minimum with an error for every parameter that is not at a limit.
     pub converged: bool,

@@ -9,8 +9,10 @@ use serde::{Deserialize, Serialize};
 #[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
 pub struct Summary {
     /// Trials.
+    #[cfg_attr(feature = "typescript", ts(type = "number"))]
     pub trials: u64,
     /// Of these, fits that ended in a minimum; the others are in no number below.
+    #[cfg_attr(feature = "typescript", ts(type = "number"))]
     pub converged: u64,
     /// Mean of 2 NLL at the minimum.
     pub mean_statistic: f64,
@@ -35,6 +37,7 @@ pub struct ParameterSummary {
     /// Mean curvature error.
     pub mean_error: f64,
     /// Fits at a limit (no pull, no curvature interval).
+    #[cfg_attr(feature = "typescript", ts(type = "number"))]
     pub at_limit: u64,
     /// Mean of (fitted - truth)/error.
     pub pull_mean: f64,
@@ -63,6 +66,7 @@ pub struct CoverageOf {
     /// Upper end.
     pub high: f64,
     /// Trials counted.
+    #[cfg_attr(feature = "typescript", ts(type = "number"))]
     pub trials: u64,
 }
 

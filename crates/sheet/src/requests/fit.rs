@@ -104,7 +104,7 @@ fn constraint(sheet: &Sheet, c: &crate::doc::Constraint, path: &str) -> Answer<C
     })
 }
 
-fn fitted(sheet: &Sheet, p: &FittedValue) -> FittedParameter {
+pub(super) fn fitted(sheet: &Sheet, p: &FittedValue) -> FittedParameter {
     let known = parameter::find(sheet, &p.id).ok();
     let scale = known.as_ref().map_or(1.0, |k| k.core_per_sheet);
     let (value, error) = (p.value / scale, p.error.map(|e| e / scale));

@@ -10,19 +10,26 @@ mod points;
 mod ready;
 mod reply;
 mod sheets;
+mod statistics;
 mod table;
 mod tables;
+mod trials;
+mod window;
 
 pub use csv::csv_of;
 pub use fit::settings as fit_settings;
 pub use parameter::{Parameter, find as find_parameter};
 pub use ready::Ready;
 pub use reply::*;
+pub use statistics::{DerivedReading, EndReading, ParameterIntervals, PointInfluence, Solution};
 pub use table::range as energy_range;
+pub use trials::TrialRange;
+pub use window::MassWindow;
 
 use crate::doc::Sheet;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Answer, Refusal};
+use widthwise_core::trials::TrialRow;
 
 /// One request. The sheet travels as the document itself.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
@@ -94,6 +101,62 @@ pub enum Request {
         /// Which table.
         table: Table,
     },
+    /// Profile intervals of every free parameter, and derived quantities.
+    Intervals {
+        /// The sheet.
+        sheet: Sheet,
+    },
+    /// 2 NLL above its minimum along one parameter.
+    Profile {
+        /// The sheet.
+        sheet: Sheet,
+        /// Id of the parameter.
+        parameter: String,
+        /// Places, 8 to 200.
+        places: u32,
+    },
+    /// Regions of 68.3 and 95.4 % for a pair of parameters.
+    Contour {
+        /// The sheet.
+        sheet: Sheet,
+        /// Id of the first parameter.
+        first: String,
+        /// Id of the second parameter.
+        second: String,
+        /// Places on each, 8 to 200.
+        places: u32,
+    },
+    /// Other parameter sets that describe the data as well.
+    Solutions {
+        /// The sheet.
+        sheet: Sheet,
+    },
+    /// What each point does to the fit, and whether repeated points agree.
+    Influence {
+        /// The sheet.
+        sheet: Sheet,
+    },
+    /// A range of pseudo-experiments; the sheet's present values are the truth.
+    Trials {
+        /// The sheet.
+        sheet: Sheet,
+        /// Which.
+        range: TrialRange,
+    },
+    /// Bias, pulls and coverage of trials from any number of ranges.
+    Summary {
+        /// The sheet.
+        sheet: Sheet,
+        /// Rows of all ranges.
+        rows: Vec<TrialRow>,
+    },
+    /// Limits and significances over a window of masses.
+    Window {
+        /// The sheet.
+        sheet: Sheet,
+        /// The window.
+        window: MassWindow,
+    },
 }
 
 /// Tables that can be taken away.
@@ -117,7 +180,6 @@ pub enum Table {
 /// The request's first problem; a sheet that cannot be computed with is refused with its first one
 /// (ask [`Request::Check`] for all).
 pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<Reply> {
-    let _ = progress;
     match request {
         Request::Tables => Ok(tables::answer()),
         Request::Open { text } => sheets::open(text),
@@ -129,6 +191,23 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
             answers,
         } => table::read_table(sheet, text, answers),
         Request::WriteTable { sheet, table } => table::write_table(sheet, *table),
+        Request::Intervals { sheet } => statistics::intervals(sheet, progress),
+        Request::Profile {
+            sheet,
+            parameter,
+            places,
+        } => statistics::profile(sheet, parameter, *places),
+        Request::Contour {
+            sheet,
+            first,
+            second,
+            places,
+        } => statistics::contour(sheet, first, second, *places),
+        Request::Solutions { sheet } => statistics::solutions(sheet, progress),
+        Request::Influence { sheet } => statistics::influence(sheet),
+        Request::Trials { sheet, range } => trials::run(sheet, range, progress),
+        Request::Summary { sheet, rows } => trials::merge(sheet, rows),
+        Request::Window { sheet, window } => window::answer(sheet, window),
         Request::Curve {
             sheet,
             from_gev,

@@ -1,11 +1,14 @@
 //! Answers.
 
+use super::statistics::{DerivedReading, ParameterIntervals, PointInfluence, Solution};
 use crate::doc::{Row, Sheet};
 use crate::quantity::unit::Unit;
 use crate::quantity::{Dimension, format};
 use crate::table::RowChange;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Refusal, Warning};
+use widthwise_core::fit::limits::GlobalSignificance;
+use widthwise_core::trials::{Summary, TrialRow};
 
 /// A column of numbers that leaves as one transferred array.
 #[derive(Debug, Clone, PartialEq)]
@@ -117,6 +120,68 @@ pub enum Body {
         iterations: u32,
         /// Warnings.
         warnings: Vec<Warning>,
+    },
+    /// Profile intervals and derived quantities.
+    Intervals {
+        /// By free parameter.
+        parameters: Vec<ParameterIntervals>,
+        /// What follows from them.
+        derived: Vec<DerivedReading>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// A profile curve (numbers in the columns: value, rise).
+    Profile {
+        /// Id of the parameter.
+        id: String,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// Contours (numbers in the columns: first and second at 68.3 %, first and second at 95.4 %).
+    Contour {
+        /// Id of the first parameter.
+        first: String,
+        /// Id of the second parameter.
+        second: String,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// Parameter sets that describe the data.
+    Solutions {
+        /// Constructed, hence all there are; else found by random starts.
+        exact: bool,
+        /// What separates them, or why they are not exact.
+        note: String,
+        /// The sets.
+        solutions: Vec<Solution>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// What each point does to the fit.
+    Influence {
+        /// Parameters, in the order of the shifts.
+        parameters: Vec<FittedParameter>,
+        /// By point.
+        points: Vec<PointInfluence>,
+        /// Points taken at one energy (ids) and the probability that their counts follow one rate.
+        repeats: Vec<(String, f64)>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// Pseudo-experiments.
+    Trials {
+        /// One row each.
+        rows: Vec<TrialRow>,
+    },
+    /// Bias, pulls and coverage.
+    Summary {
+        /// Summary.
+        summary: Summary,
+    },
+    /// A searched window (numbers in the columns).
+    Window {
+        /// The strongest excess, corrected for having looked everywhere.
+        strongest: Option<GlobalSignificance>,
     },
     /// Text of a file.
     Text {

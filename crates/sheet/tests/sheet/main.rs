@@ -4,4 +4,5 @@
 mod bad_input;
 mod properties;
 mod scenarios;
+mod statistics;
 mod tables;
