@@ -27,6 +27,11 @@ pub fn fit(scan: &Scan, settings: &FitSettings) -> Answer<FitResult> {
     Fitter::new(scan, settings)?.run()
 }
 
+/// A fit worse than this chi-squared probability is tried again from other starts.
+const SUSPECT_P: f64 = 0.05;
+/// How many.
+const RESCUES: u32 = 12;
+
 /// A fit in steps.
 pub struct Fitter {
     likelihood: Likelihood,
@@ -91,7 +96,19 @@ impl Fitter {
         let first = self.likelihood.full(start, false)?;
         self.likelihood.adapt_steps(&first);
         let mut best = minimise(&mut self.likelihood, start, self.settings.tolerance())?;
-        for k in 0..self.settings.extra_starts {
+        // A fit that ends on a limit, nowhere, or far from the data may have lost the peak on its way.
+        let suspect = |m: &Minimum, problem: &Problem| {
+            let dof = problem.data.len() as f64 - problem.parameter_count() as f64;
+            !m.stop.is_minimum()
+                || m.at_bound.iter().any(|at| *at)
+                || (dof > 0.0 && chi2_sf(m.expansion.value, dof) < SUSPECT_P)
+        };
+        let rescues = if suspect(&best, self.problem()) {
+            RESCUES
+        } else {
+            0
+        };
+        for k in 0..self.settings.extra_starts.max(rescues) {
             let other = self.random_start(start, u64::from(k));
             if let Ok(found) = minimise(&mut self.likelihood, &other, self.settings.tolerance())
                 && found.expansion.value < best.expansion.value - 1e-9

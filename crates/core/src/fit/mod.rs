@@ -25,6 +25,8 @@ mod terms;
 mod warnings;
 
 #[cfg(test)]
+mod robustness;
+#[cfg(test)]
 pub(crate) mod stand_in;
 
 pub use contour::{Contour, PAIR_RISE_ONE, PAIR_RISE_TWO};

@@ -149,6 +149,15 @@ pub fn after(
             ),
         ));
     }
+    if result.p_value.is_some_and(|p| p < 1e-4) {
+        out.push(Warning::new(
+            "poor-fit",
+            format!(
+                "2 NLL is {:.1} for {} degrees of freedom: the hypothesis does not describe these points, or the fit has lost the peak.",
+                result.statistic, result.degrees_of_freedom
+            ),
+        ));
+    }
     let names = |which: &[usize]| -> Vec<String> {
         which
             .iter()
