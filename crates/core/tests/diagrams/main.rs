@@ -5,6 +5,8 @@
 //! mediators at once, by diagram, totals inside a cut. No closed form enters either.
 #![allow(clippy::unwrap_used)] // a test may
 
+mod parameters;
+
 use num_complex::Complex64;
 use serde_json::Value;
 use widthwise_core::amplitude::Region;
@@ -121,7 +123,7 @@ fn of_point(point: &Value, cut: Option<f64>) -> (Diagrams, Beams) {
 #[test]
 fn points_of_the_independent_table() {
     let file: Value = serde_json::from_str(include_str!(
-        "../../../tests/reference/data/yukawa_points.json"
+        "../../../../tests/reference/data/yukawa_points.json"
     ))
     .unwrap();
     let points = file["points"].as_array().unwrap();
@@ -162,8 +164,10 @@ fn points_of_the_independent_table() {
 
 #[test]
 fn random_points_by_diagram() {
-    let file: Value =
-        serde_json::from_str(include_str!("../../../tests/reference/spinor_points.json")).unwrap();
+    let file: Value = serde_json::from_str(include_str!(
+        "../../../../tests/reference/spinor_points.json"
+    ))
+    .unwrap();
     let points = file["points"].as_array().unwrap();
     assert!(points.len() >= 200);
     for point in points {
@@ -227,8 +231,10 @@ fn random_points_by_diagram() {
 
 #[test]
 fn totals_inside_a_cut() {
-    let file: Value =
-        serde_json::from_str(include_str!("../../../tests/reference/spinor_points.json")).unwrap();
+    let file: Value = serde_json::from_str(include_str!(
+        "../../../../tests/reference/spinor_points.json"
+    ))
+    .unwrap();
     let cuts = file["cut_totals"].as_array().unwrap();
     assert!(cuts.len() >= 30);
     for point in cuts {
@@ -400,8 +406,10 @@ fn grid_is_the_pointwise_function() {
 
 #[test]
 fn partial_waves_are_those_of_explicit_spinors() {
-    let file: Value =
-        serde_json::from_str(include_str!("../../../tests/reference/spinor_points.json")).unwrap();
+    let file: Value = serde_json::from_str(include_str!(
+        "../../../../tests/reference/spinor_points.json"
+    ))
+    .unwrap();
     let waves = file["partial_waves"].as_array().unwrap();
     assert!(waves.len() >= 50);
     for case in waves {
@@ -560,54 +568,4 @@ fn what_cannot_be_is_refused() {
     let (cut, beams) = model("f fbar -> f fbar", phi(1.4, 0.1), 0.3, 0.3, Some(0.9));
     let cut = Hypothesis::Diagrams(cut).prepare(&beams).unwrap();
     assert_eq!(cut.radiation().unwrap().len(), 1);
-}
-
-#[test]
-fn every_parameter_of_every_hypothesis_moves() {
-    let dressed = Mediator {
-        propagator: MediatorPropagator::Dressed {
-            others: vec![Loop::Scalar {
-                name: "chi".into(),
-                h_gev: 0.3,
-                m1_gev: 0.2,
-                m2_gev: 0.2,
-                identical: true,
-            }],
-        },
-        ..mediator("scalar", 2.2, 0.0, 1.0, 0.6)
-    };
-    let (model, beams) = model(
-        "f fbar -> F Fbar",
-        vec![dressed, mediator("pseudoscalar", 1.9, 0.1, 0.5, 0.5)],
-        0.3,
-        0.4,
-        None,
-    );
-    let mut hypothesis = Hypothesis::Diagrams(model);
-    let ids: Vec<String> = hypothesis
-        .parameters()
-        .iter()
-        .map(|p| p.id.to_string())
-        .collect();
-    assert_eq!(
-        ids,
-        [
-            "d1.mass",
-            "d1.g",
-            "d1.g_other",
-            "d1.g1",
-            "d2.mass",
-            "d2.g",
-            "d2.g_other",
-            "d2.width"
-        ]
-    );
-    let sigma = |h: &Hypothesis| h.prepare(&beams).unwrap().sigma_nb(Energy::at(2.0));
-    let before = sigma(&hypothesis);
-    for id in ids {
-        let value = hypothesis.get(&id).unwrap();
-        hypothesis.set(&id, 1.05 * value).unwrap();
-        assert!((sigma(&hypothesis) / before - 1.0).abs() > 1e-6, "{id}");
-        hypothesis.set(&id, value).unwrap();
-    }
 }
