@@ -1,5 +1,6 @@
 /** Fit: what is left free, what is known beforehand, and what comes out with how much trust. */
 import type { JSX } from "preact";
+import { Beyond } from "../fit/beyond";
 import { FreeParameters } from "../fit/free";
 import { Outcome } from "../fit/outcome";
 
@@ -9,6 +10,7 @@ export function FitRoom(): JSX.Element {
     <>
       <Outcome />
       <FreeParameters />
+      <Beyond />
     </>
   );
 }

@@ -1,7 +1,7 @@
 /** Keeps the answers up to date: watches sheet, axis and cursor, and asks the worker for what has become old. */
 import { effect } from "@preact/signals";
 import { Refused, Trapped } from "../bridge/failures";
-import type { Reply } from "../../shared/protocol";
+import type { Progress, Reply } from "../../shared/protocol";
 import * as answers from "./answers";
 import { readCursor, readCurve, readFit, readNoPoints, readPoints } from "./read";
 import { Curves } from "./curves";
@@ -10,9 +10,19 @@ import { opened, revision, sheet } from "./sheet";
 import type { Request, Sheet } from "./types";
 import { cursor, placed, usual, view } from "./view";
 
+/** How a request is to be treated. */
+export interface AskOptions {
+  /** Long work: never takes the last worker. */
+  background?: boolean;
+  signal?: AbortSignal;
+  onProgress?: (progress: Progress) => void;
+}
+
 /** What asks: the pool of workers, or a stand-in of a test. */
 export interface Bridge {
-  run(request: Request, options?: { background?: boolean; signal?: AbortSignal }): Promise<Reply>;
+  run(request: Request, options?: AskOptions): Promise<Reply>;
+  /** How many workers there are. */
+  readonly size?: number;
 }
 
 /** A fit starts when the sheet has been still this long, ms. */
@@ -20,10 +30,15 @@ const STILL_MS = 120;
 
 let bridge: Bridge | null = null;
 
-/** Asks one question outside the running work (a look-up, a file). */
-export function ask(request: Request): Promise<Reply> {
+/** Asks one question outside the running work (a look-up, a file, a study of the fit). */
+export function ask(request: Request, options: AskOptions = {}): Promise<Reply> {
   if (bridge === null) return Promise.reject(new Error("the engine has not started yet"));
-  return bridge.run(request);
+  return bridge.run(request, options);
+}
+
+/** How many long requests can run side by side. */
+export function lanesForLongWork(): number {
+  return Math.max(1, (bridge?.size ?? 2) - 1);
 }
 
 /** Starts the work on a bridge; returns what stops it. */
