@@ -141,7 +141,11 @@ fn web(tally: &mut Tally) {
     let bin = www.join("node_modules/.bin");
     tally.check(
         "types of page and worker (tsc)",
-        shell::run(shell::program(bin.join("tsc")).arg("-b").current_dir(&www)),
+        shell::run(
+            shell::program(bin.join("tsc"))
+                .args(["-b", "--singleThreaded"])
+                .current_dir(&www),
+        ),
     );
     say("unit tests of page and worker");
     let result = shell::run_kept(
