@@ -8,17 +8,12 @@ use widthwise_core::beam::Beams;
 use widthwise_core::line_shape::Chain;
 use widthwise_core::scan::{ChainSettings, Stage};
 
-fn read(name: &str) -> Value {
-    let path = format!(
-        "{}/../../tests/reference/{name}",
-        env!("CARGO_MANIFEST_DIR")
-    );
-    serde_json::from_str(&std::fs::read_to_string(path).unwrap()).unwrap()
-}
+/// At build time: WebAssembly has no files.
+const CASES: &str = include_str!("../../../tests/reference/lineshape_nested.json");
 
 #[test]
 fn every_nested_integral_within_the_claimed_accuracy() {
-    let file = read("lineshape_nested.json");
+    let file: Value = serde_json::from_str(CASES).unwrap();
     let mut worst = 0.0f64;
     let mut problems = Vec::new();
     for case in file["cases"].as_array().unwrap() {
