@@ -6,6 +6,7 @@ mod cursor;
 mod curve;
 mod fit;
 mod parameter;
+mod plan;
 mod points;
 mod ready;
 mod reply;
@@ -84,6 +85,13 @@ pub enum Request {
     Fit {
         /// The sheet.
         sheet: Sheet,
+    },
+    /// The plan of the hours left.
+    Plan {
+        /// The sheet.
+        sheet: Sheet,
+        /// Also what each property of the machine and each demand costs: the plan is made again without it.
+        costs: bool,
     },
     /// Reads a table (CSV or pasted cells): how each column was understood, and the rows.
     ReadTable {
@@ -217,6 +225,7 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         Request::Cursor { sheet, w_gev } => cursor::answer(sheet, *w_gev),
         Request::Points { sheet } => points::answer(sheet),
         Request::Fit { sheet } => fit::answer(sheet),
+        Request::Plan { sheet, costs } => plan::answer(sheet, *costs),
     }
 }
 

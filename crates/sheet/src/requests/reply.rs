@@ -183,6 +183,15 @@ pub enum Body {
         /// The strongest excess, corrected for having looked everywhere.
         strongest: Option<GlobalSignificance>,
     },
+    /// A plan; its curves over the allowed energies are in the columns.
+    Plan {
+        /// The plan.
+        plan: Box<widthwise_core::plan::for_scan::ScanPlan>,
+        /// The number to dial for each row of the timetable, with unit.
+        dial: Vec<String>,
+        /// Staying at the present setting against moving on, if the sheet says where the machine stands.
+        stay: Option<StayOrMove>,
+    },
     /// Text of a file.
     Text {
         /// Text.
@@ -340,6 +349,18 @@ pub struct FittedParameter {
     pub field: String,
     /// Stands at the edge of what is allowed.
     pub at_limit: bool,
+}
+
+/// Staying against moving on.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct StayOrMove {
+    /// Hours stayed.
+    pub hours: f64,
+    /// Share of the information lost by staying so long, with the best use of the rest.
+    pub loss_by_staying: f64,
+    /// Share lost by moving on at once (its settling included).
+    pub loss_by_moving: f64,
 }
 
 /// A nuisance of the fit.
