@@ -14,8 +14,10 @@ import type { PointReading } from "./PointReading";
 import type { Refusal } from "./Refusal";
 import type { Row } from "./Row";
 import type { RowChange } from "./RowChange";
+import type { ScanPlan } from "./ScanPlan";
 import type { Sheet } from "./Sheet";
 import type { Solution } from "./Solution";
+import type { StayOrMove } from "./StayOrMove";
 import type { Summary } from "./Summary";
 import type { TrialRow } from "./TrialRow";
 import type { Warning } from "./Warning";
@@ -223,7 +225,19 @@ summary: Summary, } | { "kind": "window",
 /**
  * The strongest excess, corrected for having looked everywhere.
  */
-strongest: GlobalSignificance | null, } | { "kind": "text", 
+strongest: GlobalSignificance | null, } | { "kind": "plan", 
+/**
+ * The plan.
+ */
+plan: ScanPlan, 
+/**
+ * The number to dial for each row of the timetable, with unit.
+ */
+dial: Array<string>, 
+/**
+ * Staying at the present setting against moving on, if the sheet says where the machine stands.
+ */
+stay: StayOrMove | null, } | { "kind": "text", 
 /**
  * Text.
  */

@@ -61,7 +61,15 @@ sheet: Sheet, } | { "kind": "fit",
 /**
  * The sheet.
  */
-sheet: Sheet, } | { "kind": "read_table", 
+sheet: Sheet, } | { "kind": "plan", 
+/**
+ * The sheet.
+ */
+sheet: Sheet, 
+/**
+ * Also what each property of the machine and each demand costs: the plan is made again without it.
+ */
+costs: boolean, } | { "kind": "read_table", 
 /**
  * The sheet the rows will join.
  */
