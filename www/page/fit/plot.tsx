@@ -92,13 +92,13 @@ function span(lists: readonly ArrayLike<number>[]): [number, number] | null {
   return high > low ? [low, high] : null;
 }
 
-/** Round values between two ends. */
+/** Round values between two ends; adding 0 turns a negative zero into a plain one. */
 export function ticks(from: number, to: number, about: number): number[] {
   const rough = (to - from) / about;
   const power = 10 ** Math.floor(Math.log10(rough));
   const step = ([1, 2, 5, 10].find((factor) => factor * power >= rough) ?? 10) * power;
   const found: number[] = [];
-  for (let k = Math.ceil(from / step - 1e-9); k * step <= to + step * 1e-9; k += 1) found.push(k * step);
+  for (let k = Math.ceil(from / step - 1e-9); k * step <= to + step * 1e-9; k += 1) found.push(k * step + 0);
   return found;
 }
 
