@@ -55,7 +55,7 @@ describe.each(engines)("the fit room in %s", (engine) => {
       const above = rows.find((row) => /2 NLL/.test(row[0] ?? "")) ?? [];
       expect(Math.abs(near(above[at + 1]))).toBeLessThan(0.5);
 
-      await press(driver, `Use solution ${at + 1} as the hypothesis`);
+      await press(driver, `Use as the hypothesis: solution ${at + 1}`);
       await enter(driver, "Model");
       const taken = await (await field(driver, "model.resonances[0].strength.value")).getAttribute("value");
       expect(near(taken ?? "")).toBeCloseTo(values[at] ?? 0, 0);

@@ -83,7 +83,7 @@ function SideBySide({ made }: { made: Found }): JSX.Element {
               </th>
               {sets.map((set, i) => (
                 <td class="number" key={i}>
-                  <button type="button" class="link" aria-label={`Use solution ${i + 1} as the hypothesis`} onClick={() => use(set, i + 1)}>
+                  <button type="button" class="link" aria-label={`Use as the hypothesis: solution ${i + 1}`} onClick={() => use(set, i + 1)}>
                     Use as the hypothesis
                   </button>
                 </td>
