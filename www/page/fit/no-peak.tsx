@@ -5,6 +5,7 @@ import { signal, type Signal } from "@preact/signals";
 import type { GlobalSignificance } from "../../shared/generated/GlobalSignificance";
 import type { Reply } from "../../shared/protocol";
 import { axisScale, fixed, pValue } from "../format/number";
+import { Sym } from "../parts/sym";
 import { ask } from "../state/work";
 import { view } from "../state/view";
 import { Numbers, Plot } from "./plot";
@@ -17,7 +18,12 @@ const [TRIALS, SEED] = [400, 1];
 interface Made {
   strongest: GlobalSignificance | null;
   columns: Reply["columns"];
+  /** Strengths are Γ_in·B_f (the engine's unit is GeV), else B_in·B_f. */
+  width: boolean;
 }
+
+/** A partial width is read in eV. */
+const EV_PER_GEV = 1e9;
 
 const search = study<Made>();
 /** As typed; empty: what the axis shows. */
@@ -41,14 +47,17 @@ export function NoPeak(): JSX.Element {
     void search.run(async (now, options) => {
       const { body, columns } = await ask({ kind: "window", sheet: now, window }, options);
       if (body.kind !== "window") throw new Error("no window in the answer");
-      return { strongest: body.strongest, columns };
+      return { strongest: body.strongest, columns, width: now.model.resonances[0]?.strength.kind === "gamma_in_bf" };
     });
   };
   const made = search.made.value?.value;
   return (
     <fieldset>
       <legend>No peak?</legend>
-      <p class="note">The first resonance is moved over the window; its strength is limited at each mass.</p>
+      <p class="note">
+        The first resonance is moved over the window and its strength limited at each mass. The signal is added without
+        interference, to the backgrounds as they stand.
+      </p>
       <div class="fields">
         <Typed label={`From (${unit})`} state={from} example={shown.from} />
         <Typed label={`To (${unit})`} state={to} example={shown.to} />
@@ -80,7 +89,12 @@ function Typed(props: { label: string; state: Signal<string>; example: string })
 }
 
 function Limits({ made }: { made: Made }): JSX.Element | null {
-  const [mass, observed, ...band] = made.columns;
+  const strength = made.width ? "eV" : "";
+  const columns = made.columns.map((column, i) => {
+    if (!made.width || i === 0 || column.name === "local significance") return column;
+    return { ...column, unit: strength, values: column.values.map((value) => value * EV_PER_GEV) };
+  });
+  const [mass, observed, ...band] = columns;
   if (mass === undefined || observed === undefined) return null;
   const { unit, per } = axisScale(mass.values[0] ?? 0, mass.values.at(-1) ?? 0);
   const x = mass.values.map((value) => value / per);
@@ -90,16 +104,16 @@ function Limits({ made }: { made: Made }): JSX.Element | null {
       <Plot
         words="Observed and expected limit on the strength over the mass; the numbers are in the table below."
         x={`mass (${unit})`}
-        y="limit, 95 % CLs"
+        y={`limit, 95 % CLs${made.width ? " (eV)" : ""}`}
         from={0}
         lines={[...[0, 1, 3, 4].map((k) => line(band[k]?.values, "faint")), line(band[2]?.values, "second"), line(observed.values, "main")]}
       />
       <p class="note">
-        In multiples of the strength that the sheet holds. Full line: observed; broken: expected without a signal, with one and
+        Of the strength <Sym text={made.width ? "Γ_in·B_f" : "B_in·B_f"} />. Full line: observed; broken: expected without a signal, with one and
         two standard deviations around it (CLs, asymptotic). A gap: no point sees a signal there.
       </p>
       <p>{inWords(made.strongest)}</p>
-      <Numbers name="Limits" columns={[{ name: "mass", unit, values: x }, ...made.columns.slice(1)]} most={60} />
+      <Numbers name="Limits" columns={[{ name: "mass", unit, values: x }, ...columns.slice(1)]} most={60} />
     </>
   );
 }
