@@ -9,6 +9,7 @@ import { fileURLToPath } from "node:url";
 import { parseArgs } from "node:util";
 import { deflateRawSync, gzipSync } from "node:zlib";
 import { build } from "vite";
+import { encode85 } from "./base85.mjs";
 
 const www = resolve(dirname(fileURLToPath(import.meta.url)), "..");
 const { values: args } = parseArgs({
@@ -77,7 +78,7 @@ function assemble(beside) {
     ICON: `data:image/svg+xml;base64,${Buffer.from(icon).toString("base64")}`,
     BESIDE: beside,
     STYLE: page.style,
-    WASM: deflateRawSync(wasm, { level: 9 }).toString("base64"),
+    WASM: encode85(deflateRawSync(wasm, { level: 9 })),
     WORKER: worker.script,
     SCRIPT: page.script,
   };

@@ -1,5 +1,6 @@
 // Starts the engine from what is inline in the page: no fetch, so that it works from file://.
 import { inflateSync } from "fflate";
+import { decode85 } from "./base85";
 import { BootFailed } from "./failures";
 import { Pool } from "./pool";
 
@@ -17,7 +18,7 @@ function inline(id: string): string {
 }
 
 async function engineBytes(): Promise<Uint8Array<ArrayBuffer>> {
-  const packed = Uint8Array.from(atob(inline("engine-wasm").trim()), (char) => char.charCodeAt(0));
+  const packed = decode85(inline("engine-wasm").trim());
   if (typeof DecompressionStream === "undefined") return new Uint8Array(inflateSync(packed));
   const stream = new Blob([packed]).stream().pipeThrough(new DecompressionStream("deflate-raw"));
   return new Uint8Array(await new Response(stream).arrayBuffer());
