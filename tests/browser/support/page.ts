@@ -1,5 +1,5 @@
 // The built file: where it is, served or from the file system, and what went out of it.
-import { readFileSync } from "node:fs";
+import { readFileSync, readdirSync } from "node:fs";
 import { type Server, createServer } from "node:http";
 import type { AddressInfo } from "node:net";
 import { resolve } from "node:path";
@@ -11,28 +11,42 @@ export const file = resolve(process.env["WIDTHWISE_PAGE"] ?? "../../target/dist/
 /** Address of the file itself, as from a USB stick. */
 export const fromFile = pathToFileURL(file).href;
 
-/** Serves the file on localhost and remembers every request. */
+const kinds: Record<string, string> = {
+  html: "text/html; charset=utf-8",
+  js: "text/javascript",
+  svg: "image/svg+xml",
+  webmanifest: "application/manifest+json",
+};
+
+/** Serves the file, or a folder with an index.html, on localhost and remembers every request. */
 export class Served {
   readonly requests: string[] = [];
+  private address = "";
   private constructor(private readonly server: Server) {}
 
-  static async start(): Promise<Served> {
+  static async start({ folder, port = 0 }: { folder?: string; port?: number } = {}): Promise<Served> {
     const server = createServer((request, response) => {
-      served.requests.push(request.url ?? "");
-      const found = request.url === "/";
-      response.writeHead(found ? 200 : 404, { "content-type": "text/html; charset=utf-8" });
-      response.end(found ? readFileSync(file) : "");
+      const path = (request.url ?? "").split("?")[0] ?? "";
+      served.requests.push(path);
+      const name = path === "/" ? "index.html" : path.slice(1);
+      const found = folder === undefined ? (path === "/" ? file : undefined) : readdirSync(folder).includes(name) ? resolve(folder, name) : undefined;
+      const kind = kinds[name.split(".").at(-1) ?? ""] ?? "text/plain";
+      response.writeHead(found === undefined ? 404 : 200, { "content-type": kind, "cache-control": "no-cache" });
+      response.end(found === undefined ? "" : readFileSync(found));
     });
     const served = new Served(server);
-    await new Promise<void>((done) => server.listen(0, "127.0.0.1", done));
+    await new Promise<void>((done) => server.listen(port, "127.0.0.1", done));
+    served.address = `http://127.0.0.1:${(server.address() as AddressInfo).port}/`;
     return served;
   }
 
+  /** Also after it has stopped: the address it had. */
   get url(): string {
-    return `http://127.0.0.1:${(this.server.address() as AddressInfo).port}/`;
+    return this.address;
   }
 
   async stop(): Promise<void> {
+    if (!this.server.listening) return;
     this.server.closeAllConnections();
     await new Promise((done) => this.server.close(done));
   }
