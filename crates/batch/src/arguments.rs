@@ -13,11 +13,12 @@ Commands
   points   per row: expected, seen, pull, p-value, rate, time to 10 %
   fit      parameters, errors, correlation, pulls
   trials   pseudo-experiments of the sheet, a range of them
+  plan     timetable of the hours left, forecasts, guaranteed efficiency
   rows     the data rows (with --csv: as a table)
   log      lines for an electronic log
 
 Options
-  --csv            CSV instead of JSON (curve, points, fit, rows, trials)
+  --csv            CSV instead of JSON (curve, points, fit, rows, trials, plan)
   --from 2840MeV   least W of a curve (default: the data's range)
   --to 2.89GeV     largest W of a curve
   --energies 500   number of energies of a curve
@@ -25,6 +26,7 @@ Options
   --count 100      how many trials
   --seed 1         seed of the trials
   --profiles       trials: also the coverage of profile intervals
+  --costs          plan: also what each demand and property of the machine costs
 
 SHEET.json may be - for standard input. Exit codes: 0 done, 1 sheet refused,
 2 command line not understood, 3 file not readable, 4 fit not converged.
@@ -71,9 +73,13 @@ pub struct Options {
     pub seed: u64,
     /// Coverage of profile intervals.
     pub profiles: bool,
+    /// What each demand of a plan costs.
+    pub costs: bool,
 }
 
-const COMMANDS: [&str; 7] = ["check", "curve", "points", "fit", "trials", "rows", "log"];
+const COMMANDS: [&str; 8] = [
+    "check", "curve", "points", "fit", "trials", "plan", "rows", "log",
+];
 
 fn usage(message: impl Into<String>) -> Failure {
     Failure {
@@ -100,6 +106,7 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
         count: 100,
         seed: 1,
         profiles: false,
+        costs: false,
     };
     let wrong = |e: lexopt::Error| usage(e.to_string());
     while let Some(argument) = parser.next().map_err(wrong)? {
@@ -107,6 +114,7 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
             Short('h') | Long("help") => return Ok(Job::Help),
             Long("csv") => options.csv = true,
             Long("profiles") => options.profiles = true,
+            Long("costs") => options.costs = true,
             Long("from") => options.from = Some(text(&mut parser)?),
             Long("to") => options.to = Some(text(&mut parser)?),
             Long("energies") => options.energies = number(&mut parser)?,

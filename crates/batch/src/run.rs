@@ -96,6 +96,10 @@ fn request(command: &str, sheet: Sheet, options: &Options) -> Result<Request, Fa
     Ok(match command {
         "points" => Request::Points { sheet },
         "fit" => Request::Fit { sheet },
+        "plan" => Request::Plan {
+            sheet,
+            costs: options.costs,
+        },
         _ => {
             let (low, high) = match (&options.from, &options.to) {
                 (Some(_), Some(_)) => (0.0, 0.0),

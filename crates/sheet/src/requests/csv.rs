@@ -1,8 +1,9 @@
 //! Answers as CSV, for the batch program.
 
 use super::{Body, Column, Reply};
-use crate::table::write;
+use crate::table::{guarded, write};
 use widthwise_core::error::{Answer, Refusal};
+use widthwise_core::plan::for_scan::PlannedRow;
 
 /// The columns of a reply as CSV, or its table where it has one.
 ///
@@ -41,7 +42,36 @@ pub fn csv_of(reply: &Reply) -> Answer<String> {
             ]);
             Ok(text)
         }
+        Body::Plan { plan, dial, .. } => Ok(timetable(&plan.rows, dial)),
         _ if !reply.columns.is_empty() => Ok(write::columns(&reply.columns)),
         _ => Err(Refusal::new("", "", "", "this answer is no table")),
     }
+}
+
+/// The timetable of a plan, with the number to dial as text beside each row.
+fn timetable(rows: &[PlannedRow], dial: &[String]) -> String {
+    let header = [
+        "fill",
+        "start [h]",
+        "W [GeV]",
+        "to dial",
+        "live time [h]",
+        "settling before [h]",
+        "expected counts",
+        "why",
+    ];
+    let mut records = vec![header.map(String::from).to_vec()];
+    for (row, dial) in rows.iter().zip(dial) {
+        records.push(vec![
+            row.fill.to_string(),
+            write::number(row.start_h),
+            write::number(row.w_gev),
+            guarded(dial),
+            write::number(row.live_h),
+            write::number(row.settle_h),
+            write::number(row.expected_counts),
+            guarded(&row.why),
+        ]);
+    }
+    write::csv(&records)
 }

@@ -13,5 +13,6 @@ mod rows;
 pub mod write;
 
 pub use columns::Column;
+pub(crate) use guard::guarded;
 pub use join::{RowChange, join};
 pub use rows::{Table, read};
