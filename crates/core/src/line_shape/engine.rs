@@ -66,7 +66,7 @@ pub(super) struct Engine {
 
 /// Values at and below this part of what the spread could show at best are "nothing": their
 /// accuracy is relative to it.
-const NOTHING: f64 = 1e-9;
+pub(super) const NOTHING: f64 = 1e-9;
 /// Requests finer than cells of two sigma allow. (The table of the blurred radiator has no
 /// finer version: the answer then says what was reached.)
 const FINEST: f64 = 5e-8;
@@ -135,21 +135,31 @@ impl Engine {
     fn radiated(
         &self,
         radiator: &Radiator,
-        source: &dyn Source,
+        source: &BornSource<'_>,
         energies: &[f64],
         tolerance: f64,
     ) -> Observed {
-        let mut out = empty(source.channels());
+        let rule = &self.rule;
         let Some(&highest) = energies.last() else {
-            return out;
+            return empty(source.channels());
         };
-        let radiated = Radiated::new(&self.rule, radiator, source, highest, tolerance);
-        let mut at = vec![0.0; source.channels()];
-        for &w in energies {
-            let error = radiated.at(w, &mut at);
-            push(&mut out, &at, error, 0.0);
+        let radiated = Radiated::new(rule, radiator, source, highest, tolerance);
+        let mut targets = Targets::new(rule, energies, 0.0, source);
+        let mut known: BTreeMap<u64, (Vec<f64>, f64)> = BTreeMap::new();
+        loop {
+            let mut out = empty(source.channels());
+            for &w in targets.energies() {
+                let (values, error) = known.entry(w.to_bits()).or_insert_with(|| {
+                    let mut at = vec![0.0; source.channels()];
+                    let error = radiated.at(w, &mut at);
+                    (at, error)
+                });
+                push(&mut out, values, *error, 0.0);
+            }
+            if let Some(done) = targets.finish(rule, energies, out, tolerance) {
+                return done;
+            }
         }
-        out
     }
 
     fn shaped<'s>(

@@ -42,7 +42,11 @@ pub struct Chain {
 pub struct CrossSections {
     /// nb, in the order of the request.
     pub values_nb: Vec<f64>,
-    /// Relative accuracy reached, a bound on the error of every value.
+    /// Relative accuracy reached: every value is within this part of itself or, for a value below
+    /// 1e-9 of what the spread could show at best at that energy (the most that the Born curve in
+    /// reach would give with all its area at the density's top), within this part of that floor.
+    /// Without a Gaussian spread there is no floor. It covers integration and interpolation, not
+    /// the radiator's own truncation.
     pub accuracy: f64,
     /// What the user should know.
     pub warnings: Vec<Warning>,
@@ -61,7 +65,8 @@ pub struct Curve {
     pub observed_nb: Vec<f64>,
     /// Each named contribution after radiation and spread, nb; they sum to `observed_nb`.
     pub contributions: Vec<(String, Vec<f64>)>,
-    /// Relative accuracy reached, a bound on the error of every value.
+    /// Relative accuracy reached by the radiated column and by the observed total, defined as
+    /// in [`CrossSections::accuracy`]; contributions that cancel have no bound of their own.
     pub accuracy: f64,
     /// What the user should know.
     pub warnings: Vec<Warning>,
@@ -154,7 +159,8 @@ impl Chain {
     /// `sigma_w_gev`, one entry per energy, overrides the spread where it is `Some`.
     ///
     /// # Errors
-    /// An energy or a spread that is not a number above 0.
+    /// An energy or a spread that is not a number above 0; what the model refuses (an energy
+    /// beyond its tables, radiation without the cut that it needs).
     pub fn cross_sections(
         &self,
         born: &dyn Born,
@@ -163,10 +169,11 @@ impl Chain {
         stage: Stage,
     ) -> Answer<CrossSections> {
         check_energies(w_gev)?;
+        let radiated = stage == Stage::Observed && self.radiator.is_some();
         let mut out = CrossSections {
             values_nb: vec![0.0; w_gev.len()],
             accuracy: 0.0,
-            warnings: Vec::new(),
+            warnings: consult(born, w_gev, radiated)?,
         };
         let radiator = match stage {
             Stage::Observed => self.radiator.as_ref(),
@@ -214,9 +221,10 @@ impl Chain {
     /// Born, radiated and observed cross section and each contribution at `w_gev`.
     ///
     /// # Errors
-    /// An energy that is not a number above 0.
+    /// An energy that is not a number above 0; what the model refuses, as above.
     pub fn curve(&self, born: &dyn Born, w_gev: &[f64]) -> Answer<Curve> {
         check_energies(w_gev)?;
+        let mut warnings = consult(born, w_gev, self.radiator.is_some())?;
         let floor = self.radiator.map_or(0.0, |r| r.w_min_gev);
         let (total, split) = (
             BornSource::new(born, false, floor),
@@ -239,6 +247,7 @@ impl Chain {
             (radiated.total(), radiated.accuracy)
         };
         let accuracy = observed.accuracy.max(radiated_accuracy);
+        warnings.extend(self.shortfall(accuracy));
         Ok(Curve {
             w_gev: w_gev.to_vec(),
             born_nb,
@@ -250,7 +259,7 @@ impl Chain {
                 .zip(observed.channels)
                 .collect(),
             accuracy,
-            warnings: self.shortfall(accuracy),
+            warnings,
         })
     }
 
@@ -278,6 +287,25 @@ impl Chain {
             ),
         )]
     }
+}
+
+/// Whether the model may be asked at these energies and with this radiation, and what the
+/// user should know of it.
+fn consult(born: &dyn Born, w_gev: &[f64], radiated: bool) -> Answer<Vec<Warning>> {
+    let limit = born.upper_limit_gev();
+    if let Some(beyond) = w_gev.iter().find(|w| **w > limit) {
+        return Err(Refusal::new(
+            "points.w",
+            beyond,
+            format!("at most {limit} GeV"),
+            "The model's tabulated width ends below this energy; extend the table.",
+        ));
+    }
+    let mut warnings = born.warnings();
+    if radiated {
+        warnings.extend(born.radiation()?);
+    }
+    Ok(warnings)
 }
 
 fn trapezium_area(rows: &[(f64, f64)]) -> f64 {

@@ -15,6 +15,8 @@ use widthwise_core::amplitude::diagrams::PreparedDiagrams;
 use widthwise_core::amplitude::diagrams::total::DiagramTotal;
 use widthwise_core::amplitude::hypothesis::*;
 use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
+use widthwise_core::line_shape::Chain;
+use widthwise_core::scan::{ChainSettings, Spread, Stage};
 
 fn reaction(name: &str) -> Reaction {
     match name {
@@ -568,4 +570,31 @@ fn what_cannot_be_is_refused() {
     let (cut, beams) = model("f fbar -> f fbar", phi(1.4, 0.1), 0.3, 0.3, Some(0.9));
     let cut = Hypothesis::Diagrams(cut).prepare(&beams).unwrap();
     assert_eq!(cut.radiation().unwrap().len(), 1);
+    // The chain asks before it computes, and hands the warning on.
+    let chain = |w_min_gev| {
+        let settings = ChainSettings {
+            w_min_gev,
+            spread: Spread::None,
+            accuracy: 1e-6,
+        };
+        Chain::new(&settings, &beams).unwrap()
+    };
+    let total = |chain: &Chain, model: &dyn Born, stage| {
+        chain
+            .cross_sections(model, &[1.4], None, stage)
+            .map(|seen| seen.warnings)
+    };
+    let radiating = chain(Some(0.9));
+    let refused = total(&radiating, open.as_ref(), Stage::Observed).unwrap_err();
+    assert_eq!(refused.field, "model.cos_cut");
+    let refused = radiating.curve(open.as_ref(), &[1.4]).unwrap_err();
+    assert_eq!(refused.field, "model.cos_cut");
+    for stage in [Stage::RadiationRemoved, Stage::Born] {
+        assert!(total(&radiating, open.as_ref(), stage).is_ok());
+    }
+    assert!(total(&chain(None), open.as_ref(), Stage::Observed).is_ok());
+    let warned = total(&radiating, cut.as_ref(), Stage::Observed).unwrap();
+    assert!(warned.iter().any(|w| w.code == "s-channel-radiator"));
+    let curve = radiating.curve(cut.as_ref(), &[1.4]).unwrap();
+    assert_eq!(curve.warnings, warned);
 }
