@@ -58,14 +58,17 @@ function hash(text) {
   return `'sha256-${createHash("sha256").update(text).digest("base64")}'`;
 }
 
-const [worker, page] = [await bundle("worker/main.ts"), await bundle("page/main.tsx")];
+const [worker, page, unpack] = [await bundle("worker/main.ts"), await bundle("page/main.tsx"), await bundle("page/unpack.ts")];
 const wasm = readFileSync(resolve(args.engine, "engine_bg.wasm"));
 const icon = readFileSync(resolve(www, "page/icon.svg"), "utf8").trim();
+/** Deflated, as text that HTML leaves alone; unpacked by page/unpack.ts and page/bridge/boot.ts. */
+const packed = (content) => encode85(deflateRawSync(content, { level: 9 }));
+
 /** The page with what differs between the file and the served page: the file knows of nothing beside it. */
 function assemble(beside) {
   const policy = [
     "default-src 'none'",
-    `script-src ${hash(page.script)} 'wasm-unsafe-eval'`,
+    `script-src ${hash(unpack.script)} ${hash(page.script)} 'wasm-unsafe-eval'`,
     `style-src ${hash(page.style)}`,
     beside === "" ? "worker-src blob:" : "worker-src blob: 'self'; manifest-src 'self'",
     "img-src data: blob:",
@@ -78,9 +81,10 @@ function assemble(beside) {
     ICON: `data:image/svg+xml;base64,${Buffer.from(icon).toString("base64")}`,
     BESIDE: beside,
     STYLE: page.style,
-    WASM: encode85(deflateRawSync(wasm, { level: 9 })),
+    WASM: packed(wasm),
     WORKER: worker.script,
-    SCRIPT: page.script,
+    PROGRAM: packed(page.script),
+    SCRIPT: unpack.script,
   };
   return readFileSync(resolve(www, "index.html"), "utf8").replace(/%([A-Z]+)%/g, (all, key) => parts[key] ?? all);
 }
