@@ -1,12 +1,12 @@
-/** The curve in words and as a table, for whoever does not see the plot. */
+/** The lanes in words and as tables, for whoever does not see them; each table as CSV. */
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
+import { Numbers } from "../fit/plot";
 import { axisScale, digits, fixed } from "../format/number";
 import { column, curve, points } from "../state/answers";
+import { csvOf, download, fileName } from "../state/files";
 import { view } from "../state/view";
-
-/** Rows of the table. */
-const ROWS = 25;
+import type { Lane } from "./lane";
 
 /** One sentence on what the plot shows. */
 export function inWords(): string {
@@ -25,54 +25,27 @@ export function inWords(): string {
   );
 }
 
-/** The sentence, and behind it the numbers. */
-export function AsTable(): JSX.Element {
+/** The sentence, and behind it the numbers of every lane on the screen. */
+export function AsTable({ shown }: { shown: readonly Lane[] }): JSX.Element {
   const open = useSignal(false);
-  const shape = curve.value;
-  const { from, to } = view.value;
-  const { unit, per } = axisScale(from, to);
-  const columns = shape?.columns.slice(0, 6) ?? [];
-  const rows = shape === null ? 0 : Math.min(ROWS, shape.w.length);
   return (
     <details open={open.value} onToggle={(event) => (open.value = event.currentTarget.open)}>
       <summary>
-        Curve as a table<span class="unseen">. {inWords()}</span>
+        Lanes as tables<span class="unseen">. {inWords()}</span>
       </summary>
-      {open.value && (
-        <div class="table-box table-box-short" tabIndex={0} role="region" aria-label="Curve as a table">
-          <table class="plain">
-            <thead>
-              <tr>
-                <th scope="col" class="number">
-                  W ({unit})
-                </th>
-                {columns.map((entry) => (
-                  <th scope="col" class="number" key={entry.name}>
-                    {entry.name} ({entry.unit})
-                  </th>
-                ))}
-              </tr>
-            </thead>
-            <tbody>
-              {Array.from({ length: rows }, (_, row) => {
-                const i = Math.round((row * ((shape?.w.length ?? 1) - 1)) / Math.max(1, rows - 1));
-                return (
-                  <tr key={i}>
-                    <th scope="row" class="number">
-                      {fixed((shape?.w[i] ?? 0) / per, 3)}
-                    </th>
-                    {columns.map((entry) => (
-                      <td class="number" key={entry.name}>
-                        {digits(entry.values[i] ?? Number.NaN, 4)}
-                      </td>
-                    ))}
-                  </tr>
-                );
-              })}
-            </tbody>
-          </table>
-        </div>
-      )}
+      {open.value && shown.map((lane) => <LaneTable key={lane.id} lane={lane} />)}
     </details>
+  );
+}
+
+function LaneTable({ lane }: { lane: Lane }): JSX.Element {
+  const columns = lane.numbers();
+  return (
+    <div class="lane-table">
+      <Numbers name={lane.title} columns={columns} significant={4} />
+      <button type="button" class="link" onClick={() => download(fileName(lane.id, "csv"), new Blob([csvOf(columns)], { type: "text/csv" }))}>
+        CSV<span class="unseen"> of {lane.title}</span>
+      </button>
+    </div>
   );
 }

@@ -1,21 +1,55 @@
 /** Beam time spent at each energy, and what the plan would still spend. */
+import { hours } from "../format/number";
 import { points } from "../state/answers";
 import { planned } from "../state/plan";
 import type { Drawing } from "./chart";
+import type { Lane, LaneColumn } from "./lane";
 import { drawBars } from "./marks";
 
 const NOTHING = new Float64Array(0);
 
+/** Hours spent, by energy. */
+function spent(): Map<number, number> {
+  const found = new Map<number, number>();
+  for (const point of points.value) {
+    if (point.time > 0) found.set(point.w, (found.get(point.w) ?? 0) + point.time);
+  }
+  return found;
+}
+
 /** The lane's drawing. */
 export function drawBeamTime(): Drawing {
-  const spent = new Map<number, number>();
-  for (const point of points.value) {
-    if (point.time > 0) spent.set(point.w, (spent.get(point.w) ?? 0) + point.time);
-  }
-  const bars = [...spent].map(([x, y]) => ({ x, y, base: 0, solid: true }));
+  const before = spent();
+  const bars = [...before].map(([x, y]) => ({ x, y, base: 0, solid: true }));
   for (const stop of planned.value) {
-    bars.push({ x: stop.w, y: stop.hours, base: spent.get(stop.w) ?? 0, solid: false });
+    bars.push({ x: stop.w, y: stop.hours, base: before.get(stop.w) ?? 0, solid: false });
   }
   const high = Math.max(1, ...bars.map((bar) => bar.base + bar.y)) * 1.12;
   return { w: NOTHING, traces: [], low: 0, high, over: (plot) => drawBars(plot, bars) };
 }
+
+function numbers(): LaneColumn[] {
+  const before = spent();
+  const ahead = new Map<number, number>();
+  for (const stop of planned.value) ahead.set(stop.w, (ahead.get(stop.w) ?? 0) + stop.hours);
+  const w = [...new Set([...before.keys(), ...ahead.keys()])].sort((a, b) => a - b);
+  return [
+    { name: "W", unit: "GeV", values: w },
+    { name: "spent", unit: "h", values: w.map((at) => before.get(at) ?? 0) },
+    { name: "planned", unit: "h", values: w.map((at) => ahead.get(at) ?? 0) },
+  ];
+}
+
+export const beamTimeLane: Lane = {
+  id: "beam-time",
+  title: "Beam time",
+  unit: "h",
+  size: "low",
+  draw: drawBeamTime,
+  numbers,
+  remark: () => (planned.value.length > 0 ? "planned hatched" : ""),
+  readOut: (w) => {
+    const here = [...spent()].find(([at]) => Math.abs(at - w) < 2e-6 * w);
+    return here === undefined ? [] : [{ name: "time spent here", text: hours(here[1]) }];
+  },
+};

@@ -1,58 +1,26 @@
 /** Stacked lanes over the one energy axis, with one cursor through all of them. */
 import type { JSX } from "preact";
 import { useLayoutEffect, useRef } from "preact/hooks";
-import { signal, useSignal } from "@preact/signals";
+import { useSignal } from "@preact/signals";
 import { axisScale } from "../format/number";
 import { Icon } from "../parts/icon";
-import { plan } from "../state/plan";
-import { lanes, traces } from "../state/prefs";
+import { laneHeights, lanes } from "../state/prefs";
 import { atCursor, points } from "../state/answers";
 import { cursor, isZoomed, showAll, slide, view, zoomAt } from "../state/view";
 import { GUTTER, MARGIN, shareOf } from "./axis";
 import { AsTable } from "./as-table";
-import { drawBeamTime } from "./beam-time";
-import { Chart, type Drawing } from "./chart";
-import { drawInformation } from "./information";
-import { drawLineShape } from "./line-shape";
+import { Chart } from "./chart";
+import { Grip, heightOf, LABELS } from "./heights";
+import type { Lane } from "./lane";
 import { Legend } from "./legend";
+import { LANES, shown, wanted } from "./list";
 import { listen, marked } from "./pointer";
-import { drawPulls } from "./pulls";
 import { ReadOut, readOutText } from "./read-out";
-
-interface Lane {
-  id: string;
-  title: string;
-  unit: string;
-  /** Height, CSS pixels, on a window of this height. */
-  height: (window: number) => number;
-  draw: () => Drawing;
-  /** Whether there is anything to show; always, if absent. */
-  there?: () => boolean;
-}
-
-/** The lanes there are, top to bottom. A new lane is one entry here. */
-const LANES: readonly Lane[] = [
-  { id: "line-shape", title: "Cross section", unit: "nb", height: (window) => Math.round(Math.max(240, Math.min(620, innerWidth < 700 ? 260 : window * 0.38))), draw: drawLineShape },
-  { id: "pulls", title: "Residuals", unit: "errors", height: (window) => (window > 1000 ? 140 : 112), draw: drawPulls },
-  {
-    id: "information",
-    title: "Information per hour",
-    unit: "%",
-    height: (window) => (window > 1000 ? 120 : 96),
-    draw: drawInformation,
-    there: () => plan.value?.gain != null,
-  },
-  { id: "beam-time", title: "Beam time", unit: "h", height: (window) => (window > 1000 ? 120 : 96), draw: drawBeamTime },
-];
-
-const tall = signal(innerHeight);
-addEventListener("resize", () => (tall.value = innerHeight));
 
 /** The lanes with their controls. */
 export function Lanes(): JSX.Element {
   const box = useRef<HTMLDivElement>(null);
   useLayoutEffect(() => (box.current === null ? undefined : listen(box.current)), []);
-  const shown = LANES.filter((lane) => lanes.value[lane.id] !== false && (lane.there?.() ?? true));
   const { from, to } = view.value;
   return (
     <section class="lanes" aria-labelledby="lanes-title">
@@ -75,8 +43,8 @@ export function Lanes(): JSX.Element {
       </div>
       <ReadOut />
       <div class="lanes-box" ref={box}>
-        {shown.map((lane, i) => (
-          <LaneView key={lane.id} lane={lane} last={i === shown.length - 1} />
+        {shown.value.map((lane, i, all) => (
+          <LaneView key={lane.id} lane={lane} last={i === all.length - 1} />
         ))}
         <Cursor />
       </div>
@@ -89,7 +57,7 @@ export function Lanes(): JSX.Element {
       </div>
       <div class="lanes-foot">
         <LaneChoice />
-        <AsTable />
+        <AsTable shown={shown.value} />
       </div>
     </section>
   );
@@ -109,13 +77,15 @@ function Outside({ side }: { side: "left" | "right" }): JSX.Element {
 }
 
 function LaneView({ lane, last }: { lane: Lane; last: boolean }): JSX.Element {
+  const remark = lane.remark?.() ?? "";
   return (
     <figure class="lane" data-lane={lane.id}>
       <figcaption>
         {lane.title} <span class="quiet">({lane.unit})</span>
-        {lane.id === "line-shape" && traces.value["observed"] === false && <span class="quiet"> · observed hidden</span>}
+        {remark !== "" && <span class="quiet"> · {remark}</span>}
       </figcaption>
-      <Chart height={lane.height(tall.value) + (last ? 26 : 0)} labelled={last} draw={lane.draw} />
+      <Chart height={heightOf(lane) + (last ? LABELS : 0)} labelled={last} draw={lane.draw} />
+      <Grip lane={lane} />
     </figure>
   );
 }
@@ -196,14 +166,29 @@ function LaneChoice(): JSX.Element {
           <label class="switch" key={lane.id}>
             <input
               type="checkbox"
-              checked={lanes.value[lane.id] !== false}
+              checked={wanted(lane)}
               onChange={(event) => {
                 lanes.value = { ...lanes.value, [lane.id]: event.currentTarget.checked };
               }}
             />
-            <span>{lane.title}</span>
+            <span>
+              {lane.title}
+              {lane.there?.() === false && lane.missing && <span class="note"> {lane.missing}</span>}
+            </span>
           </label>
         ))}
+      {open.value && Object.keys({ ...lanes.value, ...laneHeights.value }).length > 0 && (
+        <button
+          type="button"
+          class="link"
+          onClick={() => {
+            lanes.value = {};
+            laneHeights.value = {};
+          }}
+        >
+          As at first
+        </button>
+      )}
     </div>
   );
 }

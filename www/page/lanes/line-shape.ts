@@ -4,6 +4,7 @@ import { traces } from "../state/prefs";
 import { view } from "../state/view";
 import type { Drawing, Trace } from "./chart";
 import { comparedCurve } from "../state/compare";
+import type { Lane } from "./lane";
 import { drawMarks, drawPath, type Mark } from "./marks";
 
 /** A trace that can be shown: its key, words, colour and dash. */
@@ -115,3 +116,16 @@ function gaps(values: Float64Array): (number | null)[] {
   }
   return out;
 }
+
+export const lineShapeLane: Lane = {
+  id: "line-shape",
+  title: "Cross section",
+  unit: "nb",
+  size: "tall",
+  draw: drawLineShape,
+  numbers: () => {
+    const shape = curve.value;
+    return shape === null ? [] : [{ name: "W", unit: "GeV", values: shape.w }, ...shape.columns];
+  },
+  remark: () => (traces.value["observed"] === false ? "observed hidden" : ""),
+};

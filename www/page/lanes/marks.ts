@@ -1,6 +1,6 @@
 /** Marks of measured points. Shape tells what colour also tells: full = used, hollow = left out, triangle = running. */
-import type uPlot from "uplot";
 import { ink } from "./ink";
+import type { Pen, Surface } from "./surface";
 
 /** One mark in data units. */
 export interface Mark {
@@ -17,7 +17,7 @@ export interface Mark {
 const MANY = 500;
 
 /** Draws marks with error bars on a plot's canvas: one path for all bars of a kind, one for all shapes. */
-export function drawMarks(plot: uPlot, marks: readonly Mark[]): void {
+export function drawMarks(plot: Surface, marks: readonly Mark[]): void {
   const { ctx } = plot;
   const ratio = devicePixelRatio;
   const size = (marks.length > MANY ? 1.6 : 3.6) * ratio;
@@ -34,28 +34,30 @@ export function drawMarks(plot: uPlot, marks: readonly Mark[]): void {
     const colour = ink(kind === "out" ? "--c-off" : "--c-data", plot.root);
     ctx.strokeStyle = colour;
     ctx.fillStyle = kind === "out" ? ink("--paper", plot.root) : colour;
-    const shapes = new Path2D();
+    const places: [number, number][] = [];
     ctx.beginPath();
     for (const mark of shown) {
       const x = plot.valToPos(mark.x, "x", true);
       if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
       const y = plot.valToPos(mark.y, "y", true);
+      places.push([x, y]);
       ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
       ctx.lineTo(x, plot.valToPos(mark.high, "y", true));
       if (mark.wide !== undefined && mark.wide > 0) {
         ctx.moveTo(plot.valToPos(mark.x - mark.wide, "x", true), y);
         ctx.lineTo(plot.valToPos(mark.x + mark.wide, "x", true), y);
       }
-      shape(shapes, kind, x, y, size);
     }
     ctx.stroke();
-    ctx.fill(shapes);
-    ctx.stroke(shapes);
+    ctx.beginPath();
+    for (const [x, y] of places) shape(ctx, kind, x, y, size);
+    ctx.fill();
+    ctx.stroke();
   }
   ctx.restore();
 }
 
-function shape(path: Path2D, kind: Mark["kind"], x: number, y: number, size: number): void {
+function shape(path: Pen, kind: Mark["kind"], x: number, y: number, size: number): void {
   if (kind === "running") {
     path.moveTo(x, y - size * 1.5);
     path.lineTo(x + size * 1.4, y + size);
@@ -68,7 +70,7 @@ function shape(path: Path2D, kind: Mark["kind"], x: number, y: number, size: num
 }
 
 /** Draws bars from zero: `solid` for what has been done, hatched outline for what is planned. */
-export function drawBars(plot: uPlot, bars: readonly { x: number; y: number; solid: boolean; base: number }[]): void {
+export function drawBars(plot: Surface, bars: readonly { x: number; y: number; solid: boolean; base: number }[]): void {
   const { ctx } = plot;
   const ratio = devicePixelRatio;
   const half = 4 * ratio;
@@ -99,7 +101,7 @@ export function drawBars(plot: uPlot, bars: readonly { x: number; y: number; sol
 }
 
 /** Shades a band between two values over the whole width. */
-export function drawBand(plot: uPlot, low: number, high: number, colour: string): void {
+export function drawBand(plot: Surface, low: number, high: number, colour: string): void {
   const top = plot.valToPos(high, "y", true);
   const bottom = plot.valToPos(low, "y", true);
   plot.ctx.save();
@@ -109,7 +111,7 @@ export function drawBand(plot: uPlot, low: number, high: number, colour: string)
 }
 
 /** Draws a thin grey line that is not one of the lane's own traces (another sheet's curve). */
-export function drawPath(plot: uPlot, xs: ArrayLike<number>, ys: ArrayLike<number>): void {
+export function drawPath(plot: Surface, xs: ArrayLike<number>, ys: ArrayLike<number>): void {
   const { ctx, bbox } = plot;
   ctx.save();
   ctx.beginPath();

@@ -31,7 +31,7 @@ export function listen(box: HTMLElement): () => void {
   };
 
   const down = (event: PointerEvent): void => {
-    if (event.target instanceof Element && event.target.closest("button, a, input, label") !== null) return;
+    if (event.target instanceof Element && event.target.closest("button, a, input, label, .grip") !== null) return;
     if (event.pointerType === "mouse") {
       if (event.button === 0) start = event.clientX;
       box.setPointerCapture(event.pointerId);

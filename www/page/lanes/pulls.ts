@@ -1,6 +1,8 @@
 /** Residuals: how many of its own errors each point lies from the curve. */
+import { signed } from "../format/number";
 import { points } from "../state/answers";
 import type { Drawing } from "./chart";
+import type { Lane } from "./lane";
 import { drawBand, drawMarks, type Mark } from "./marks";
 
 const NOTHING = new Float64Array(0);
@@ -29,3 +31,22 @@ export function drawPulls(): Drawing {
     over: (plot) => drawMarks(plot, marks),
   };
 }
+
+export const pullsLane: Lane = {
+  id: "pulls",
+  title: "Residuals",
+  unit: "errors",
+  size: "low",
+  draw: drawPulls,
+  numbers: () => {
+    const shown = points.value.filter((point) => point.pull !== null).sort((a, b) => a.w - b.w);
+    return [
+      { name: "W", unit: "GeV", values: shown.map((point) => point.w) },
+      { name: "residual", unit: "errors", values: shown.map((point) => point.pull ?? Number.NaN) },
+    ];
+  },
+  readOut: (w) =>
+    points.value
+      .filter((point) => point.pull !== null && Math.abs(point.w - w) < 2e-6 * w)
+      .map((point) => ({ name: `residual of ${point.id}`, text: `${signed(point.pull ?? 0, 2)} errors` })),
+};

@@ -8,6 +8,7 @@ import { WhyList } from "../parts/why-list";
 import { atCursor } from "../state/answers";
 import { everything } from "../state/prefs";
 import { cursor, view } from "../state/view";
+import { shown } from "./list";
 
 /** What is read out at all times; the rest is one gesture away. */
 const FIRST = new Set(["observed", "radiated", "born", "rate"]);
@@ -15,7 +16,8 @@ const FIRST = new Set(["observed", "radiated", "born", "rate"]);
 /** The row. */
 export function ReadOut(): JSX.Element {
   const here = atCursor.value;
-  const rest = here?.values.filter((entry) => !FIRST.has(entry.name.toLowerCase())) ?? [];
+  const others = here?.values.filter((entry) => !FIRST.has(entry.name.toLowerCase())) ?? [];
+  const rest = [...others, ...shown.value.flatMap((lane) => (here === null ? [] : (lane.readOut?.(here.w) ?? [])))];
   return (
     <div class="read-out" data-resting={cursor.value === null}>
       <dl>

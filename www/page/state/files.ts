@@ -47,6 +47,16 @@ export async function tableText(table: Table): Promise<string> {
   return body.kind === "text" ? body.text : "";
 }
 
+/** Columns as CSV (RFC 4180), units in the headers; where nothing is, the cell is empty. */
+export function csvOf(columns: readonly { name: string; unit: string; values: ArrayLike<number> }[]): string {
+  const quoted = (text: string): string => (/[",\r\n]/.test(text) ? `"${text.replace(/"/g, '""')}"` : text);
+  const lines = [columns.map((column) => quoted(column.unit === "" ? column.name : `${column.name} (${column.unit})`)).join(",")];
+  for (let i = 0; i < (columns[0]?.values.length ?? 0); i += 1) {
+    lines.push(columns.map(({ values }) => (Number.isFinite(values[i]) ? String(values[i]) : "")).join(","));
+  }
+  return `${lines.join("\r\n")}\r\n`;
+}
+
 /** A link that carries the sheet in its fragment; nothing of it is sent anywhere. */
 export function linkOf(now: Sheet): string {
   return `${location.href.split("#")[0]}#sheet=${toAddress(pack(JSON.stringify(now)))}`;

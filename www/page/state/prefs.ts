@@ -11,6 +11,7 @@ const KEY = "widthwise.prefs.1";
 interface Prefs {
   theme: Theme;
   lanes: Record<string, boolean>;
+  laneHeights: Record<string, number>;
   traces: Record<string, boolean>;
   allColumns: boolean;
   guided: boolean;
@@ -40,19 +41,21 @@ export const guided = signal(first.guided !== false);
 /** Whether the table shows every column in use. */
 export const allColumns = signal(first.allColumns === true);
 /** Lanes that are shown, by id; absent = the lane's own default. */
-export const lanes = signal<Record<string, boolean>>(flags(first.lanes));
+export const lanes = signal<Record<string, boolean>>(only(first.lanes, "boolean"));
+/** Heights that a person has given to lanes, CSS pixels, by id. */
+export const laneHeights = signal<Record<string, number>>(only(first.laneHeights, "number"));
 /** Traces of the line-shape lane that are shown. */
 export const traces = signal<Record<string, boolean>>({
   observed: true,
   radiated: true,
   born: false,
   parts: false,
-  ...flags(first.traces),
+  ...only(first.traces, "boolean"),
 });
 
-function flags(value: unknown): Record<string, boolean> {
+function only<K extends "boolean" | "number">(value: unknown, kind: K): Record<string, K extends "boolean" ? boolean : number> {
   if (value === null || typeof value !== "object") return {};
-  return Object.fromEntries(Object.entries(value).filter((entry) => typeof entry[1] === "boolean"));
+  return Object.fromEntries(Object.entries(value).filter((entry) => typeof entry[1] === kind));
 }
 
 const system = matchMedia("(prefers-color-scheme: dark)");
@@ -71,6 +74,7 @@ export function keepPrefs(): () => void {
     const prefs: Prefs = {
       theme: theme.value,
       lanes: lanes.value,
+      laneHeights: laneHeights.value,
       traces: traces.value,
       allColumns: allColumns.value,
       guided: guided.value,
