@@ -1,7 +1,9 @@
 //! The sheet as a file: versioned JSON.
 
 use crate::doc::Sheet;
-use serde::Deserialize;
+use serde::de::{DeserializeOwned, Error as _, MapAccess, SeqAccess, Visitor};
+use serde::{Deserialize, Deserializer};
+use serde_json::Value;
 use widthwise_core::error::{Answer, Refusal};
 
 /// What every sheet says it is.
@@ -45,13 +47,6 @@ pub fn check_header(format: &str, version: u64) -> Answer<()> {
     Ok(())
 }
 
-/// The least that is read before anything else, so that a newer file is told as such.
-#[derive(Deserialize)]
-struct Header {
-    format: Option<serde_json::Value>,
-    version: Option<serde_json::Value>,
-}
-
 /// Reads a file's text as a sheet.
 ///
 /// # Errors
@@ -70,16 +65,9 @@ pub fn open(text: &str) -> Answer<Sheet> {
     if text.trim().is_empty() {
         return Err(Refusal::new("", "", "a scan sheet", "this file is empty"));
     }
-    let header: Header = serde_json::from_str(text).map_err(|e| not_json(&e))?;
-    let format = header
-        .format
-        .as_ref()
-        .and_then(|v| v.as_str())
-        .unwrap_or("");
-    let version = header
-        .version
-        .as_ref()
-        .map_or(Some(1), serde_json::Value::as_u64);
+    let Strict(value) = serde_json::from_str(text).map_err(|e| not_json(&e))?;
+    let format = value.get("format").and_then(Value::as_str).unwrap_or("");
+    let version = value.get("version").map_or(Some(1), Value::as_u64);
     let version = version.ok_or_else(|| {
         Refusal::new(
             "version",
@@ -89,20 +77,77 @@ pub fn open(text: &str) -> Answer<Sheet> {
         )
     })?;
     check_header(format, version)?;
-    let mut deserializer = serde_json::Deserializer::from_str(text);
-    serde_path_to_error::deserialize(&mut deserializer).map_err(|e| {
-        let path = e.path().to_string();
-        let inner = e.into_inner();
-        let (line, column) = (inner.line(), inner.column());
-        let full = inner.to_string();
-        let reason = full.split(" at line ").next().unwrap_or(&full);
-        Refusal::new(
-            if path == "." { String::new() } else { path },
-            "",
-            "what the scan sheet's schema allows",
-            format!("line {line}, column {column}: {reason}"),
-        )
+    typed(value).map_err(|(path, reason)| {
+        Refusal::new(path, "", "what the scan sheet's schema allows", reason)
     })
+}
+
+/// Plain JSON as one of our types; where it does not fit, the path and the reason.
+///
+/// Everything is read on this one road, files and requests alike: each further one would make the
+/// compiler write the reader of every type again.
+pub(crate) fn typed<T: DeserializeOwned>(value: Value) -> Result<T, (String, String)> {
+    serde_path_to_error::deserialize(value).map_err(|e| {
+        let path = e.path().to_string();
+        let path = if path == "." { String::new() } else { path };
+        (path, e.into_inner().to_string())
+    })
+}
+
+/// JSON in which no object says the same field twice: of two values one would be lost silently.
+struct Strict(Value);
+
+impl<'de> Deserialize<'de> for Strict {
+    fn deserialize<D: Deserializer<'de>>(deserializer: D) -> Result<Self, D::Error> {
+        deserializer.deserialize_any(StrictVisitor).map(Strict)
+    }
+}
+
+struct StrictVisitor;
+
+impl<'de> Visitor<'de> for StrictVisitor {
+    type Value = Value;
+
+    fn expecting(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        f.write_str("JSON")
+    }
+    fn visit_unit<E>(self) -> Result<Value, E> {
+        Ok(Value::Null)
+    }
+    fn visit_bool<E>(self, value: bool) -> Result<Value, E> {
+        Ok(value.into())
+    }
+    fn visit_i64<E>(self, value: i64) -> Result<Value, E> {
+        Ok(value.into())
+    }
+    fn visit_u64<E>(self, value: u64) -> Result<Value, E> {
+        Ok(value.into())
+    }
+    fn visit_f64<E>(self, value: f64) -> Result<Value, E> {
+        Ok(value.into())
+    }
+    fn visit_str<E>(self, value: &str) -> Result<Value, E> {
+        Ok(value.into())
+    }
+    fn visit_seq<A: SeqAccess<'de>>(self, mut seq: A) -> Result<Value, A::Error> {
+        let mut list = Vec::new();
+        while let Some(Strict(value)) = seq.next_element()? {
+            list.push(value);
+        }
+        Ok(list.into())
+    }
+    fn visit_map<A: MapAccess<'de>>(self, mut map: A) -> Result<Value, A::Error> {
+        let mut fields = serde_json::Map::new();
+        while let Some(key) = map.next_key::<String>()? {
+            let Strict(value) = map.next_value()?;
+            if fields.contains_key(&key) {
+                let twice = format!("the field \"{key}\" is given twice");
+                return Err(A::Error::custom(twice));
+            }
+            fields.insert(key, value);
+        }
+        Ok(fields.into())
+    }
 }
 
 /// The sheet as text, for people and version control: two spaces, one field a line.

@@ -6,16 +6,6 @@ use wasm_bindgen::JsValue;
 use widthwise_core::error::Refusal;
 use widthwise_sheet::requests::{Column, Reply};
 
-/// What to say about a request that is not one of ours.
-pub fn unreadable(error: &serde_wasm_bindgen::Error) -> Refusal {
-    Refusal::new(
-        "",
-        "",
-        "a request of this version",
-        format!("The request could not be read: {error}."),
-    )
-}
-
 /// A refusal as a plain object.
 pub fn refused(refusal: &Refusal) -> JsValue {
     plain(refusal).unwrap_or_else(|_| JsValue::from_str(&refusal.message))

@@ -22,8 +22,8 @@ pub fn start() {
 /// A `Refusal` as a plain object: the request could not be read, or the sheet refuses it.
 #[wasm_bindgen]
 pub fn run(id: f64, request: JsValue) -> Result<JsValue, JsValue> {
-    let request: Request = serde_wasm_bindgen::from_value(request)
-        .map_err(|error| answer::refused(&answer::unreadable(&error)))?;
+    let request: serde_json::Value = serde_wasm_bindgen::from_value(request)?;
+    let request = Request::read(request).map_err(|refusal| answer::refused(&refusal))?;
     let reply = requests::answer(&request, &mut |done, total| {
         scope::post_progress(id, done, total)
     })

@@ -32,13 +32,14 @@ use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Answer, Refusal};
 use widthwise_core::trials::TrialRow;
 
-/// One request. The sheet travels as the document itself.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
-#[serde(tag = "kind", rename_all = "snake_case")]
+/// One request, on the wire `{ "kind": NAME, ...fields }`; [`Request::read`] reads it. The sheet
+/// travels as the document itself.
+#[derive(Debug, Clone, PartialEq, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS), ts(tag = "kind"))]
+#[serde(rename_all = "snake_case")]
 pub enum Request {
     /// Which particles are known, what every parameter may be, which units are understood.
-    Tables,
+    Tables {},
     /// Reads a file's text as a sheet; answers with the sheet or with what is wrong.
     Open {
         /// Text of the file.
@@ -167,6 +168,34 @@ pub enum Request {
     },
 }
 
+impl Request {
+    /// Reads a request as it is sent.
+    ///
+    /// # Errors
+    /// No object, no or an unknown `kind`, a field that is missing or of another type (with its path).
+    pub fn read(value: serde_json::Value) -> Answer<Request> {
+        let serde_json::Value::Object(mut fields) = value else {
+            return Err(unreadable("", "it is not an object"));
+        };
+        let Some(serde_json::Value::String(kind)) = fields.remove("kind") else {
+            return Err(unreadable("kind", "it does not say what it asks for"));
+        };
+        // An enum tagged from outside reads its fields in place; a tag among the fields would make
+        // the compiler write every reader a second time, for a buffered copy.
+        let tagged = serde_json::Map::from_iter([(kind, fields.into())]);
+        crate::json::typed(tagged.into()).map_err(|(path, reason)| unreadable(&path, &reason))
+    }
+}
+
+fn unreadable(field: &str, reason: &str) -> Refusal {
+    Refusal::new(
+        field,
+        "",
+        "a request of this version",
+        format!("the request could not be read: {reason}"),
+    )
+}
+
 /// Tables that can be taken away.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
 #[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
@@ -189,7 +218,7 @@ pub enum Table {
 /// (ask [`Request::Check`] for all).
 pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<Reply> {
     match request {
-        Request::Tables => Ok(tables::answer()),
+        Request::Tables {} => Ok(tables::answer()),
         Request::Open { text } => sheets::open(text),
         Request::Check { sheet } => Ok(sheets::check(sheet)),
         Request::Convert { sheet, from, value } => convert::answer(sheet, *from, value),
