@@ -7,9 +7,10 @@ import type { TrialRange } from "./TrialRange";
 import type { TrialRow } from "./TrialRow";
 
 /**
- * One request. The sheet travels as the document itself.
+ * One request, on the wire `{ "kind": NAME, ...fields }`; [`Request::read`] reads it. The sheet
+ * travels as the document itself.
  */
-export type Request = { "kind": "tables" } | { "kind": "open", 
+export type Request = { "kind": "tables", } | { "kind": "open", 
 /**
  * Text of the file.
  */
