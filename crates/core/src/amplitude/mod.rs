@@ -7,6 +7,7 @@ pub mod hypothesis;
 pub mod kmatrix_born;
 pub mod parameters;
 pub mod partial_wave;
+pub mod peak;
 pub mod selection;
 mod vertex;
 pub mod waves;

@@ -14,7 +14,7 @@ mod plan;
 mod resonance;
 mod rows;
 
-pub use beam::{Frame, dial_dimension, setting_kind};
+pub use beam::{Frame, dial_dimension, setting_kind, twice};
 pub use plan::{GoalReading, PlanReading, Wanted};
 pub use rows::RowReading;
 

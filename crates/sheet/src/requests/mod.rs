@@ -5,6 +5,7 @@ mod csv;
 mod cursor;
 mod curve;
 mod fit;
+mod look_up;
 mod parameter;
 mod plan;
 mod points;
@@ -19,6 +20,7 @@ mod window;
 
 pub use csv::csv_of;
 pub use fit::settings as fit_settings;
+pub use look_up::{Given, LookUp};
 pub use parameter::{Parameter, find as find_parameter};
 pub use ready::Ready;
 pub use reply::*;
@@ -76,6 +78,13 @@ pub enum Request {
         from: crate::doc::Dial,
         /// The value as typed.
         value: String,
+    },
+    /// A small sum of a shift: threshold, coupling, peak height, time to n events.
+    LookUp {
+        /// The sheet (its beams).
+        sheet: Sheet,
+        /// What.
+        what: LookUp,
     },
     /// Per row: W, dial, expected, seen, pull, p-value, times.
     Points {
@@ -222,6 +231,7 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         Request::Open { text } => sheets::open(text),
         Request::Check { sheet } => Ok(sheets::check(sheet)),
         Request::Convert { sheet, from, value } => convert::answer(sheet, *from, value),
+        Request::LookUp { sheet, what } => look_up::answer(sheet, what),
         Request::ReadTable {
             sheet,
             text,

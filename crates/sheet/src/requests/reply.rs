@@ -87,6 +87,11 @@ pub enum Body {
         /// Named values that belong to it: sigma_W, break-up momentum, dW/dsetting, ...
         values: Vec<Named>,
     },
+    /// What was looked up.
+    LookedUp {
+        /// Named values.
+        values: Vec<Named>,
+    },
     /// Every row of data, in the sheet's order.
     Points {
         /// Points.
