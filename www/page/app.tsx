@@ -7,6 +7,7 @@ import { Newer } from "./header/newer";
 import { Strip } from "./header/strip";
 import { Stripe } from "./header/stripe";
 import { Lanes } from "./lanes/lanes";
+import { WhyDialog } from "./parts/why";
 import { Rooms } from "./rooms/rooms";
 import { broken } from "./state/answers";
 import { opened } from "./state/sheet";
@@ -38,6 +39,7 @@ export function App(): JSX.Element {
         <Rooms />
       </main>
       <HandOver />
+      <WhyDialog />
     </>
   );
 }

@@ -8,6 +8,7 @@ import { openText, sheetInLink } from "./state/files";
 import { keepTime } from "./state/health";
 import { keepInstalled } from "./state/installed";
 import { keepKeys } from "./state/keys";
+import { keepLookingForOthers } from "./state/others";
 import { keepPrefs } from "./state/prefs";
 import { keepSavedWords, savedAt } from "./state/saved";
 import { keepSaving, openStore } from "./state/store";
@@ -27,6 +28,7 @@ export async function start(root: HTMLElement, bridge: Promise<Bridge>): Promise
     return;
   }
   keepComparing();
+  keepLookingForOthers();
   keepSaving();
   keepTime();
   keepSavedWords();

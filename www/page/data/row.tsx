@@ -1,8 +1,8 @@
 /** One row: a switch for its use, cells as typed, and what the chain makes of it. */
 import type { JSX } from "preact";
-import { count, signed } from "../format/number";
 import { Icon } from "../parts/icon";
-import { problemAt, type PointView } from "../state/answers";
+import { Expected, Pull } from "../rooms/health";
+import { problemAt, unread, type PointView } from "../state/answers";
 import { removeRow, setCell, swapLuminosity, toggleRunning, toggleUse } from "../state/rows";
 import type { Row } from "../state/types";
 import { cursor } from "../state/view";
@@ -31,8 +31,8 @@ export function RowView({ row, index, columns, point }: RowProps): JSX.Element {
         </label>
       </td>
       {columns.map((column) => column.field !== "comment" && <Cell key={column.field} row={row} index={index} column={column} />)}
-      <td class="number told">{point?.expected === null || point === null ? "" : count(point.expected)}</td>
-      <td class={`number told ${Math.abs(point?.pull ?? 0) > 3 ? "bad" : ""}`}>{point?.pull === null || point === null ? "" : signed(point.pull, 2)}</td>
+      <td class="number told">{point === null ? unread.value.has(row.id) && <span class="bad">no energy</span> : point.expected !== null && <Expected point={point} />}</td>
+      <td class={`number told ${Math.abs(point?.pull ?? 0) > 3 ? "bad" : ""}`}>{point !== null && <Pull point={point} />}</td>
       {columns.map((column) => column.field === "comment" && <Cell key={column.field} row={row} index={index} column={column} />)}
       <td class="row-actions">
         <button type="button" class={row.running ? "tool tool-on" : "tool"} aria-pressed={row.running === true} aria-label={`${row.id} is running`} title="Running now" onClick={() => toggleRunning(index)}>

@@ -5,11 +5,11 @@ import { units } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import { Why } from "../parts/why";
 import * as answers from "../state/answers";
-import { parametersOf } from "../state/parameters";
-import { textAt, withAt } from "../state/path";
-import { change, sheet } from "../state/sheet";
+import { withAt } from "../state/path";
+import { change } from "../state/sheet";
 import { Correlation, Nuisances } from "./correlation";
 import { Covariance, Goodness } from "./goodness";
+import { WhyParameter } from "./why-parameter";
 
 /** The result of the newest fit, or why there is none. */
 export function Outcome(): JSX.Element {
@@ -54,26 +54,7 @@ export function Outcome(): JSX.Element {
                 <td class="number strong">
                   <Why title={`${parameter.name}: where it comes from`} value={text.value}>
                     <Covariance />
-                    <dl class="inputs">
-                      <div>
-                        <dt>Before the fit</dt>
-                        <dd>{units(String(textAt(sheet.value, pathOf(parameter.id))))}</dd>
-                      </div>
-                      <div>
-                        <dt>Points in use</dt>
-                        <dd>{fit.pulls.length}</dd>
-                      </div>
-                      <div>
-                        <dt>Left free with it</dt>
-                        <dd>
-                          {fit.parameters
-                            .filter((other) => other.id !== parameter.id)
-                            .map((other) => other.name)
-                            .join(", ") || "nothing else"}
-                        </dd>
-                      </div>
-                    </dl>
-                    <p class="note">{fit.why}</p>
+                    <WhyParameter fit={fit} parameter={parameter} />
                   </Why>
                 </td>
                 <td class="number">{text.error === "" ? "–" : `±${THIN}${text.error}`}</td>
@@ -106,8 +87,4 @@ function take(): void {
   change("take the fitted values", (before) =>
     Object.entries(fit.texts).reduce((next, [path, text]) => withAt(next, path, text), before),
   );
-}
-
-function pathOf(id: string): string {
-  return parametersOf(sheet.value).find((parameter) => parameter.id === id)?.path ?? "";
 }

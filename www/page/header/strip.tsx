@@ -1,12 +1,17 @@
 /** What must be seen at a glance, from two metres, without a click. */
 import type { JSX } from "preact";
 import { useLayoutEffect, useRef } from "preact/hooks";
-import { count, hours, pValue, signed, THIN, withError } from "../format/number";
+import { WhyParameter } from "../fit/why-parameter";
+import { count, hours, signed, THIN, withError } from "../format/number";
 import { Quantity } from "../parts/quantity";
 import { Sym } from "../parts/sym";
+import { Why } from "../parts/why";
+import { Explained } from "../parts/why-list";
+import { Expected, PValue } from "../rooms/health";
 import * as answers from "../state/answers";
-import { calibrationAge, needsAttention } from "../state/health";
-import { nextStop, planned } from "../state/plan";
+import { calibration, calibrationAge, needsAttention } from "../state/health";
+import { otherSolutions } from "../state/others";
+import { nextFill, nextStop, planned, type PlannedStop } from "../state/plan";
 import { room } from "../state/prefs";
 import { rows, runningIndex, sheet } from "../state/sheet";
 
@@ -55,7 +60,12 @@ function Dial(): JSX.Element {
       ) : (
         <>
           <p class="figure">
-            <Quantity text={here.dial} />
+            <Explained
+              of="to dial"
+              title="The number on the dial"
+              inputs={[["True W", wText(here.w)], ...calibration.value]}
+              value={<Quantity text={here.dial} />}
+            />
           </p>
           <p class="note">
             <span class="sym">W</span> <Quantity text={wText(here.w)} />
@@ -97,8 +107,16 @@ function Running(): JSX.Element {
         <span class="beside"> seen</span>
       </p>
       <p class="note">
-        {here.expected !== null && <>{count(here.expected)} expected</>}
-        {here.p !== null && <> · p {pValue(here.p)}</>}
+        {here.expected !== null && (
+          <>
+            <Expected point={here} /> expected
+          </>
+        )}
+        {here.p !== null && (
+          <>
+            {" · "}p <PValue point={here} />
+          </>
+        )}
         <br />
         {row?.luminosity ? (
           <>
@@ -161,10 +179,9 @@ function Results(): JSX.Element {
                 <Sym text={parameter.symbol} />
               </dt>
               <dd>
-                <button type="button" class="why" onClick={() => (room.value = "fit")}>
-                  <span class="figure">{text.value}</span>
-                  <span class="unseen">, {parameter.name}: open the fit</span>
-                </button>
+                <Why title={parameter.name} value={<span class="figure">{text.value}</span>}>
+                  <WhyParameter fit={fit} parameter={parameter} />
+                </Why>
                 <span class="unit"> {parameter.unit}</span>
                 <p class="note">
                   {text.error === "" ? "no error" : `±${THIN}${text.error}`}
@@ -175,7 +192,22 @@ function Results(): JSX.Element {
           );
         })}
       </dl>
+      <Others />
     </div>
+  );
+}
+
+/** Whether the data allow another answer: said beside the numbers, not found out later. */
+function Others(): JSX.Element | null {
+  const others = otherSolutions.value?.length ?? 0;
+  if (others === 0) return null;
+  return (
+    <p class="note others">
+      <button type="button" class="link" onClick={() => (room.value = "fit")}>
+        {others === 1 ? "One other solution" : `${others} other solutions`}
+      </button>{" "}
+      with the same curve
+    </p>
   );
 }
 
@@ -195,7 +227,17 @@ function Next(): JSX.Element {
       ) : (
         <>
           <p class="figure">
-            <Quantity text={next.dial} />
+            <Why title="The next setting" value={<Quantity text={next.dial} />}>
+              <p>{next.why}</p>
+              <dl class="inputs">
+                {whyNext(next).map(([name, text]) => (
+                  <div key={name}>
+                    <dt>{name}</dt>
+                    <dd>{text}</dd>
+                  </div>
+                ))}
+              </dl>
+            </Why>
           </p>
           <p class="note">
             {hours(next.hours)} · {next.why}
@@ -206,12 +248,37 @@ function Next(): JSX.Element {
   );
 }
 
+function whyNext(next: PlannedStop): [string, string][] {
+  return [
+    ["True W", wText(next.w)],
+    ["Time there", hours(next.hours)],
+    ["Counts expected", count(Math.round(next.expected))],
+    ["Fill", String(next.fill + 1)],
+    ["Hours of the plan", sheet.value.plan.hours ?? "not entered"],
+  ];
+}
+
 function Left(): JSX.Element {
   const left = sheet.value.plan.hours;
+  const fill = nextFill.value;
   return (
     <Cell name="Beam time left" kind="cell-left">
       <p class="figure">{left ? <Quantity text={left} /> : <span class="quiet">–</span>}</p>
-      <p class="note">{left ? "as entered in Plan" : "Enter it in Plan."}</p>
+      <p class="note">
+        {left === undefined || left === "" ? (
+          <button type="button" class="link" onClick={() => (room.value = "plan")}>
+            Enter it
+          </button>
+        ) : fill !== null ? (
+          `next fill in ${hours(fill)}`
+        ) : sheet.value.plan.fill ? (
+          <>
+            fills of <Quantity text={sheet.value.plan.fill} />
+          </>
+        ) : (
+          "no fills"
+        )}
+      </p>
     </Cell>
   );
 }

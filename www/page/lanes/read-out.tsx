@@ -1,11 +1,11 @@
 /** Everything at the cursor, in one row that never moves: W, the number to dial, cross sections, rate. */
 import type { ComponentChildren, JSX } from "preact";
 import { axisScale, fixed } from "../format/number";
-import { BEHIND } from "../parts/formulas";
 import { Quantity } from "../parts/quantity";
-import { Why } from "../parts/why";
-import { WhyList } from "../parts/why-list";
+import { Explained } from "../parts/why-list";
 import { atCursor } from "../state/answers";
+import { calibration } from "../state/health";
+import type { Named } from "../state/types";
 import { everything } from "../state/prefs";
 import { cursor, view } from "../state/view";
 import { shown } from "./list";
@@ -31,15 +31,13 @@ export function ReadOut(): JSX.Element {
               {energy(here.w)} <span class="unit">{axisScale(here.w, here.w).unit}</span>
             </Item>
             <Item name="to dial" strong>
-              {here.dial === "" ? <span class="quiet">out of reach</span> : <Quantity text={here.dial} />}
+              {here.dial === "" ? <span class="quiet">out of reach</span> : <Explained of="to dial" title={at("The number to dial", here.w)} inputs={calibration.value} value={<Quantity text={here.dial} />} />}
             </Item>
             {here.values
               .filter((entry) => FIRST.has(entry.name.toLowerCase()))
               .map((entry) => (
                 <Item key={entry.name} name={entry.name}>
-                  <Explained name={entry.name} at={here.w}>
-                    <Quantity text={entry.text} />
-                  </Explained>
+                  <Explained of={entry.name} title={at(entry.name, here.w)} value={<Quantity text={entry.text} />} />
                 </Item>
               ))}
           </>
@@ -54,7 +52,11 @@ export function ReadOut(): JSX.Element {
         <dl class="read-out-more">
           {rest.map((entry) => (
             <Item key={entry.name} name={entry.name}>
-              <Quantity text={entry.text} />
+              {others.includes(entry as Named) && here !== null ? (
+                <Explained of={entry.name} title={at(entry.name, here.w)} value={<Quantity text={entry.text} />} />
+              ) : (
+                <Quantity text={entry.text} />
+              )}
             </Item>
           ))}
         </dl>
@@ -72,16 +74,10 @@ function Item(props: { name: ComponentChildren; children: ComponentChildren; str
   );
 }
 
-/** A number with its formula behind it, where there is one. */
-function Explained(props: { name: string; at: number; children: ComponentChildren }): JSX.Element {
-  const behind = BEHIND[props.name.toLowerCase()];
-  if (behind === undefined) return <>{props.children}</>;
-  const { unit, per } = axisScale(props.at, props.at);
-  return (
-    <Why title={`${props.name} at W = ${fixed(props.at / per, 3)} ${unit}`} value={props.children}>
-      <WhyList behind={behind} />
-    </Why>
-  );
+/** "observed at W = 2874.20 MeV". */
+function at(name: string, w: number): string {
+  const { unit, per } = axisScale(w, w);
+  return `${name} at W = ${fixed(w / per, 3)} ${unit}`;
 }
 
 /** The same in words, for assistive technology. */

@@ -1,31 +1,59 @@
 /** The inside of "why this number": formula, inputs with values, accuracy, source. */
-import type { JSX } from "preact";
+import type { ComponentChildren, JSX } from "preact";
 import { digits } from "../format/number";
 import { assumptionsOf } from "../hand-over/assumptions";
 import { curve } from "../state/answers";
 import { sheet } from "../state/sheet";
-import type { Behind } from "./formulas";
+import { behind } from "./formulas";
+import { Formula } from "./math";
 import { units } from "./quantity";
+import { Why } from "./why";
+
+/** Name and value of an input. */
+export type Input = readonly [ComponentChildren, string];
+
+interface WhyListProps {
+  /** Name of the number; see `formulas.tsx`. */
+  of: string;
+  /** The number's own inputs; without them, all that the sheet assumes. */
+  inputs?: readonly Input[];
+  children?: ComponentChildren;
+}
 
 /** The explanation. */
-export function WhyList({ behind }: { behind: Behind }): JSX.Element {
+export function WhyList({ of, inputs, children }: WhyListProps): JSX.Element {
+  const { formula, words, source, accuracy } = behind(of);
   return (
     <>
-      {behind.formula}
-      <p>{behind.words}</p>
+      <Formula text={formula} />
+      <p>{words}</p>
+      {children}
       <dl class="inputs">
-        {assumptionsOf(sheet.value).map(([name, text]) => (
-          <div key={name}>
+        {(inputs ?? assumptionsOf(sheet.value)).map(([name, text], i) => (
+          <div key={i}>
             <dt>{name}</dt>
             <dd>{units(text)}</dd>
           </div>
         ))}
         <div>
-          <dt>Relative accuracy reached</dt>
-          <dd>{digits(curve.value?.accuracy ?? Number.NaN, 1)}</dd>
+          <dt>Accuracy</dt>
+          <dd>{accuracy ?? `${digits(curve.value?.accuracy ?? Number.NaN, 1)} of itself, for the hypothesis as it stands`}</dd>
         </div>
       </dl>
-      <p class="note">{behind.source}</p>
+      <p class="note">{source}</p>
     </>
   );
+}
+
+/** A number with all that is behind it. */
+export function Explained(props: WhyListProps & { title?: string; value: ComponentChildren }): JSX.Element {
+  return (
+    <Why title={props.title ?? capital(props.of)} value={props.value}>
+      <WhyList {...props} />
+    </Why>
+  );
+}
+
+function capital(text: string): string {
+  return text.charAt(0).toUpperCase() + text.slice(1);
 }

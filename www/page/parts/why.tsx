@@ -1,44 +1,48 @@
 /** "Why this number": a number that opens its formula, inputs, accuracy and source. */
 import type { ComponentChildren, JSX } from "preact";
-import { useSignal } from "@preact/signals";
-import { useEffect, useId, useRef } from "preact/hooks";
+import { signal } from "@preact/signals";
+import { useEffect, useRef } from "preact/hooks";
 import { Icon } from "./icon";
 
-/** A number as a button, and what is behind it. */
+/** What has been asked about; one at a time. */
+const asked = signal<{ title: string; inside: ComponentChildren } | null>(null);
+
+/** A number as a button. What is behind it is made only when somebody asks: there are many such numbers. */
 export function Why(props: { title: string; value: ComponentChildren; children: ComponentChildren }): JSX.Element {
-  const id = useId();
-  const open = useSignal(false);
-  const dialog = useRef<HTMLDialogElement>(null);
-  // What is inside is made only when somebody asks: there are many such numbers, and they change with every drag.
-  useEffect(() => {
-    if (open.value) dialog.current?.showModal();
-  }, [open.value]);
   return (
-    <>
-      <button type="button" class="why" aria-haspopup="dialog" onClick={() => (open.value = true)}>
-        {props.value}
-        <span class="unseen">, why</span>
-      </button>
-      {open.value && (
-        <dialog
-          ref={dialog}
-          class="sheet-of-paper"
-          onClose={() => (open.value = false)}
-          aria-labelledby={id}
-          onClick={(event) => {
-            if (event.target === dialog.current) dialog.current?.close();
-          }}
-        >
-          <div class="dialog-head">
-            <h2 id={id}>{props.title}</h2>
-            <button type="button" class="tool" aria-label="Close" onClick={() => dialog.current?.close()}>
-              <Icon name="close" />
-            </button>
-          </div>
-          {props.children}
-        </dialog>
-      )}
-    </>
+    <button type="button" class="why" aria-haspopup="dialog" onClick={() => (asked.value = { title: props.title, inside: props.children })}>
+      {props.value}
+      <span class="unseen">, why</span>
+    </button>
+  );
+}
+
+/** The one place where it is shown, outside of whatever the number stands in. */
+export function WhyDialog(): JSX.Element | null {
+  return asked.value === null ? null : <Shown {...asked.value} />;
+}
+
+function Shown({ title, inside }: { title: string; inside: ComponentChildren }): JSX.Element {
+  const dialog = useRef<HTMLDialogElement>(null);
+  useEffect(() => dialog.current?.showModal(), []);
+  return (
+    <dialog
+      ref={dialog}
+      class="sheet-of-paper"
+      onClose={() => (asked.value = null)}
+      aria-labelledby="why-title"
+      onClick={(event) => {
+        if (event.target === dialog.current) dialog.current?.close();
+      }}
+    >
+      <div class="dialog-head">
+        <h2 id="why-title">{title}</h2>
+        <button type="button" class="tool" aria-label="Close" onClick={() => dialog.current?.close()}>
+          <Icon name="close" />
+        </button>
+      </div>
+      {inside}
+    </dialog>
   );
 }
 

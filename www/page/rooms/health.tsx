@@ -1,12 +1,12 @@
 /** Whether the running point is healthy: seen, expected so far, p-value; each with what is behind it. */
 import type { JSX } from "preact";
 import { count, digits, hours, pValue, signed } from "../format/number";
-import { Fraction, Why } from "../parts/why";
-import * as answers from "../state/answers";
+import { Explained, type Input } from "../parts/why-list";
+import type { PointView } from "../state/answers";
 import { sheet } from "../state/sheet";
 
 /** The three numbers. */
-export function Health({ point }: { point: answers.PointView }): JSX.Element {
+export function Health({ point }: { point: PointView }): JSX.Element {
   return (
     <dl class="trio">
       <div>
@@ -16,60 +16,7 @@ export function Health({ point }: { point: answers.PointView }): JSX.Element {
       <div>
         <dt>Expected so far</dt>
         <dd>
-          {point.expected === null ? (
-            "–"
-          ) : (
-            <Why title="Counts expected so far" value={count(point.expected)}>
-              <math display="block">
-                <mi>μ</mi>
-                <mo>=</mo>
-                <mi>L</mi>
-                <mi>ε</mi>
-                <mi>B</mi>
-                <msub>
-                  <mi>σ</mi>
-                  <mtext>obs</mtext>
-                </msub>
-                <mo>(</mo>
-                <mi>W</mi>
-                <mo>)</mo>
-                <mo>+</mo>
-                <mi>L</mi>
-                <msub>
-                  <mi>σ</mi>
-                  <mtext>bg</mtext>
-                </msub>
-                <mo>+</mo>
-                <msub>
-                  <mi>r</mi>
-                  <mtext>bg</mtext>
-                </msub>
-                <mi>t</mi>
-              </math>
-              <dl class="inputs">
-                <div>
-                  <dt>W</dt>
-                  <dd>{(point.w * 1e3).toFixed(3)} MeV</dd>
-                </div>
-                <div>
-                  <dt>L, dead time taken off</dt>
-                  <dd>{digits(point.luminosity, 5)} nb⁻¹</dd>
-                </div>
-                <div>
-                  <dt>live time t</dt>
-                  <dd>{hours(point.time)}</dd>
-                </div>
-                <div>
-                  <dt>efficiency ε</dt>
-                  <dd>{sheet.value.detection.efficiency ?? "1"}</dd>
-                </div>
-              </dl>
-              <p class="note">
-                The observed cross section is good to {digits(answers.curve.value?.accuracy ?? Number.NaN, 1)} of itself for
-                the hypothesis as it stands. The model's own error is not part of this number.
-              </p>
-            </Why>
-          )}
+          <Expected point={point} />
         </dd>
       </div>
       <div>
@@ -77,39 +24,47 @@ export function Health({ point }: { point: answers.PointView }): JSX.Element {
           <span class="sym">p</span>-value
         </dt>
         <dd>
-          {point.p === null ? (
-            "–"
-          ) : (
-            <Why title="p-value of the running point" value={pValue(point.p)}>
-              <p>Chance that a count at least as far from the expected one comes about, if the hypothesis is right. Two-sided.</p>
-              <math display="block">
-                <mtext>pull</mtext>
-                <mo>=</mo>
-                <Fraction
-                  over={
-                    <>
-                      <mi>n</mi>
-                      <mo>−</mo>
-                      <mi>μ</mi>
-                    </>
-                  }
-                  under={
-                    <msqrt>
-                      <mi>μ</mi>
-                    </msqrt>
-                  }
-                />
-                {point.pull !== null && (
-                  <>
-                    <mo>=</mo>
-                    <mtext>{signed(point.pull, 2)}</mtext>
-                  </>
-                )}
-              </math>
-            </Why>
-          )}
+          <PValue point={point} />
         </dd>
       </div>
     </dl>
   );
+}
+
+/** Counts expected by now, and why. */
+export function Expected({ point }: { point: PointView }): JSX.Element {
+  if (point.expected === null) return <>–</>;
+  return <Explained of="expected" title={`Expected so far, ${point.id}`} value={count(point.expected)} inputs={inputsOf(point)} />;
+}
+
+/** How likely a count this far off is, and why. */
+export function PValue({ point }: { point: PointView }): JSX.Element {
+  if (point.p === null) return <>–</>;
+  return <Explained of="p-value" title={`p-value, ${point.id}`} value={pValue(point.p)} inputs={[...seenAgainst(point), ...inputsOf(point)]} />;
+}
+
+/** Distance from the expected count, and why. */
+export function Pull({ point }: { point: PointView }): JSX.Element | null {
+  if (point.pull === null) return null;
+  return <Explained of="pull" title={`Pull, ${point.id}`} value={signed(point.pull, 2)} inputs={[...seenAgainst(point), ...inputsOf(point)]} />;
+}
+
+function seenAgainst(point: PointView): Input[] {
+  return [
+    ["Seen n", point.seen === null ? "nothing yet" : count(point.seen)],
+    ["Expected μ", point.expected === null ? "unknown" : count(point.expected)],
+    ["Pull", point.pull === null ? "none" : signed(point.pull, 2)],
+  ];
+}
+
+function inputsOf(point: PointView): Input[] {
+  const { detection, data } = sheet.value;
+  const row = data.rows.find((other) => other.id === point.id);
+  return [
+    ["W", `${(point.w * 1e3).toFixed(3)} MeV`],
+    ["Luminosity L, dead time taken off", point.luminosity > 0 ? `${digits(point.luminosity, 5)} nb^-1` : "none yet"],
+    ["Live time t", point.time > 0 ? hours(point.time) : "not known"],
+    ["Efficiency ε", row?.efficiency || detection.efficiency || "1"],
+    ["Background", [detection.background_cross_section, detection.background_rate].filter(Boolean).join(", ") || "none"],
+  ];
 }

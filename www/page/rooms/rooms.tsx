@@ -29,7 +29,7 @@ export function Rooms(): JSX.Element {
     <aside class="rooms" aria-label="Rooms">
       <nav class="doors" aria-label="Rooms">
         {ROOMS.map(([name, text]) => (
-          <button type="button" key={name} aria-current={name === key ? "page" : undefined} onClick={() => (room.value = name)}>
+          <button type="button" key={name} aria-current={name === key ? "page" : undefined} onClick={() => enter(name)}>
             {text}
           </button>
         ))}
@@ -40,4 +40,11 @@ export function Rooms(): JSX.Element {
       </div>
     </aside>
   );
+}
+
+/** Opens a room; where the page is one column, the room is brought into view. */
+function enter(name: Room): void {
+  room.value = name;
+  if (!matchMedia("(max-width: 1080px)").matches) return;
+  requestAnimationFrame(() => document.querySelector(".room")?.scrollIntoView({ block: "start" }));
 }

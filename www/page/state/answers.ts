@@ -75,6 +75,8 @@ export const problems = signal<Refusal[]>([]);
 export const warnings = signal<Warning[]>([]);
 export const curve = signal<Curve | null>(null);
 export const points = signal<PointView[]>([]);
+/** Ids of rows whose energy could not be understood. */
+export const unread = signal<ReadonlySet<string>>(new Set());
 export const atCursor = signal<CursorView | null>(null);
 export const fit = signal<FitView | null>(null);
 /** The fit before the last change of the data, to show what the new point did. */

@@ -37,6 +37,24 @@ export const calibrationAge = computed(() => {
   return `calibrated ${ago(now.value - calibratedAt.value)}`;
 });
 
+/** Inputs of the tie between dial and true W, for "why this number". */
+export const calibration = computed<[string, string][]>(() => {
+  const { at, offset, slope, note } = sheet.value.beam.calibration;
+  return [
+    ["Offset b", offset || "0"],
+    ["Slope a", slope || "0"],
+    ["Calibrated", at ? `${at} (${ago(now.value - (calibratedAt.value ?? 0))})` : "never"],
+    ["How", note || "not said"],
+  ];
+});
+
+/** Rows of which no energy is understood: they are neither drawn nor fitted. */
+const unread = computed(() => {
+  const ids = rows.value.filter((row) => !row.left_out && answers.unread.value.has(row.id)).map((row) => row.id);
+  if (ids.length === 0) return "";
+  return `${ids.slice(0, 6).join(", ")}${ids.length > 6 ? ` and ${ids.length - 6} more` : ""}`;
+});
+
 const anyOnline = computed(() => rows.value.some((row) => !row.left_out && row.luminosity_source === "online"));
 
 /** All that is off now. */
@@ -64,6 +82,12 @@ export const needsAttention = computed<Note[]>(() => {
     if (parameter.atLimit) {
       notes.push({ code: "limit", message: `${parameter.name} stands at the edge of what is allowed; its error means little.` });
     }
+  }
+  if (unread.value !== "") {
+    notes.push({ code: "unread", message: `No energy can be read for ${unread.value}: neither drawn nor fitted. Type the setting or W with its unit.` });
+  }
+  if (sheet.value.beam.spread.kind === "none" && sheet.value.data.stage !== "born") {
+    notes.push({ code: "spread", message: "No spread is entered: the beams are taken as sharp." });
   }
   if (anyOnline.value) {
     notes.push({ code: "online", message: "Some points use the online luminosity." });

@@ -57,3 +57,9 @@ export const planned = computed<PlannedStop[]>(() => plan.value?.stops ?? []);
 
 /** The stop to go to next. */
 export const nextStop = computed<PlannedStop | null>(() => planned.value[0] ?? null);
+
+/** Hours from when the plan was made until its next fill begins; `null`: none is planned. */
+export const nextFill = computed<number | null>(() => {
+  const [first, ...rest] = planned.value;
+  return rest.find((stop) => stop.fill > (first?.fill ?? 0))?.start ?? null;
+});

@@ -68,9 +68,7 @@ export const look = computed(() => (theme.value !== "" ? theme.value : dark.valu
 /** Applies and keeps the preferences; where storage is forbidden they last as long as the page. */
 export function keepPrefs(): () => void {
   return effect(() => {
-    const root = document.documentElement;
-    if (theme.value === "") root.removeAttribute("data-theme");
-    else root.setAttribute("data-theme", theme.value);
+    document.documentElement.dataset["theme"] = look.value;
     const prefs: Prefs = {
       theme: theme.value,
       lanes: lanes.value,

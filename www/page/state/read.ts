@@ -25,9 +25,14 @@ export function readPoints({ body }: Reply, sheet: Sheet): void {
   if (body.kind !== "points") return;
   const rows = new Map(sheet.data.rows.map((row) => [row.id, row]));
   const read: answers.PointView[] = [];
+  const unread = new Set<string>();
   for (const point of body.points) {
     const row = rows.get(point.id);
-    if (row === undefined || point.w_gev === null || point.w_gev === undefined) continue;
+    if (row === undefined) continue;
+    if (point.w_gev === null || point.w_gev === undefined) {
+      unread.add(point.id);
+      continue;
+    }
     read.push({
       id: point.id,
       w: point.w_gev,
@@ -47,6 +52,7 @@ export function readPoints({ body }: Reply, sheet: Sheet): void {
   }
   batch(() => {
     answers.points.value = read;
+    if (unread.size > 0 || answers.unread.peek().size > 0) answers.unread.value = unread;
     place(sheet, read);
   });
 }

@@ -93,6 +93,10 @@ settings: Array<[Dial, string]>,
 /**
  * Named values that belong to it: sigma_W, break-up momentum, dW/dsetting, ...
  */
+values: Array<Named>, } | { "kind": "looked_up", 
+/**
+ * Named values.
+ */
 values: Array<Named>, } | { "kind": "points", 
 /**
  * Points.
