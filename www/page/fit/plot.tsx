@@ -1,6 +1,8 @@
 /** A small plot of a study: lines over two axes. The numbers are in the table beside it; no style attributes (strict CSP). */
 import type { JSX } from "preact";
 import { digits, fixed } from "../format/number";
+import { standalone, TakePlot } from "../parts/take-plot";
+import { csvOf, download, fileName } from "../state/files";
 
 /** A line; not finite values are gaps. */
 export interface PlotLine {
@@ -34,36 +36,41 @@ export function Plot({ words, x, y, lines, levels = [], from }: PlotProps): JSX.
   const left = (value: number): number => LEFT + ((value - x0) / (x1 - x0)) * (WIDTH - LEFT - RIGHT);
   const top = (value: number): number => HEIGHT - BOTTOM - ((value - y0) / (y1 - y0)) * (HEIGHT - TOP - BOTTOM);
   return (
-    <svg class="plot" viewBox={`0 0 ${WIDTH} ${HEIGHT}`} role="img" aria-label={words}>
-      <path class="plot-frame" d={`M${LEFT} ${TOP}V${HEIGHT - BOTTOM}H${WIDTH - RIGHT}`} />
-      {ticks(x0, x1, 4).map((value, _i, all) => (
-        <text key={value} x={left(value)} y={HEIGHT - BOTTOM + 15} text-anchor="middle">
-          {label(value, all)}
-        </text>
-      ))}
-      {ticks(y0, y1, 4).map((value, _i, all) => (
-        <text key={value} x={LEFT - 6} y={top(value) + 4} text-anchor="end">
-          {label(value, all)}
-        </text>
-      ))}
-      <text x={(LEFT + WIDTH - RIGHT) / 2} y={HEIGHT - 6} text-anchor="middle">
-        {x}
-      </text>
-      <text x={14} y={(TOP + HEIGHT - BOTTOM) / 2} text-anchor="middle" transform={`rotate(-90 14 ${(TOP + HEIGHT - BOTTOM) / 2})`}>
-        {y}
-      </text>
-      {levels.map(([level, name]) => (
-        <g key={level}>
-          <path class="plot-level" d={`M${LEFT} ${top(level)}H${WIDTH - RIGHT}`} />
-          <text x={WIDTH - RIGHT - 2} y={top(level) - 3} text-anchor="end">
-            {name}
+    <figure>
+      <svg class="plot" viewBox={`0 0 ${WIDTH} ${HEIGHT}`} role="img" aria-label={words}>
+        <path class="plot-frame" d={`M${LEFT} ${TOP}V${HEIGHT - BOTTOM}H${WIDTH - RIGHT}`} />
+        {ticks(x0, x1, 4).map((value, _i, all) => (
+          <text key={value} x={left(value)} y={HEIGHT - BOTTOM + 15} text-anchor="middle">
+            {label(value, all)}
           </text>
-        </g>
-      ))}
-      {lines.map((line, i) => (
-        <path key={i} class={`plot-${line.look}`} d={path(line, left, top)} />
-      ))}
-    </svg>
+        ))}
+        {ticks(y0, y1, 4).map((value, _i, all) => (
+          <text key={value} x={LEFT - 6} y={top(value) + 4} text-anchor="end">
+            {label(value, all)}
+          </text>
+        ))}
+        <text x={(LEFT + WIDTH - RIGHT) / 2} y={HEIGHT - 6} text-anchor="middle">
+          {x}
+        </text>
+        <text x={14} y={(TOP + HEIGHT - BOTTOM) / 2} text-anchor="middle" transform={`rotate(-90 14 ${(TOP + HEIGHT - BOTTOM) / 2})`}>
+          {y}
+        </text>
+        {levels.map(([level, name]) => (
+          <g key={level}>
+            <path class="plot-level" d={`M${LEFT} ${top(level)}H${WIDTH - RIGHT}`} />
+            <text x={WIDTH - RIGHT - 2} y={top(level) - 3} text-anchor="end">
+              {name}
+            </text>
+          </g>
+        ))}
+        {lines.map((line, i) => (
+          <path key={i} class={`plot-${line.look}`} d={path(line, left, top)} />
+        ))}
+      </svg>
+      <figcaption class="actions">
+        <TakePlot name={x.replace(/[^\p{L}\d]+/gu, "-")} what={words} text={(button) => standalone(button.closest("figure")?.querySelector("svg") as SVGSVGElement)} />
+      </figcaption>
+    </figure>
   );
 }
 
@@ -143,6 +150,9 @@ export function Numbers(props: { name: string; columns: readonly { name: string;
           </tbody>
         </table>
       </div>
+      <button type="button" class="link" onClick={() => download(fileName(props.name, "csv"), new Blob([csvOf(props.columns)], { type: "text/csv" }))}>
+        CSV<span class="unseen"> of {props.name}</span>
+      </button>
     </details>
   );
 }

@@ -1,6 +1,6 @@
 /** What stands on the hand-over page: where we are, results, plot, points, assumptions, provenance, cautions. */
 import type { JSX } from "preact";
-import { count, digits, hours, pValue, signed, THIN, withError } from "../format/number";
+import { count, digits, fixed, hours, pValue, signed, THIN, withError } from "../format/number";
 import { Chart } from "../lanes/chart";
 import { drawBeamTime } from "../lanes/beam-time";
 import { drawLineShape } from "../lanes/line-shape";
@@ -10,7 +10,9 @@ import { Quantity, units } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import * as answers from "../state/answers";
 import { calibrationAge, needsAttention } from "../state/health";
-import { nextStop } from "../state/plan";
+import { otherSolutions, whatSeparates } from "../state/others";
+import { symbolOf } from "../state/parameters";
+import { nextStop, plan, planned } from "../state/plan";
 import { sheet } from "../state/sheet";
 import { version } from "../state/version";
 import { Assumptions } from "./assumptions";
@@ -24,7 +26,7 @@ export function Paper(): JSX.Element {
         <h1>{now.title || "Untitled scan"}</h1>
         <p class="note">
           {now.invented && <strong>Invented demo. </strong>}
-          Hand-over of {new Date().toLocaleString("en-GB", { dateStyle: "long", timeStyle: "short" })}. Widthwise {version}.
+          Hand-over of {new Date().toLocaleString("en-GB", { dateStyle: "long", timeStyle: "short" })}. Widthwise {version}, sheet format {now.version}.
         </p>
       </header>
       <Where />
@@ -51,6 +53,7 @@ export function Paper(): JSX.Element {
           <p class="kept-lines">{now.note}</p>
         </section>
       )}
+      <Plan />
       <Points />
       <Assumptions />
       <section>
@@ -117,6 +120,74 @@ function Results(): JSX.Element {
         <span class="sym">χ²</span> {digits(fit.statistic, 4)} / {fit.degrees}
         {fit.p !== null && `, p ${pValue(fit.p)}`}. {fit.why}
       </p>
+      <Others />
+    </section>
+  );
+}
+
+/** What else the data allow; nothing is said where it is not known. */
+function Others(): JSX.Element | null {
+  const others = otherSolutions.value;
+  if (others === null) return <p class="note">Whether other solutions describe the data as well has not been looked for.</p>;
+  if (others.length === 0) return <p>No other solution describes the data as well.</p>;
+  return (
+    <>
+      {others.map((solution, i) => (
+        <p key={i}>
+          As good ({fixed(Math.max(0, solution.above_best), 2)} above the best in 2 NLL):{" "}
+          {solution.parameters.map((parameter, k) => {
+            const text = withError(parameter.value, parameter.error, { unit: parameter.unit, per: 1 });
+            return (
+              <span key={parameter.id}>
+                {k > 0 && ", "}
+                <Sym text={symbolOf(parameter.id, sheet.value)} /> {text.value}
+                {text.error !== "" && ` ±${THIN}${text.error}`} {units(parameter.unit)}
+              </span>
+            );
+          })}
+          .
+        </p>
+      ))}
+      <p class="note">{whatSeparates.value}</p>
+    </>
+  );
+}
+
+function Plan(): JSX.Element | null {
+  const stops = planned.value;
+  if (stops.length === 0) return null;
+  return (
+    <section>
+      <h2>Plan</h2>
+      <table class="plain">
+        <thead>
+          <tr>
+            <th scope="col" class="number">Dial</th>
+            <th scope="col" class="number">W</th>
+            <th scope="col" class="number">Time</th>
+            <th scope="col" class="number">Starts in</th>
+            <th scope="col" class="number">Expected</th>
+            <th scope="col">Why</th>
+          </tr>
+        </thead>
+        <tbody>
+          {stops.slice(0, 40).map((stop, i) => (
+            <tr key={i}>
+              <th scope="row" class="number strong"><Quantity text={stop.dial} /></th>
+              <td class="number">{(stop.w * 1e3).toFixed(2)} MeV</td>
+              <td class="number">{hours(stop.hours)}</td>
+              <td class="number">{hours(stop.start)}</td>
+              <td class="number">{count(Math.round(stop.expected))}</td>
+              <td>{stop.why}</td>
+            </tr>
+          ))}
+        </tbody>
+      </table>
+      {plan.value?.forecasts.map((forecast) => (
+        <p key={forecast.name}>
+          Error of {forecast.name}: {forecast.now === null ? "unknown" : digits(forecast.now, 2)} now, {forecast.planned === null ? "unknown" : digits(forecast.planned, 2)} {units(forecast.unit)} after it.
+        </p>
+      ))}
     </section>
   );
 }
@@ -151,7 +222,7 @@ function Points(): JSX.Element {
                   {row.running && " (running)"}
                 </th>
                 <td class="number"><Quantity text={point?.dial ?? row.setting ?? ""} /></td>
-                <td class="number">{point === undefined ? "" : `${(point.w * 1e3).toFixed(2)} MeV`}</td>
+                <td class="number">{point === undefined ? "no energy" : `${(point.w * 1e3).toFixed(2)} MeV`}</td>
                 <td class="number"><Quantity text={row.luminosity ?? ""} /></td>
                 <td class="number">{row.counts ?? row.cross_section ?? ""}</td>
                 <td class="number">{point?.expected === null || point === undefined ? "" : count(point.expected)}</td>

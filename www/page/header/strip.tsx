@@ -13,6 +13,7 @@ import { calibration, calibrationAge, needsAttention } from "../state/health";
 import { otherSolutions } from "../state/others";
 import { nextFill, nextStop, planned, type PlannedStop } from "../state/plan";
 import { room } from "../state/prefs";
+import { addRow } from "../state/rows";
 import { rows, runningIndex, sheet } from "../state/sheet";
 
 /** The strip. */
@@ -240,6 +241,9 @@ function Next(): JSX.Element {
             </Why>
           </p>
           <p class="note">
+            <button type="button" class="link" onClick={() => addRow({ setting: next.dial }, true)}>
+              Accept
+            </button>{" "}
             {hours(next.hours)} · {next.why}
           </p>
         </>

@@ -3,10 +3,11 @@ import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
 import { Numbers } from "../fit/plot";
 import { axisScale, digits, fixed } from "../format/number";
+import { TakePlot } from "../parts/take-plot";
 import { column, curve, points } from "../state/answers";
-import { csvOf, download, fileName } from "../state/files";
 import { view } from "../state/view";
 import type { Lane } from "./lane";
+import { lanesAsSvg } from "./svg";
 
 /** One sentence on what the plot shows. */
 export function inWords(): string {
@@ -43,9 +44,9 @@ function LaneTable({ lane }: { lane: Lane }): JSX.Element {
   return (
     <div class="lane-table">
       <Numbers name={lane.title} columns={columns} significant={4} />
-      <button type="button" class="link" onClick={() => download(fileName(lane.id, "csv"), new Blob([csvOf(columns)], { type: "text/csv" }))}>
-        CSV<span class="unseen"> of {lane.title}</span>
-      </button>
+      <span class="actions">
+        <TakePlot name={lane.id} what={lane.title} text={() => lanesAsSvg([lane])} />
+      </span>
     </div>
   );
 }

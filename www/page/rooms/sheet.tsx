@@ -6,6 +6,7 @@ import { ShowCodes } from "../carry/show";
 import { ago } from "../format/number";
 import { examples } from "../examples";
 import { picture } from "../lanes/picture";
+import { lanesAsSvg } from "../lanes/svg";
 import { handOver } from "../hand-over/hand-over";
 import { Icon } from "../parts/icon";
 import { copy, download, fileName, linkOf, openText, saveSheet, tableText } from "../state/files";
@@ -97,6 +98,9 @@ export function SheetRoom(): JSX.Element {
           </button>
           <button type="button" class="button" onClick={() => void picture().then((image) => image && download(fileName("plot", "png"), image))}>
             <Icon name="image" /> Plot, PNG
+          </button>
+          <button type="button" class="button" onClick={() => download(fileName("plot", "svg"), new Blob([lanesAsSvg()], { type: "image/svg+xml" }))}>
+            <Icon name="image" /> Plot, SVG
           </button>
           <button type="button" class="button" onClick={() => void tableText("log").then((content) => toClipboard(content, "Log text"), (reason: unknown) => (told.value = String(reason)))}>
             <Icon name="copy" /> Copy log text

@@ -97,15 +97,21 @@ function RunningForm({ row, index }: { row: Row; index: number }): JSX.Element {
         </p>
       </form>
       {here !== null && <Health point={here} />}
-      <div class="entry entry-close">
+      <form
+        class="entry entry-close"
+        onSubmit={(event) => {
+          event.preventDefault();
+          closeRow(index, comment.value);
+        }}
+      >
         <div class="field">
           <label for={`${id}c`}>Comment</label>
           <input id={`${id}c`} type="text" autocomplete="off" value={comment.value} onInput={(event) => (comment.value = event.currentTarget.value)} />
         </div>
-        <button type="button" class="button" onClick={() => closeRow(index, comment.value)}>
+        <button type="submit" class="button">
           Close {row.id}
         </button>
-      </div>
+      </form>
     </fieldset>
   );
 }
