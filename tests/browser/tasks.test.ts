@@ -219,7 +219,7 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
   it.each([
     ["page", "Hand-over page", "return document.querySelectorAll('.paper canvas').length === 3"],
     ["file", "Save to a file", "return /since \\\\d\\\\d:\\\\d\\\\d|in .*\\\\.json/.test(document.querySelector('.saved').innerText)"],
-    ["log text", "Copy log text", "return /copied|Select the text/.test(document.querySelector('.told').innerText)"],
+    ["log text", "Copy log text", "return /copied|Select the text/.test(document.querySelector('.room .told').innerText)"],
   ])("hands over: %s", async (what, words, there) => {
     await hand.press("Sheet");
     await hand.press(words);

@@ -22,11 +22,15 @@ export function Strip(): JSX.Element {
   useLayoutEffect(() => {
     const strip = box.current;
     if (strip === null) return;
+    const bar = document.querySelector<HTMLElement>(".bar");
     // What sticks below the strip, and where a focused field may scroll to, depends on its height.
     const measured = new ResizeObserver(() => {
-      document.documentElement.style.setProperty("--strip", `${strip.offsetHeight}px`);
+      const above = bar?.offsetHeight ?? 0;
+      document.documentElement.style.setProperty("--bar", `${above}px`);
+      document.documentElement.style.setProperty("--strip", `${above + strip.offsetHeight}px`);
     });
     measured.observe(strip);
+    if (bar !== null) measured.observe(bar);
     return () => measured.disconnect();
   }, []);
   return (

@@ -5,7 +5,8 @@ import { useSignal } from "@preact/signals";
 import { axisScale } from "../format/number";
 import { Icon } from "../parts/icon";
 import { laneHeights, lanes } from "../state/prefs";
-import { atCursor, points } from "../state/answers";
+import * as answers from "../state/answers";
+import { atCursor, curve, points } from "../state/answers";
 import { cursor, isZoomed, showAll, slide, view, zoomAt } from "../state/view";
 import { GUTTER, MARGIN, shareOf } from "./axis";
 import { AsTable } from "./as-table";
@@ -47,6 +48,11 @@ export function Lanes(): JSX.Element {
           <LaneView key={lane.id} lane={lane} last={i === all.length - 1} />
         ))}
         <Cursor />
+        {curve.value === null && (
+          <p class="lanes-empty">
+            {answers.problems.value.length === 0 ? "…" : "No curve yet. It appears as soon as beams, mass, width and strength are given."}
+          </p>
+        )}
       </div>
       <div class="axis-foot">
         <Outside side="left" />

@@ -1,6 +1,5 @@
 /** A looked-up number put into the sheet: chosen from the fields that take one of its kind. */
 import type { JSX } from "preact";
-import { parametersOf } from "../state/parameters";
 import { addRow } from "../state/rows";
 import { runningIndex, setField, sheet } from "../state/sheet";
 import type { Sheet } from "../state/types";
@@ -34,12 +33,6 @@ const PLACES: Record<string, (sheet: Sheet) => Place[]> = {
   "nb^-1": () => (runningIndex.peek() < 0 ? [] : [field(`data.rows[${runningIndex.peek()}].luminosity`, "Luminosity of the running point")]),
   "1/h": () => [field("detection.background_rate", "Background rate")],
   h: () => [field("plan.hours", "Plan: hours on the clock"), field("plan.least_dwell", "Plan: dwell at least")],
-  "": (now) => [
-    field("detection.efficiency", "Efficiency"),
-    ...parametersOf(now)
-      .filter(({ symbol }) => symbol.startsWith("B"))
-      .map(({ path, symbol }) => field(path, symbol.replace(/_/g, ""))),
-  ],
 };
 
 interface IntoProps {

@@ -86,7 +86,7 @@ export const needsAttention = computed<Note[]>(() => {
   if (unread.value !== "") {
     notes.push({ code: "unread", message: `No energy can be read for ${unread.value}: neither drawn nor fitted. Type the setting or W with its unit.` });
   }
-  if (sheet.value.beam.spread.kind === "none" && sheet.value.data.stage !== "born") {
+  if (answers.problems.value.length === 0 && sheet.value.beam.spread.kind === "none" && sheet.value.data.stage !== "born") {
     notes.push({ code: "spread", message: "No spread is entered: the beams are taken as sharp." });
   }
   if (anyOnline.value) {
