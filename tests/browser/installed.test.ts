@@ -31,7 +31,7 @@ describe.each(engines)("the page installed in %s", (engine) => {
 
   it("opens without a server and computes", async () => {
     await served.stop();
-    await driver.navigate().refresh();
+    // Opened anew: the driver's own "refresh" goes past every keeper in Firefox, as Shift and Reload do.
     await load(driver, served.url);
     expect(await inPage<string>(driver, "return (await pool.run({ kind: 'tables' })).body.kind")).toBe("tables");
   });
@@ -48,8 +48,7 @@ describe.each(engines)("the page installed in %s", (engine) => {
     await inPage(driver, "await (await navigator.serviceWorker.ready).update(); return true");
     const offer = (): Promise<boolean> => driver.executeScript("return document.body.textContent.includes('A newer version of this page is ready')");
     await driver.wait(offer, 20_000, "no offer of the newer version");
-    // A reload alone does not change it.
-    await driver.navigate().refresh();
+    // Opening it again does not change it.
     await load(driver, served.url);
     expect(await driver.getTitle()).toBe("Widthwise");
     await driver.wait(offer, 20_000, "the offer is not repeated");

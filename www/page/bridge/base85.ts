@@ -6,20 +6,25 @@ export const DIGITS = "0123456789ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstu
 
 /** The bytes of a text; the last group of n+1 characters holds n bytes. */
 export function decode85(text: string): Uint8Array<ArrayBuffer> {
-  const values = new Uint8Array(128).fill(255);
+  const values = new Uint8Array(256).fill(255);
   for (let digit = 0; digit < DIGITS.length; digit += 1) values[DIGITS.charCodeAt(digit)] = digit;
-  const out = new Uint8Array(Math.floor((text.length * 4) / 5));
-  let at = 0;
-  for (let start = 0; start < text.length; start += 5) {
-    const length = Math.min(5, text.length - start);
-    let value = 0;
-    // Characters that are missing at the end count as the largest digit.
-    for (let k = 0; k < 5; k += 1) {
-      const digit = k < length ? (values[text.charCodeAt(start + k)] ?? 255) : 84;
-      if (digit === 255) throw new Error("the page is damaged: its engine cannot be read");
-      value = value * 85 + digit;
-    }
-    for (let k = 0; k < length - 1; k += 1) out[at++] = Math.floor(value / 256 ** (3 - k)) & 255;
+  // Padded with the largest digit; what it adds at the end is cut off.
+  const groups = Math.ceil(text.length / 5);
+  const codes = text.padEnd(groups * 5, DIGITS.at(-1));
+  const out = new Uint8Array(groups * 4);
+  let wrong = 0;
+  const digit = (at: number): number => {
+    const value = values[codes.charCodeAt(at)] ?? 255;
+    wrong |= value & 128;
+    return value;
+  };
+  for (let at = 0, to = 0; to < out.length; at += 5, to += 4) {
+    const value = (((digit(at) * 85 + digit(at + 1)) * 85 + digit(at + 2)) * 85 + digit(at + 3)) * 85 + digit(at + 4);
+    out[to] = value >>> 24;
+    out[to + 1] = value >>> 16;
+    out[to + 2] = value >>> 8;
+    out[to + 3] = value;
   }
-  return out.subarray(0, at);
+  if (wrong !== 0) throw new Error("the page is damaged: a part of it cannot be read");
+  return out.subarray(0, Math.floor((text.length * 4) / 5));
 }

@@ -36,9 +36,7 @@ mod tests {
         let beams = Beams {
             first: electron.clone(),
             second: electron,
-            arrangement: Arrangement::EqualBeams {
-                crossing_rad: 0.0,
-            },
+            arrangement: Arrangement::EqualBeams { crossing_rad: 0.0 },
             dial: SettingKind::W,
         };
         let found = peak_cross_section_nb(&beams, 2, 91.1876, 0.033_632 * 0.699_11);
