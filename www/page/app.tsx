@@ -1,5 +1,7 @@
 /** The page: a bar, what must be seen at a glance, the axis with its lanes and points, and the rooms beside it. */
 import type { JSX } from "preact";
+import { useSignal } from "@preact/signals";
+import { useEffect } from "preact/hooks";
 import { DataTable } from "./data/table";
 import { HandOver } from "./hand-over/hand-over";
 import { Bar } from "./header/bar";
@@ -12,8 +14,12 @@ import { Rooms } from "./rooms/rooms";
 import { broken } from "./state/answers";
 import { opened } from "./state/sheet";
 
-/** Everything that is seen once a sheet is open. */
+/** Everything that is seen once a sheet is open: figures and curve first, what is beside and below one frame later. */
 export function App(): JSX.Element {
+  const late = useSignal(false);
+  useEffect(() => {
+    if (opened.value) requestAnimationFrame(() => setTimeout(() => (late.value = true)));
+  }, [opened.value]);
   if (!opened.value) {
     return (
       <main class="starting">
@@ -34,9 +40,9 @@ export function App(): JSX.Element {
       <main class="desk" id="scan" tabIndex={-1}>
         <div class="axis">
           <Lanes />
-          <DataTable />
+          {late.value && <DataTable />}
         </div>
-        <Rooms />
+        {late.value && <Rooms />}
       </main>
       <HandOver />
       <WhyDialog />

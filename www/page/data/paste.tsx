@@ -10,6 +10,19 @@ import { ask } from "../state/work";
 
 type Understood = Extract<Body, { kind: "rows" }>;
 
+/** A text longer than this is not laid out as a whole: ten thousand lines in a box would hold everything up. */
+const LONG = 40_000;
+/** Lines of it that are shown. */
+const HEAD = 30;
+
+function head(text: string): string {
+  return `${text.split("\n", HEAD).join("\n")}\n…`;
+}
+
+function lines(text: string): number {
+  return text.trimEnd().split("\n").length;
+}
+
 /** The dialog. */
 export function PasteDialog({ close }: { close: () => void }): JSX.Element {
   const dialog = useRef<HTMLDialogElement>(null);
@@ -46,6 +59,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
     };
   }, [text.value, answersGiven.value]);
 
+  const long = text.value.length >= LONG;
   const read = understood.value;
   const open = read?.columns.filter((column) => column.question !== "") ?? [];
   const known = read?.changes.filter((row) => !row.new).length ?? 0;
@@ -64,10 +78,28 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
           id="paste-text"
           rows={7}
           spellcheck={false}
-          value={text.value}
+          value={long ? head(text.value) : text.value}
+          readOnly={long}
+          aria-describedby="paste-length"
+          onPaste={(event) => {
+            const pasted = event.clipboardData?.getData("text/plain") ?? "";
+            if (pasted.length < LONG) return;
+            event.preventDefault();
+            text.value = pasted;
+          }}
           placeholder={"W (MeV)\tL (nb^-1)\tn\n2873.2\t129.6\t298\n2874.2\t97.2\t587"}
           onInput={(event) => (text.value = event.currentTarget.value)}
         />
+        <p class="note" id="paste-length">
+          {long && (
+            <>
+              The first {HEAD} of {lines(text.value)} lines are shown.{" "}
+              <button type="button" class="link" onClick={() => (text.value = "")}>
+                Take them out again
+              </button>
+            </>
+          )}
+        </p>
       </div>
       <div class="field field-wide">
         <label for="paste-file">or a file</label>

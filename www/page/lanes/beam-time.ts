@@ -1,4 +1,5 @@
 /** Beam time spent at each energy, and what the plan would still spend. */
+import { computed } from "@preact/signals";
 import { hours } from "../format/number";
 import { points } from "../state/answers";
 import { planned } from "../state/plan";
@@ -9,17 +10,17 @@ import { drawBars } from "./marks";
 const NOTHING = new Float64Array(0);
 
 /** Hours spent, by energy. */
-function spent(): Map<number, number> {
+const spent = computed<ReadonlyMap<number, number>>(() => {
   const found = new Map<number, number>();
   for (const point of points.value) {
     if (point.time > 0) found.set(point.w, (found.get(point.w) ?? 0) + point.time);
   }
   return found;
-}
+});
 
 /** The lane's drawing. */
 export function drawBeamTime(): Drawing {
-  const before = spent();
+  const before = spent.value;
   const bars = [...before].map(([x, y]) => ({ x, y, base: 0, solid: true }));
   for (const stop of planned.value) {
     bars.push({ x: stop.w, y: stop.hours, base: before.get(stop.w) ?? 0, solid: false });
@@ -29,7 +30,7 @@ export function drawBeamTime(): Drawing {
 }
 
 function numbers(): LaneColumn[] {
-  const before = spent();
+  const before = spent.value;
   const ahead = new Map<number, number>();
   for (const stop of planned.value) ahead.set(stop.w, (ahead.get(stop.w) ?? 0) + stop.hours);
   const w = [...new Set([...before.keys(), ...ahead.keys()])].sort((a, b) => a - b);
@@ -49,7 +50,7 @@ export const beamTimeLane: Lane = {
   numbers,
   remark: () => (planned.value.length > 0 ? "planned hatched" : ""),
   readOut: (w) => {
-    const here = [...spent()].find(([at]) => Math.abs(at - w) < 2e-6 * w);
+    const here = [...spent.value].find(([at]) => Math.abs(at - w) < 2e-6 * w);
     return here === undefined ? [] : [{ name: "time spent here", text: hours(here[1]) }];
   },
 };

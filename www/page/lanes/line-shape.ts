@@ -1,4 +1,5 @@
 /** The line shape: what the detector would see, what made it, and what has been measured. */
+import { computed } from "@preact/signals";
 import { column, curve, points } from "../state/answers";
 import { traces } from "../state/prefs";
 import { view } from "../state/view";
@@ -50,8 +51,8 @@ export function shownStyles(): TraceStyle[] {
   return [...STAGES.filter((stage) => on[stage.key] === true), ...(on["parts"] === true ? partStyles() : [])];
 }
 
-/** Marks of the measured points on the curve. */
-export function dataMarks(): Mark[] {
+/** Marks of the measured points on the curve: made again when points change, not when the curve does. */
+const dataMarks = computed<Mark[]>(() => {
   const marks: Mark[] = [];
   for (const point of points.value) {
     if (point.sigma === null) continue;
@@ -65,7 +66,7 @@ export function dataMarks(): Mark[] {
     });
   }
   return marks;
-}
+});
 
 /** The lane's drawing. */
 export function drawLineShape(): Drawing {
@@ -86,7 +87,7 @@ export function drawLineShape(): Drawing {
   }
   const other = comparedCurve.value;
   for (const value of other?.observed ?? []) if (value > high) high = value;
-  const marks = dataMarks();
+  const marks = dataMarks.value;
   const { from, to } = view.value;
   for (const mark of marks) {
     if (mark.x < from || mark.x > to) continue;

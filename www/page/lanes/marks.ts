@@ -13,48 +13,89 @@ export interface Mark {
   wide?: number;
 }
 
-/** Above so many marks they are drawn small. */
+/** Above so many marks they are drawn small, and as many as can be told apart. */
 const MANY = 500;
 
-/** Draws marks with error bars on a plot's canvas: one path for all bars of a kind, one for all shapes. */
+/** Draws marks with error bars on a plot: one path for all bars of a kind, one for all shapes. */
 export function drawMarks(plot: Surface, marks: readonly Mark[]): void {
   const { ctx } = plot;
   const ratio = devicePixelRatio;
-  const size = (marks.length > MANY ? 1.6 : 3.6) * ratio;
+  const many = marks.length > MANY;
+  const size = (many ? 1.25 : 3.6) * ratio;
   const { left, top, width, height } = plot.bbox;
   ctx.save();
   ctx.beginPath();
   ctx.rect(left - size, top, width + 2 * size, height);
   ctx.clip();
-  ctx.lineWidth = (marks.length > MANY ? 0.75 : 1.25) * ratio;
+  ctx.lineWidth = (many ? 0.75 : 1.25) * ratio;
   ctx.lineJoin = "round";
   for (const kind of ["out", "used", "running"] as const) {
-    const shown = marks.filter((mark) => mark.kind === kind);
+    const shown = placed(plot, marks, kind, many ? 2 * ratio : 0);
     if (shown.length === 0) continue;
     const colour = ink(kind === "out" ? "--c-off" : "--c-data", plot.root);
     ctx.strokeStyle = colour;
-    ctx.fillStyle = kind === "out" ? ink("--paper", plot.root) : colour;
-    const places: [number, number][] = [];
+    ctx.fillStyle = kind === "out" && !many ? ink("--paper", plot.root) : colour;
     ctx.beginPath();
-    for (const mark of shown) {
-      const x = plot.valToPos(mark.x, "x", true);
-      if (x < left - 20 * ratio || x > left + width + 20 * ratio) continue;
-      const y = plot.valToPos(mark.y, "y", true);
-      places.push([x, y]);
-      ctx.moveTo(x, plot.valToPos(mark.low, "y", true));
-      ctx.lineTo(x, plot.valToPos(mark.high, "y", true));
-      if (mark.wide !== undefined && mark.wide > 0) {
-        ctx.moveTo(plot.valToPos(mark.x - mark.wide, "x", true), y);
-        ctx.lineTo(plot.valToPos(mark.x + mark.wide, "x", true), y);
-      }
+    for (const { x, y, low, high, from, to } of shown) {
+      ctx.moveTo(x, low);
+      ctx.lineTo(x, high);
+      if (from === to) continue;
+      ctx.moveTo(from, y);
+      ctx.lineTo(to, y);
     }
     ctx.stroke();
     ctx.beginPath();
-    for (const [x, y] of places) shape(ctx, kind, x, y, size);
+    for (const { x, y } of shown) {
+      if (many && kind !== "running") ctx.rect(x - size, y - size, 2 * size, 2 * size);
+      else shape(ctx, kind, x, y, many ? 3.6 * ratio : size);
+    }
     ctx.fill();
-    ctx.stroke();
+    if (!many) ctx.stroke();
   }
   ctx.restore();
+}
+
+interface Place {
+  x: number;
+  y: number;
+  low: number;
+  high: number;
+  from: number;
+  to: number;
+}
+
+/**
+ * Where marks of a kind lie, in pixels. Those closer together than `cell` share one place, whose bar reaches as far as
+ * the longest of theirs: nothing that sticks out is lost.
+ */
+function placed(plot: Surface, marks: readonly Mark[], kind: Mark["kind"], cell: number): Place[] {
+  const { left, width } = plot.bbox;
+  const places: Place[] = [];
+  const cells = new Map<number, Place>();
+  for (const mark of marks) {
+    if (mark.kind !== kind) continue;
+    const x = plot.valToPos(mark.x, "x", true);
+    if (!(x > left - 40 && x < left + width + 40)) continue;
+    const y = plot.valToPos(mark.y, "y", true);
+    const [low, high] = [plot.valToPos(mark.low, "y", true), plot.valToPos(mark.high, "y", true)];
+    if (cell > 0) {
+      const key = Math.round(x / cell) * 65_536 + Math.round(y / cell);
+      const there = cells.get(key);
+      if (there !== undefined) {
+        there.low = Math.max(there.low, low);
+        there.high = Math.min(there.high, high);
+        continue;
+      }
+      const fresh = { x, y, low, high, from: x, to: x };
+      cells.set(key, fresh);
+      places.push(fresh);
+      continue;
+    }
+    const wide = mark.wide !== undefined && mark.wide > 0;
+    const [from, to] = wide ? [plot.valToPos(mark.x - (mark.wide ?? 0), "x", true), plot.valToPos(mark.x + (mark.wide ?? 0), "x", true)] : [x, x];
+    places.push({ x, y, low, high, from, to });
+  }
+  return places;
 }
 
 function shape(path: Pen, kind: Mark["kind"], x: number, y: number, size: number): void {

@@ -1,4 +1,5 @@
 /** Residuals: how many of its own errors each point lies from the curve. */
+import { computed } from "@preact/signals";
 import { signed } from "../format/number";
 import { points } from "../state/answers";
 import type { Drawing } from "./chart";
@@ -7,8 +8,7 @@ import { drawBand, drawMarks, type Mark } from "./marks";
 
 const NOTHING = new Float64Array(0);
 
-/** The lane's drawing. */
-export function drawPulls(): Drawing {
+const made = computed(() => {
   const marks: Mark[] = [];
   let reach = 3;
   for (const point of points.value) {
@@ -22,6 +22,12 @@ export function drawPulls(): Drawing {
       kind: point.running ? "running" : point.used ? "used" : "out",
     });
   }
+  return { marks, reach };
+});
+
+/** The lane's drawing. */
+export function drawPulls(): Drawing {
+  const { marks, reach } = made.value;
   return {
     w: NOTHING,
     traces: [],

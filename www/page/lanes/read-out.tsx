@@ -17,7 +17,7 @@ const FIRST = new Set(["observed", "radiated", "born", "rate"]);
 export function ReadOut(): JSX.Element {
   const here = atCursor.value;
   const others = here?.values.filter((entry) => !FIRST.has(entry.name.toLowerCase())) ?? [];
-  const rest = [...others, ...shown.value.flatMap((lane) => (here === null ? [] : (lane.readOut?.(here.w) ?? [])))];
+  const rest = everything.value && here !== null ? [...others, ...shown.value.flatMap((lane) => lane.readOut?.(here.w) ?? [])] : others;
   return (
     <div class="read-out" data-resting={cursor.value === null}>
       <dl>

@@ -16,7 +16,7 @@ interface WhyListProps {
   /** Name of the number; see `formulas.tsx`. */
   of: string;
   /** The number's own inputs; without them, all that the sheet assumes. */
-  inputs?: readonly Input[];
+  inputs?: readonly Input[] | (() => readonly Input[]) | undefined;
   children?: ComponentChildren;
 }
 
@@ -29,7 +29,7 @@ export function WhyList({ of, inputs, children }: WhyListProps): JSX.Element {
       <p>{words}</p>
       {children}
       <dl class="inputs">
-        {(inputs ?? assumptionsOf(sheet.value)).map(([name, text], i) => (
+        {(typeof inputs === "function" ? inputs() : (inputs ?? assumptionsOf(sheet.value))).map(([name, text], i) => (
           <div key={i}>
             <dt>{name}</dt>
             <dd>{units(text)}</dd>

@@ -34,19 +34,19 @@ export function Health({ point }: { point: PointView }): JSX.Element {
 /** Counts expected by now, and why. */
 export function Expected({ point }: { point: PointView }): JSX.Element {
   if (point.expected === null) return <>–</>;
-  return <Explained of="expected" title={`Expected so far, ${point.id}`} value={count(point.expected)} inputs={inputsOf(point)} />;
+  return <Explained of="expected" title={`Expected so far, ${point.id}`} value={count(point.expected)} inputs={() => inputsOf(point)} />;
 }
 
 /** How likely a count this far off is, and why. */
 export function PValue({ point }: { point: PointView }): JSX.Element {
   if (point.p === null) return <>–</>;
-  return <Explained of="p-value" title={`p-value, ${point.id}`} value={pValue(point.p)} inputs={[...seenAgainst(point), ...inputsOf(point)]} />;
+  return <Explained of="p-value" title={`p-value, ${point.id}`} value={pValue(point.p)} inputs={() => [...seenAgainst(point), ...inputsOf(point)]} />;
 }
 
 /** Distance from the expected count, and why. */
 export function Pull({ point }: { point: PointView }): JSX.Element | null {
   if (point.pull === null) return null;
-  return <Explained of="pull" title={`Pull, ${point.id}`} value={signed(point.pull, 2)} inputs={[...seenAgainst(point), ...inputsOf(point)]} />;
+  return <Explained of="pull" title={`Pull, ${point.id}`} value={signed(point.pull, 2)} inputs={() => [...seenAgainst(point), ...inputsOf(point)]} />;
 }
 
 function seenAgainst(point: PointView): Input[] {

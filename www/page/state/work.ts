@@ -25,6 +25,9 @@ export interface Bridge {
   readonly size?: number;
 }
 
+/** With more rows than this, checking them waits for the hand to rest: sending them takes longer than a frame. */
+const MANY_ROWS = 500;
+
 /** A fit starts when the sheet has been still this long, ms. */
 const STILL_MS = 120;
 
@@ -56,24 +59,34 @@ export function work(on: Bridge): () => void {
         : String(reason);
   };
 
+  let resting = 0;
+  const readAll = (now: Sheet): void => {
+    steady.put(
+      "check",
+      { kind: "check", sheet: now },
+      ({ body }) => {
+        if (body.kind !== "sheet") return;
+        if (!same(answers.problems.peek(), body.problems)) answers.problems.value = body.problems;
+        if (!same(answers.warnings.peek(), body.warnings)) answers.warnings.value = body.warnings;
+      },
+      failed,
+    );
+    steady.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), (reason) => {
+      if (reason instanceof Refused) readNoPoints(now);
+      else failed(reason);
+    });
+  };
+  let rows = 0;
   const stops = [
     effect(() => {
       if (!opened.value) return;
       const now = sheet.value;
-      steady.put(
-        "check",
-        { kind: "check", sheet: now },
-        ({ body }) => {
-          if (body.kind !== "sheet") return;
-          if (!same(answers.problems.peek(), body.problems)) answers.problems.value = body.problems;
-          if (!same(answers.warnings.peek(), body.warnings)) answers.warnings.value = body.warnings;
-        },
-        failed,
-      );
-      steady.put("points", { kind: "points", sheet: now }, (reply) => readPoints(reply, now), (reason) => {
-        if (reason instanceof Refused) readNoPoints(now);
-        else failed(reason);
-      });
+      clearTimeout(resting);
+      // New rows are wanted at once; the same rows under a moving slider are not.
+      const fresh = now.data.rows.length !== rows;
+      rows = now.data.rows.length;
+      if (rows <= MANY_ROWS || fresh) readAll(now);
+      else resting = window.setTimeout(() => readAll(now), STILL_MS);
     }),
     effect(() => {
       if (!opened.value || !placed.value) return;
@@ -95,6 +108,7 @@ export function work(on: Bridge): () => void {
   ];
   return () => {
     for (const stop of stops) stop();
+    clearTimeout(resting);
     curve.stop();
     bridge = null;
   };
