@@ -4,7 +4,8 @@ import { By, Key, type WebDriver } from "selenium-webdriver";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { engines, open } from "./support/engines";
 import { enter, field, press, text, type, until } from "./support/hand";
-import { fromFile, load, outgoing } from "./support/page";
+import { fromFile, outgoing } from "./support/page";
+import { afresh } from "./support/speed";
 
 /** Five points of a narrow vector state, invented: W, luminosity, counts (sigma about 15 nb at the top, 42 % efficiency). */
 const POINTS = [
@@ -34,9 +35,7 @@ describe.each(engines)("a newcomer in %s", (engine) => {
     ["tablet", 820, 1180],
   ] as const)("goes from the empty page to the printed hand-over: %s", async (_where, width, height) => {
     await driver.manage().window().setRect({ width, height });
-    await load(driver, `${fromFile}?fresh`);
-    await driver.executeAsyncScript("const done = arguments[0]; const all = indexedDB.deleteDatabase('widthwise'); all.onsuccess = all.onerror = all.onblocked = () => done(); localStorage.clear();");
-    await load(driver, fromFile);
+    await afresh(driver);
 
     // The first steps say where a new sheet is.
     expect(await text(driver, ".first-steps")).toMatch(/A new sheet is in\s+Sheet/);

@@ -3,8 +3,8 @@
 import { By, Key, type WebDriver, type WebElement } from "selenium-webdriver";
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from "vitest";
 import { engines, open } from "./support/engines";
-import { enter, field, settled, text, type, until } from "./support/hand";
-import { fromFile, load } from "./support/page";
+import { enter, field, text, type, until } from "./support/hand";
+import { afresh, quantile, sliderToCurve } from "./support/speed";
 
 /** Clicks are counted: a task may not need more than it says. */
 class Hand {
@@ -54,11 +54,7 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
     await driver?.quit();
   });
   beforeEach(async () => {
-    await driver.get("about:blank");
-    await load(driver, `${fromFile}?fresh`);
-    await driver.executeAsyncScript("const done = arguments[0]; const all = indexedDB.deleteDatabase('widthwise'); all.onsuccess = all.onerror = all.onblocked = () => done(); localStorage.clear();");
-    await load(driver, fromFile);
-    await settled(driver);
+    await afresh(driver);
     await fitted();
     // A point is running, as it is on a shift.
     await driver.findElement(By.css(".data tbody tr:last-child button[aria-label$='is running']")).click();
@@ -183,36 +179,11 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
     hand = new Hand(driver);
     const slider = await driver.findElement(By.css("input[type=range][aria-label^='Width']"));
     await driver.executeScript("arguments[0].scrollIntoView({ block: 'center' })", slider);
-    // Each step of the slider to the frame in which the curve has been drawn again.
-    const frames = await driver.executeAsyncScript<number[]>(
-      `const [slider, done] = arguments;
-       const canvas = document.querySelector('[data-lane="line-shape"] canvas');
-       const drawn = () => canvas.getContext('2d').getImageData(0, 0, canvas.width, canvas.height / 2).data;
-       const taken = [];
-       const step = (k) => {
-         if (k === 60) return done(taken);
-         const begun = performance.now();
-         globalThis.widthwiseDrawn = undefined;
-         performance.clearMarks('curve-drawn');
-         slider.value = String(Number(slider.min) + (Number(slider.max) - Number(slider.min)) * (0.2 + 0.01 * k));
-         slider.dispatchEvent(new Event('input', { bubbles: true }));
-         const wait = () => {
-           const mark = performance.getEntriesByName('curve-drawn')[0];
-           if (mark && mark.startTime > begun) { taken.push(mark.startTime - begun); requestAnimationFrame(() => step(k + 1)); }
-           else if (performance.now() - begun > 3000) done([...taken, 3000]);
-           else setTimeout(wait, 1);
-         };
-         wait();
-       };
-       step(0);`,
-      slider,
-    );
-    const sorted = [...frames].sort((a, b) => a - b);
-    const at = (share: number): number => sorted[Math.min(sorted.length - 1, Math.floor(share * sorted.length))] ?? 0;
-    told.push(`${engine}, slider to redrawn curve: median ${at(0.5).toFixed(1)} ms, 95 % ${at(0.95).toFixed(1)} ms`);
+    const frames = await sliderToCurve(driver, slider);
+    told.push(`${engine}, slider to redrawn curve: median ${quantile(frames, 0.5).toFixed(1)} ms, 95 % ${quantile(frames, 0.95).toFixed(1)} ms`);
     expect(frames).toHaveLength(60);
     // 33 ms where nothing else runs (cargo xtask bench); a busy machine is given more.
-    expect(at(0.5)).toBeLessThan(250);
+    expect(quantile(frames, 0.5)).toBeLessThan(250);
     done("what if", 1, 20);
   });
 
