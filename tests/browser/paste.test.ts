@@ -2,8 +2,8 @@
 import { By, type WebDriver } from "selenium-webdriver";
 import { afterAll, beforeAll, beforeEach, describe, expect, it } from "vitest";
 import { engines, open } from "./support/engines";
-import { press, settled, text, until } from "./support/hand";
-import { fromFile, load } from "./support/page";
+import { press, text, until } from "./support/hand";
+import { afresh } from "./support/speed";
 
 /** Puts text into the dialog as a paste does: all at once. */
 async function paste(driver: WebDriver, content: string): Promise<void> {
@@ -25,9 +25,7 @@ describe.each(engines)("pasting a table in %s", (engine) => {
   });
   afterAll(() => driver?.quit());
   beforeEach(async () => {
-    await driver.get("about:blank");
-    await load(driver, fromFile);
-    await settled(driver);
+    await afresh(driver);
   });
 
   it("shows how each column was understood, then adds the rows", async () => {
@@ -51,6 +49,17 @@ describe.each(engines)("pasting a table in %s", (engine) => {
     await until(driver, "the answer did not count", "return [...document.querySelectorAll('dialog .button-main')].some((button) => !button.disabled)");
     await press(driver, "Add 1 row");
     await until(driver, "no new row", "return Number(document.querySelector('table.data').getAttribute('aria-rowcount')) - 1 === arguments[0]", before + 1);
+  });
+
+  it("says that nothing differs when the same table is read again", async () => {
+    const table = "id\tW (MeV)\tL (nb^-1)\tn\nX1\t2873.2\t129.6\t298\n";
+    await paste(driver, table);
+    await until(driver, "not understood", "return [...document.querySelectorAll('dialog .button-main')].some((button) => !button.disabled)");
+    await press(driver, "Add 1 row");
+    await until(driver, "the dialog stayed", "return document.querySelector('dialog[open]') === null");
+    await paste(driver, table);
+    await until(driver, "it does not say so", "return document.querySelector('dialog .button-main').innerText === 'Nothing differs'");
+    expect(await driver.executeScript("return document.querySelector('dialog .button-main').disabled")).toBe(true);
   });
 
   it("says what is wrong with a cell and keeps what was pasted", async () => {

@@ -19,6 +19,10 @@ function head(text: string): string {
   return `${text.split("\n", HEAD).join("\n")}\n…`;
 }
 
+function many(rows: number): string {
+  return rows === 1 ? "1 row" : `${rows} rows`;
+}
+
 function lines(text: string): number {
   return text.trimEnd().split("\n").length;
 }
@@ -62,7 +66,10 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
   const long = text.value.length >= LONG;
   const read = understood.value;
   const open = read?.columns.filter((column) => column.question !== "") ?? [];
-  const known = read?.changes.filter((row) => !row.new).length ?? 0;
+  // What is here already and stays as it is is in no list of changes.
+  const fresh = read?.changes.filter((row) => row.new).length ?? 0;
+  const known = (read?.rows.length ?? 0) - fresh;
+  const changed = (read?.changes.length ?? 0) - fresh;
   const ready = read !== null && open.length === 0 && read.rows.length > 0;
   return (
     <dialog class="sheet-of-paper" aria-labelledby="paste-title" ref={dialog} onClose={close}>
@@ -118,7 +125,8 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
           <>
             <table class="plain">
               <caption>
-                {read.rows.length} rows{known > 0 && `, ${known} of them already here by their id`}, understood as
+                {many(read.rows.length)}
+                {known > 0 && `, ${known} of them already here`}, understood as
               </caption>
               <thead>
                 <tr>
@@ -170,8 +178,14 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
         )}
       </div>
       <p class="actions">
-        <button type="button" class="button button-main" disabled={!ready} onClick={() => take("add") && close()}>
-          {known > 0 ? `Update ${known}, add ${(read?.rows.length ?? 0) - known}` : `Add ${read?.rows.length ?? 0} rows`}
+        <button type="button" class="button button-main" disabled={!ready || fresh + changed === 0} onClick={() => take("add") && close()}>
+          {fresh === 0 && known > 0
+            ? changed > 0
+              ? `Update ${many(changed)}`
+              : "Nothing differs"
+            : changed > 0
+              ? `Update ${changed}, add ${many(fresh)}`
+              : `Add ${many(fresh)}`}
         </button>
         <button type="button" class="button" disabled={!ready} onClick={() => take("replace") && close()}>
           Replace all points by them
@@ -182,7 +196,7 @@ export function PasteDialog({ close }: { close: () => void }): JSX.Element {
 
   function take(how: "add" | "replace"): boolean {
     const rows = understood.peek()?.rows ?? [];
-    change(how === "add" ? `add ${rows.length} rows` : `replace all points by ${rows.length} rows`, (before) => ({
+    change(how === "add" ? `read ${many(rows.length)}` : `replace all points by ${many(rows.length)}`, (before) => ({
       ...before,
       data: { ...before.data, rows: how === "replace" ? rows : merged(before.data.rows, rows) },
     }));
