@@ -29,6 +29,7 @@ export function drawMarks(plot: Surface, marks: readonly Mark[]): void {
   ctx.clip();
   ctx.lineWidth = (many ? 0.75 : 1.25) * ratio;
   ctx.lineJoin = "round";
+  ctx.setLineDash([]);
   for (const kind of ["out", "used", "running"] as const) {
     const shown = placed(plot, marks, kind, many ? 2 * ratio : 0);
     if (shown.length === 0) continue;
@@ -116,6 +117,7 @@ export function drawBars(plot: Surface, bars: readonly { x: number; y: number; s
   const ratio = devicePixelRatio;
   const half = 4 * ratio;
   ctx.save();
+  ctx.setLineDash([]);
   ctx.beginPath();
   ctx.rect(plot.bbox.left, plot.bbox.top, plot.bbox.width, plot.bbox.height);
   ctx.clip();
@@ -155,6 +157,7 @@ export function drawBand(plot: Surface, low: number, high: number, colour: strin
 export function drawPath(plot: Surface, xs: ArrayLike<number>, ys: ArrayLike<number>): void {
   const { ctx, bbox } = plot;
   ctx.save();
+  ctx.setLineDash([]);
   ctx.beginPath();
   ctx.rect(bbox.left, bbox.top, bbox.width, bbox.height);
   ctx.clip();

@@ -16,6 +16,8 @@ export function listen(box: HTMLElement): () => void {
   let pinch: { gap: number; middle: number } | null = null;
   let start: number | null = null;
   let lastTap = 0;
+  /** Where a single finger came down, as long as it may still be a tap. */
+  let tap: number | null = null;
 
   const share = (clientX: number): number => {
     const { left, width } = box.getBoundingClientRect();
@@ -38,6 +40,7 @@ export function listen(box: HTMLElement): () => void {
       return;
     }
     fingers.set(event.pointerId, event.clientX);
+    tap = fingers.size === 1 ? event.clientX : null;
     if (fingers.size === 2) pinch = spread();
     else point(event);
   };
@@ -51,6 +54,7 @@ export function listen(box: HTMLElement): () => void {
       return;
     }
     if (!fingers.has(event.pointerId)) return;
+    if (tap !== null && Math.abs(event.clientX - tap) > CLICK_PX) tap = null;
     fingers.set(event.pointerId, event.clientX);
     if (fingers.size === 2 && pinch !== null) {
       const now = spread();
@@ -71,10 +75,9 @@ export function listen(box: HTMLElement): () => void {
       }
       return;
     }
-    const wasOne = fingers.size === 1;
     fingers.delete(event.pointerId);
     pinch = null;
-    if (!wasOne || event.type === "pointercancel") return;
+    if (tap === null || event.type === "pointercancel") return;
     if (event.timeStamp - lastTap < DOUBLE_TAP_MS) doubled(event);
     lastTap = event.timeStamp;
   };

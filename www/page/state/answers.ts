@@ -66,6 +66,8 @@ export interface FitView {
   pulls: [string, number][];
   /** The data it was fitted to, to tell a new point from a moved slider. */
   dataKey: unknown;
+  /** Which sheet and which free parameters: only then can two fits be compared. */
+  fitKey: string;
   /** Text of each fitted value by its path in the sheet, for "take these values". */
   texts: Record<string, string>;
   warnings: Warning[];

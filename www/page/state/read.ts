@@ -84,12 +84,16 @@ export function readFit({ body }: Reply, sheet: Sheet): void {
     unit: parameter.unit,
     atLimit: parameter.at_limit,
   }));
+  const fitKey = JSON.stringify([sheet.title, sheet.model.resonances.length, parameters.map(({ id, unit }) => [id, unit])]);
   batch(() => {
     const last = answers.fit.peek();
-    if (last !== null && last.dataKey !== sheet.data) answers.fitBefore.value = last;
+    // Only the same fit of the same sheet can have moved.
+    if (last?.fitKey !== fitKey) answers.fitBefore.value = null;
+    else if (last.dataKey !== sheet.data) answers.fitBefore.value = last;
     answers.fit.value = {
       parameters,
       dataKey: sheet.data,
+      fitKey,
       correlation: body.correlation,
       statistic: body.statistic,
       degrees: body.degrees_of_freedom,
