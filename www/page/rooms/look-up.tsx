@@ -48,7 +48,7 @@ export function LookUpRoom(): JSX.Element {
           asks={[
             { key: "mass", label: "Mass", example: "2874.2 MeV" },
             { key: "spin", label: "Spin of the wave", example: "1" },
-            { key: "product", label: "B_in · B_f".replace(/_/g, ""), example: "4e-5" },
+            { key: "product", label: "Bin · Bf", example: "4e-5" },
           ]}
           first={{ mass: state?.mass ?? "", spin: "1", product: productOf(now) }}
           what={({ mass = "", spin = "", product = "" }) => (mass === "" || spin === "" || product === "" ? null : { of: "peak", mass, spin, product })}
