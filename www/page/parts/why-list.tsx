@@ -48,7 +48,7 @@ export function WhyList({ of, inputs, children }: WhyListProps): JSX.Element {
 /** A number with all that is behind it. */
 export function Explained(props: WhyListProps & { title?: string; value: ComponentChildren }): JSX.Element {
   return (
-    <Why title={props.title ?? capital(props.of)} value={props.value}>
+    <Why title={capital(props.title ?? props.of)} value={props.value}>
       <WhyList {...props} />
     </Why>
   );
