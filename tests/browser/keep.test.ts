@@ -8,6 +8,7 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { engines, open } from "./support/engines";
 import { enter, field, settled, text, type, until } from "./support/hand";
 import { fromFile, load } from "./support/page";
+import { afresh } from "./support/speed";
 
 /** Only Chromium's driver can put a script before the page's own. */
 const withStorageTaken = engines.filter((engine) => engine === "chromium");
@@ -31,6 +32,24 @@ describe.each(withStorageTaken)("storage taken away in %s", (engine) => {
     } finally {
       await driver.quit();
     }
+  });
+});
+
+describe.each(engines)("a page that is closed in %s", (engine) => {
+  let driver: WebDriver;
+  beforeAll(async () => {
+    driver = await open(engine);
+    await afresh(driver);
+  });
+  afterAll(() => driver?.quit());
+
+  it("has kept what was typed a moment before, Enter or not", async () => {
+    await driver.findElement(By.css(".data tbody tr:last-child button[aria-label$='is running']")).click();
+    await until(driver, "no running point", "return document.querySelector('.entry input[name=n]') !== null");
+    await type(driver, (await driver.findElement(By.css(".entry input[name=n]"))) as never, "211");
+    await driver.get("about:blank");
+    await load(driver, fromFile);
+    await until(driver, "the count is lost", "return [...document.querySelectorAll('.data tbody tr:last-child input')].some((input) => input.value === '211')");
   });
 });
 

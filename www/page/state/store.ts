@@ -23,6 +23,8 @@ const DATABASE = "widthwise";
 const STORE = "versions";
 const FALLBACK = "widthwise.newest.1";
 const STILL_MS = 400;
+/** Even while the typing goes on, nothing is older than this in the store. */
+const LONGEST_MS = 2000;
 /** One version at least this often is kept for good (up to KEPT); those between replace each other. */
 const STEP_MS = 120_000;
 const KEPT = 200;
@@ -43,7 +45,13 @@ const channel = typeof BroadcastChannel === "undefined" ? null : new BroadcastCh
 export async function openStore(): Promise<Version | null> {
   try {
     database = await openDatabase();
-    versions.value = await all(database);
+    const kept = await all(database);
+    // What a closing page could not wait for went into the other storage, which does not make it wait.
+    const left = readFallback();
+    if (left !== null && !kept.some((version) => version.key === left.key && version.tab === left.tab && version.at >= left.at)) {
+      await put(database, left);
+      versions.value = await all(database);
+    } else versions.value = kept;
   } catch {
     database = null;
     const text = readFallback();
@@ -59,6 +67,7 @@ export async function openStore(): Promise<Version | null> {
 export function keepSaving(): () => void {
   let timer = 0;
   let first = true;
+  let since = 0;
   const stop = effect(() => {
     void revision.value;
     if (!opened.value) return;
@@ -67,28 +76,45 @@ export function keepSaving(): () => void {
       first = false;
       return;
     }
+    if (!unsaved.peek()) since = Date.now();
     unsaved.value = true;
     clearTimeout(timer);
-    timer = window.setTimeout(() => void save(now), STILL_MS);
+    timer = window.setTimeout(() => void save(now), Date.now() - since > LONGEST_MS ? 0 : STILL_MS);
   });
-  const leave = (): void => {
+  const hide = (): void => {
     if (!unsaved.peek()) return;
     clearTimeout(timer);
     void save(sheet.peek());
   };
+  const leave = (): void => {
+    // A field that takes its text on leaving it takes it now.
+    if (document.activeElement instanceof HTMLElement) document.activeElement.blur();
+    if (!unsaved.peek()) return;
+    try {
+      localStorage.setItem(FALLBACK, JSON.stringify(versionOf(sheet.peek())));
+    } catch {
+      // Too large or forbidden: the database may still be quick enough.
+    }
+    hide();
+  };
   addEventListener("pagehide", leave);
-  document.addEventListener("visibilitychange", leave);
+  document.addEventListener("visibilitychange", hide);
   return () => {
     stop();
     removeEventListener("pagehide", leave);
-    document.removeEventListener("visibilitychange", leave);
+    document.removeEventListener("visibilitychange", hide);
   };
 }
 
-async function save(now: Sheet): Promise<void> {
+function versionOf(now: Sheet): Version {
   const at = Date.now();
   const fresh = current === null || at - current.key > STEP_MS;
-  const version: Version = { key: fresh ? at : (current?.key ?? at), at, tab: TAB, title: now.title, text: JSON.stringify(now) };
+  return { key: fresh ? at : (current?.key ?? at), at, tab: TAB, title: now.title, text: JSON.stringify(now) };
+}
+
+async function save(now: Sheet): Promise<void> {
+  const version = versionOf(now);
+  const { at } = version;
   try {
     if (database !== null) await put(database, version);
     else localStorage.setItem(FALLBACK, JSON.stringify(version));
