@@ -1,0 +1,235 @@
+//! Requests of every kind.
+
+use crate::choices::Choices;
+use crate::sheets::{self, Mood};
+use serde_json::{Value, json};
+use widthwise_sheet::requests::{Request, energy_range};
+use widthwise_sheet::{doc::Sheet, json as file};
+
+/// Kinds of requests, as they are named in JSON; [`kind`] keeps the list whole.
+pub const KINDS: [&str; 19] = [
+    "tables",
+    "open",
+    "check",
+    "curve",
+    "cursor",
+    "convert",
+    "points",
+    "fit",
+    "plan",
+    "read_table",
+    "write_table",
+    "intervals",
+    "profile",
+    "contour",
+    "solutions",
+    "influence",
+    "trials",
+    "summary",
+    "window",
+];
+
+/// The name of a request's kind. A new kind does not compile until it is named here and drawn below.
+#[must_use]
+pub fn kind(request: &Request) -> &'static str {
+    match request {
+        Request::Tables => "tables",
+        Request::Open { .. } => "open",
+        Request::Check { .. } => "check",
+        Request::Curve { .. } => "curve",
+        Request::Cursor { .. } => "cursor",
+        Request::Convert { .. } => "convert",
+        Request::Points { .. } => "points",
+        Request::Fit { .. } => "fit",
+        Request::Plan { .. } => "plan",
+        Request::ReadTable { .. } => "read_table",
+        Request::WriteTable { .. } => "write_table",
+        Request::Intervals { .. } => "intervals",
+        Request::Profile { .. } => "profile",
+        Request::Contour { .. } => "contour",
+        Request::Solutions { .. } => "solutions",
+        Request::Influence { .. } => "influence",
+        Request::Trials { .. } => "trials",
+        Request::Summary { .. } => "summary",
+        Request::Window { .. } => "window",
+    }
+}
+
+/// A request as JSON; small enough to be answered in a moment.
+pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
+    let sheet = sheets::sheet(mood, c);
+    let (low, high) = range(&sheet);
+    let energy = |c: &mut Choices| {
+        if mood == Mood::Wild && c.rarely(8) {
+            c.any_double()
+        } else {
+            low + (high - low) * (1.4 * c.fraction() - 0.2)
+        }
+    };
+    let free: Vec<&str> = sheet
+        .pointer("/fit/free")
+        .and_then(Value::as_array)
+        .into_iter()
+        .flatten()
+        .filter_map(Value::as_str)
+        .collect();
+    let id = |c: &mut Choices| {
+        if free.is_empty() {
+            "r1.mass".to_owned()
+        } else {
+            (*c.one(&free)).to_owned()
+        }
+    };
+    match kind {
+        "tables" => json!({ "kind": kind }),
+        "open" => json!({ "kind": kind, "text": sheet.to_string() }),
+        "curve" => {
+            let (a, b) = (energy(c), energy(c));
+            let (from, to) = if mood == Mood::Calm {
+                (a.min(b), a.max(b))
+            } else {
+                (a, b)
+            };
+            let points = c.below(40) + if mood == Mood::Calm { 2 } else { 0 };
+            json!({ "kind": kind, "sheet": sheet, "from_gev": finite(from), "to_gev": finite(to), "points": points })
+        }
+        "cursor" => json!({ "kind": kind, "sheet": sheet, "w_gev": finite(energy(c)) }),
+        "convert" => {
+            let from = *c.one(&["w", "total_energy", "kinetic_energy", "momentum"]);
+            let unit = *c.one(&["GeV", "MeV", "GeV/c", "eV", ""]);
+            let value = format!("{:e} {unit}", energy(c));
+            json!({ "kind": kind, "sheet": sheet, "from": from, "value": value })
+        }
+        "plan" => json!({ "kind": kind, "sheet": sheet, "costs": c.rarely(4) }),
+        "read_table" => {
+            let text = table(&sheet, mood, c);
+            json!({ "kind": kind, "sheet": sheet, "text": text, "answers": [["E", "w"]] })
+        }
+        "write_table" => {
+            json!({ "kind": kind, "sheet": sheet, "table": *c.one(&["rows", "curve", "fit", "log"]) })
+        }
+        "profile" => {
+            json!({ "kind": kind, "parameter": id(c), "sheet": sheet, "places": places(mood, c) })
+        }
+        "contour" => {
+            let (first, second) = (id(c), id(c));
+            json!({ "kind": kind, "sheet": sheet, "first": first, "second": second, "places": places(mood, c) })
+        }
+        "trials" => {
+            let range = json!({ "seed": c.below(1 << 20), "first": c.below(1 << 20), "count": c.below(4), "profiles": c.rarely(4) });
+            json!({ "kind": kind, "sheet": sheet, "range": range })
+        }
+        "summary" => {
+            let count = free.len() + usize::from(mood == Mood::Wild && c.rarely(4));
+            let rows: Vec<Value> = (0..c.below(5)).map(|k| trial(k, count, c)).collect();
+            json!({ "kind": kind, "sheet": sheet, "rows": rows })
+        }
+        "window" => {
+            let (a, b) = (energy(c), energy(c));
+            let window = json!({ "from_gev": finite(a.min(b)), "to_gev": finite(a.max(b)), "masses": c.below(6) + 2, "trials": c.below(12), "seed": c.below(99) });
+            json!({ "kind": kind, "sheet": sheet, "window": window })
+        }
+        _ => json!({ "kind": kind, "sheet": sheet }),
+    }
+}
+
+/// A row of trials, as a page may have kept it.
+fn trial(k: usize, parameters: usize, c: &mut Choices) -> Value {
+    let values: Vec<f64> = (0..parameters).map(|_| 4.0 * c.fraction()).collect();
+    let errors: Vec<Option<f64>> = (0..parameters)
+        .map(|_| (!c.rarely(5)).then(|| c.fraction()))
+        .collect();
+    json!({ "k": k, "converged": !c.rarely(5), "statistic": 20.0 * c.fraction(), "values": values, "errors": errors, "rise_at_truth": [] })
+}
+
+/// JSON has no infinity: a number that is none becomes one that no limit allows.
+fn finite(value: f64) -> f64 {
+    if value.is_finite() { value } else { -1e300 }
+}
+
+fn places(mood: Mood, c: &mut Choices) -> usize {
+    if mood == Mood::Calm {
+        8 + c.below(5)
+    } else {
+        c.below(16)
+    }
+}
+
+/// The range of W of a sheet that can be computed with.
+fn range(sheet: &Value) -> (f64, f64) {
+    let open = |sheet: &Value| -> Option<(f64, f64)> {
+        let sheet: Sheet = file::open(&sheet.to_string()).ok()?;
+        energy_range(&sheet).ok()
+    };
+    open(sheet).unwrap_or((2.8, 3.3))
+}
+
+/// Separators, heads and cells of a pasted table.
+const SEPARATORS: [&str; 4] = [",", ";", "\t", "  "];
+const HEADS: [&str; 16] = [
+    "id",
+    "W [GeV]",
+    "E (MeV)",
+    "E",
+    "setting",
+    "n",
+    "counts",
+    "L [nb-1]",
+    "luminosity (pb^-1)",
+    "eff [%]",
+    "sigma [nb]",
+    "err [nb]",
+    "live time [h]",
+    "start",
+    "comment",
+    "fill",
+];
+
+/// A table: the sheet's rows as we write them, perhaps damaged, or made of heads and cells.
+pub fn table(sheet: &Value, mood: Mood, c: &mut Choices) -> String {
+    if c.rarely(2) {
+        let request = json!({ "kind": "write_table", "sheet": sheet, "table": "rows" });
+        let text = serde_json::from_value::<Request>(request)
+            .ok()
+            .and_then(|request| widthwise_sheet::requests::answer(&request, &mut |_, _| ()).ok())
+            .and_then(|reply| match reply.body {
+                widthwise_sheet::requests::Body::Text { text } => Some(text),
+                _ => None,
+            })
+            .unwrap_or_default();
+        if mood == Mood::Calm || !c.rarely(2) {
+            return text;
+        }
+        // Cut at a character.
+        let cut = c.below(text.len() + 1);
+        return text.chars().take(cut).collect();
+    }
+    let separator = *c.one(&SEPARATORS);
+    let columns = c.below(6) + 1;
+    let line = |cells: Vec<String>| cells.join(separator) + "\n";
+    let mut text = line((0..columns).map(|_| (*c.one(&HEADS)).to_owned()).collect());
+    for _ in 0..c.below(8) {
+        let cells = (0..columns).map(|_| cell(mood, c)).collect();
+        text.push_str(&line(cells));
+    }
+    text
+}
+
+fn cell(mood: Mood, c: &mut Choices) -> String {
+    match c.below(5) {
+        0 => c.below(1000).to_string(),
+        1 => format!("{:.4}", 2.8 + 0.1 * c.fraction()),
+        2 => format!("{:.3} MeV", 2800.0 + 100.0 * c.fraction()),
+        3 if mood == Mood::Wild => crate::numbers::strange(c),
+        3 => "19.6(4)".to_owned(),
+        _ => format!("\"{}\"", c.text(6).replace('"', "\"\"")),
+    }
+}
+
+/// The request itself, or why it is none.
+///
+/// # Errors
+/// What serde says.
+pub fn read(value: Value) -> Result<Request, serde_json::Error> {
+    serde_json::from_value(value)
+}
