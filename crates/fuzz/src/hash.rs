@@ -47,7 +47,9 @@ impl Print {
             }
             Value::Object(map) => {
                 self.byte(b'{');
-                let mut entries: Vec<_> = map.iter().filter(|(_, inner)| !inner.is_null()).collect();
+                // JSON has no NaN: it is null, and what is null counts as absent.
+                let mut entries: Vec<_> =
+                    map.iter().filter(|(_, inner)| !inner.is_null()).collect();
                 entries.sort_by_key(|(key, _)| *key);
                 for (key, inner) in entries {
                     self.bytes(b'k', key.as_bytes());

@@ -20,7 +20,11 @@ fn main() -> ExitCode {
         ["golden", file] => golden_to(Path::new(file)),
         ["replay"] => replay(),
         ["run", name, options @ ..] => match find(name) {
-            Some(target) => run(target, option(options, "--seconds", 600), option(options, "--seed", 1)),
+            Some(target) => run(
+                target,
+                option(options, "--seconds", 600),
+                option(options, "--seed", 1),
+            ),
             None => Err(format!("no target {name}")),
         },
         _ => {
@@ -48,10 +52,16 @@ fn option(options: &[&str], name: &str, default: u64) -> u64 {
 
 fn golden_to(file: &Path) -> Result<(), String> {
     let answered = golden::answered();
-    let told = answered.iter().filter(|one| one["answered"] == true).count();
+    let told = answered
+        .iter()
+        .filter(|one| one["answered"] == true)
+        .count();
     let text = serde_json::to_string(&answered).map_err(|error| error.to_string())?;
     std::fs::write(file, text).map_err(|error| format!("{}: {error}", file.display()))?;
-    println!("{} requests, {told} answered, the others refused", answered.len());
+    println!(
+        "{} requests, {told} answered, the others refused",
+        answered.len()
+    );
     Ok(())
 }
 
@@ -59,7 +69,8 @@ fn replay() -> Result<(), String> {
     for (name, target) in TARGETS {
         let files = corpus::files(name);
         for file in &files {
-            let data = std::fs::read(file).map_err(|error| format!("{}: {error}", file.display()))?;
+            let data =
+                std::fs::read(file).map_err(|error| format!("{}: {error}", file.display()))?;
             tried(target, &data).map_err(|what| format!("{}: {what}", file.display()))?;
         }
         println!("{name}: {} inputs", files.len());
@@ -84,7 +95,10 @@ fn tried(target: fn(&[u8]), data: &[u8]) -> Result<f64, String> {
 }
 
 fn run((name, target): Target, seconds: u64, seed: u64) -> Result<(), String> {
-    let kept: Vec<Vec<u8>> = corpus::files(name).iter().filter_map(|file| std::fs::read(file).ok()).collect();
+    let kept: Vec<Vec<u8>> = corpus::files(name)
+        .iter()
+        .filter_map(|file| std::fs::read(file).ok())
+        .collect();
     let found = PathBuf::from("target/fuzz").join(name);
     std::fs::create_dir_all(&found).map_err(|error| error.to_string())?;
     let end = Instant::now() + Duration::from_secs(seconds);
@@ -109,7 +123,11 @@ fn run((name, target): Target, seconds: u64, seed: u64) -> Result<(), String> {
         slowest.0,
         memory()
     );
-    if bad == 0 { Ok(()) } else { Err(format!("{name}: {bad} bad inputs")) }
+    if bad == 0 {
+        Ok(())
+    } else {
+        Err(format!("{name}: {bad} bad inputs"))
+    }
 }
 
 /// Fresh bytes, or a kept input changed in a few places.

@@ -161,6 +161,22 @@ fn near(now: f64, limit: &Limit, c: &mut Choices) -> f64 {
     allowed(value, limit)
 }
 
+/// Within a few per cent of what stands there; `None` where no number stands.
+pub fn close(path: &str, now: &str, c: &mut Choices) -> Option<String> {
+    let limit = limits(path)
+        .into_iter()
+        .find(|limit| read(now, limit.dimension).is_ok())?;
+    let value = read(now, limit.dimension).ok()?.value;
+    let part = if limit.largest > 1e3 && value > 0.5 && limit.dimension == Dimension::Energy {
+        // Energies of a scan lie close together: a hundredth of a per cent leaves the scan a scan.
+        1e-4
+    } else {
+        0.1
+    };
+    let moved = value * (1.0 + part * (2.0 * c.fraction() - 1.0));
+    Some(written(allowed(moved, limit), limit.dimension))
+}
+
 /// Anywhere within a limit, all orders of magnitude alike.
 fn spread_out(limit: &Limit, c: &mut Choices) -> f64 {
     let size = math::pow(10.0, 15.0 * c.fraction() - 11.0);

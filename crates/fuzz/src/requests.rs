@@ -33,7 +33,7 @@ pub const KINDS: [&str; 19] = [
 #[must_use]
 pub fn kind(request: &Request) -> &'static str {
     match request {
-        Request::Tables => "tables",
+        Request::Tables {} => "tables",
         Request::Open { .. } => "open",
         Request::Check { .. } => "check",
         Request::Curve { .. } => "curve",
@@ -57,7 +57,33 @@ pub fn kind(request: &Request) -> &'static str {
 
 /// A request as JSON; small enough to be answered in a moment.
 pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
-    let sheet = sheets::sheet(mood, c);
+    // What fits again and again is asked of problems that people have: extreme ones take minutes.
+    let fits = matches!(
+        kind,
+        "intervals"
+            | "profile"
+            | "contour"
+            | "solutions"
+            | "influence"
+            | "trials"
+            | "window"
+            | "fit"
+            | "plan"
+    );
+    let mut sheet = sheets::sheet(
+        if fits && mood == Mood::Calm {
+            Mood::Still
+        } else {
+            mood
+        },
+        c,
+    );
+    // Many fits of many parameters would make the golden set a matter of minutes.
+    if mood == Mood::Calm
+        && let Some(free) = sheet.pointer_mut("/fit/free").and_then(Value::as_array_mut)
+    {
+        free.truncate(if kind == "fit" { 3 } else { 2 });
+    }
     let (low, high) = range(&sheet);
     let energy = |c: &mut Choices| {
         if mood == Mood::Wild && c.rarely(8) {
@@ -189,7 +215,7 @@ const HEADS: [&str; 16] = [
 pub fn table(sheet: &Value, mood: Mood, c: &mut Choices) -> String {
     if c.rarely(2) {
         let request = json!({ "kind": "write_table", "sheet": sheet, "table": "rows" });
-        let text = serde_json::from_value::<Request>(request)
+        let text = Request::read(request)
             .ok()
             .and_then(|request| widthwise_sheet::requests::answer(&request, &mut |_, _| ()).ok())
             .and_then(|reply| match reply.body {
@@ -224,12 +250,4 @@ fn cell(mood: Mood, c: &mut Choices) -> String {
         3 => "19.6(4)".to_owned(),
         _ => format!("\"{}\"", c.text(6).replace('"', "\"\"")),
     }
-}
-
-/// The request itself, or why it is none.
-///
-/// # Errors
-/// What serde says.
-pub fn read(value: Value) -> Result<Request, serde_json::Error> {
-    serde_json::from_value(value)
 }

@@ -29,10 +29,13 @@ pub fn resolved(node: &'static Value) -> &'static Value {
     if let Some(target) = target {
         return resolved(target);
     }
-    let real = node.get("anyOf").and_then(Value::as_array).and_then(|list| {
-        list.iter()
-            .find(|one| one.get("type").is_none_or(|kind| kind != "null"))
-    });
+    let real = node
+        .get("anyOf")
+        .and_then(Value::as_array)
+        .and_then(|list| {
+            list.iter()
+                .find(|one| one.get("type").is_none_or(|kind| kind != "null"))
+        });
     real.map_or(node, resolved)
 }
 

@@ -8,6 +8,8 @@ use widthwise_sheet::demos::DEMOS;
 /// How far a sheet may stray.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Mood {
+    /// Numbers moved by a little: what people fit.
+    Still,
     /// Numbers within their limits and what the schema allows: nearly all can be computed with.
     Calm,
     /// Also nonsense, near-degenerate numbers, missing and doubled parts.
@@ -26,11 +28,11 @@ pub fn sheet(mood: Mood, c: &mut Choices) -> Value {
     let (_, text) = c.one(&DEMOS);
     let mut sheet: Value = serde_json::from_str(text).expect("examples are JSON");
     let most = match mood {
-        Mood::Calm => 3,
+        Mood::Still | Mood::Calm => 3,
         Mood::Wild => 8,
     };
-    // Few rows make most requests quick, and a fit of few points is the harder case.
-    if c.rarely(2) {
+    // Few rows: a fit of few points is the harder case.
+    if mood == Mood::Wild && c.rarely(2) {
         let keep = c.below(6) + 2;
         if let Some(rows) = sheet
             .pointer_mut("/data/rows")
@@ -59,6 +61,14 @@ fn change(sheet: &mut Value, mood: Mood, c: &mut Choices) {
     let Some(place) = sheet.pointer_mut(&site.pointer) else {
         return;
     };
+    if mood == Mood::Still {
+        if let Value::String(text) = place
+            && let Some(moved) = numbers::close(&site.path, text, c)
+        {
+            *text = moved;
+        }
+        return;
+    }
     if mood == Mood::Wild && c.rarely(3) {
         disturb(place, &site, &neighbours, c);
         return;
@@ -129,13 +139,7 @@ fn disturb(place: &mut Value, site: &Site, neighbours: &[String], c: &mut Choice
     }
 }
 
-fn collect(
-    value: &Value,
-    node: &'static Value,
-    path: &str,
-    pointer: &str,
-    sites: &mut Vec<Site>,
-) {
+fn collect(value: &Value, node: &'static Value, path: &str, pointer: &str, sites: &mut Vec<Site>) {
     let node = schema::resolved(node);
     sites.push(Site {
         path: path.to_owned(),

@@ -80,7 +80,7 @@ pub fn request_drawn(data: &[u8]) {
 }
 
 fn ask(value: Value) {
-    if let Ok(request) = requests::read(value) {
+    if let Ok(request) = Request::read(value) {
         check_answer(&request, answer(&request, &mut |_, _| ()));
     }
 }
@@ -89,7 +89,10 @@ fn check_answer(request: &Request, answer: Result<Reply, Refusal>) {
     match answer {
         Err(refusal) => says_something(&refusal),
         Ok(reply) => {
-            let length = reply.columns.first().map_or(0, |column| column.values.len());
+            let length = reply
+                .columns
+                .first()
+                .map_or(0, |column| column.values.len());
             if let Request::Curve { .. } = request {
                 for column in &reply.columns {
                     assert_eq!(column.values.len(), length, "{}", column.name);

@@ -17,18 +17,51 @@ pub fn product() -> PathBuf {
 /// Builds everything that goes into the single file, and the file.
 pub fn dist() -> Outcome<PathBuf> {
     fetch::npm_packages()?;
-    let engine = engine()?;
+    engine()?;
     say("building the page");
-    let out = product();
+    let out = assemble(&product())?;
+    say(format!("wrote {}", out.display()));
+    Ok(out)
+}
+
+/// Bundles the page and puts it together with the engine that was built last.
+pub fn assemble(out: &Path) -> Outcome<PathBuf> {
     let mut build = shell::program("node");
     build
         .current_dir(shell::root().join("www"))
         .args(["build/build.mjs", "--engine"])
-        .arg(engine);
-    build.arg("--out").arg(&out).args(["--version", &version()]);
+        .arg(shell::target().join("wasm-pkg"));
+    build.arg("--out").arg(out).args(["--version", &version()]);
     shell::run(&mut build)?;
-    say(format!("wrote {}", out.display()));
-    Ok(out)
+    Ok(out.to_path_buf())
+}
+
+/// Builds the product of the present commit a second time, from a clone elsewhere with nothing built, and
+/// compares the bytes.
+pub fn reproduce() -> Outcome {
+    let clone = shell::target().join("reproduce");
+    if clone.exists() {
+        std::fs::remove_dir_all(&clone).map_err(|error| error.to_string())?;
+    }
+    let mut git = shell::program("git");
+    shell::run(git.args(["clone", "--quiet", "."]).arg(&clone))?;
+    let changed = shell::run_quietly(shell::program("git").args(["status", "--porcelain"]))?;
+    if !changed.is_empty() {
+        return Err("commit first: a commit is what is reproduced".to_owned());
+    }
+    let first = dist()?;
+    say("the same commit once more, from a clone");
+    let mut again = shell::cargo();
+    again.current_dir(&clone).args(["xtask", "dist"]);
+    again.env("CARGO_TARGET_DIR", clone.join("target"));
+    shell::run(&mut again)?;
+    let read = |path: PathBuf| std::fs::read(path).map_err(|error| error.to_string());
+    if read(first)? == read(clone.join("target/dist/widthwise.html"))? {
+        say("the same bytes");
+        Ok(())
+    } else {
+        Err("the two files differ".to_owned())
+    }
 }
 
 /// The WebAssembly with its JavaScript side; the answer is its folder.

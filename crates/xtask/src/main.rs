@@ -23,7 +23,8 @@ cargo xtask page                           the browser tests in Chromium (--all:
 cargo xtask types                          rewrite the TypeScript types of requests and answers, and the JSON Schema
 cargo xtask tidy                           the rules of the house
 cargo xtask validate                       rerun the independent reference scripts and compare
-cargo xtask bench                          one table: native, WebAssembly, independent peer
+cargo xtask bench                          one table: native, WebAssembly, independent peer, recorded ratios (--record, --details)
+cargo xtask reproduce                      build this commit twice, the second time from a clone, and compare
 cargo xtask shots                          screenshots of every width and theme into target/shots
 ";
 
@@ -36,6 +37,7 @@ fn main() -> std::process::ExitCode {
         Some((&"dist", [])) => build::dist().map(|_| ()),
         Some((&"page", rest)) => suites::page(rest),
         Some((&"fetch", [])) => fetch::everything(),
+        Some((&"reproduce", [])) => build::reproduce(),
         Some((&"types", [])) => build::generated(),
         Some((&"tidy", [])) => tidy::report(),
         Some((&"validate", rest)) => bench::validate(rest),

@@ -14,6 +14,7 @@ pub fn test() -> Outcome {
     let start = Instant::now();
     let mut tally = Tally::default();
     rules(&mut tally);
+    dependencies(&mut tally);
     native(&mut tally);
     generated(&mut tally);
     say("the same tests of core and sheet on WebAssembly");
@@ -83,6 +84,25 @@ fn rules(tally: &mut Tally) {
         "warnings",
     ]);
     tally.check("lints (cargo clippy)", shell::run(&mut clippy));
+    say("documentation");
+    let mut doc = shell::cargo();
+    doc.args([
+        "doc",
+        "--quiet",
+        "--workspace",
+        "--no-deps",
+        "--all-features",
+    ])
+    .env("RUSTDOCFLAGS", "-D warnings");
+    tally.check("documentation (cargo doc)", shell::run(&mut doc));
+}
+
+/// Licences, duplicates and number of what others have written.
+fn dependencies(tally: &mut Tally) {
+    say("dependencies of the product");
+    let result = fetch::npm_packages()
+        .and_then(|()| shell::run_kept(shell::program("node").arg("tests/house/dependencies.mjs")));
+    record(tally, "dependencies of the product", result);
 }
 
 fn native(tally: &mut Tally) {
@@ -136,6 +156,10 @@ fn web(tally: &mut Tally) {
         Ok(product) => product,
         Err(message) => return tally.check("the single file", Err(message)),
     };
+    tally.check(
+        "the same commit gives the same file",
+        assembled_again(&product),
+    );
     say("types of page and worker");
     let www = shell::root().join("www");
     let bin = www.join("node_modules/.bin");
@@ -162,6 +186,18 @@ fn web(tally: &mut Tally) {
     );
 }
 
+/// Assembles the file a second time; what is compiled once is compared by `cargo xtask reproduce`.
+fn assembled_again(product: &Path) -> Outcome {
+    let read = |path: &Path| std::fs::read(path).map_err(|error| error.to_string());
+    let before = read(product)?;
+    let again = build::assemble(&shell::target().join("again/widthwise.html"))?;
+    if read(&again)? == before {
+        Ok(())
+    } else {
+        Err("two assemblies of the same parts differ".to_owned())
+    }
+}
+
 /// Runs files of tests/browser against the built file; `only` narrows the choice.
 pub fn in_browsers(product: &Path, engines: &str, only: &[&str]) -> Outcome<(bool, String)> {
     let mut path = Vec::new();
@@ -182,8 +218,24 @@ pub fn in_browsers(product: &Path, engines: &str, only: &[&str]) -> Outcome<(boo
     vitest
         .env("WIDTHWISE_PAGE", product)
         .env("WIDTHWISE_BROWSERS", engines)
+        .env("WIDTHWISE_GOLDEN", golden()?)
         .env("PATH", shell::path_with(&path)?);
     shell::run_kept(&mut vitest)
+}
+
+/// The golden set with its native answers; the test that makes it is one of the native suite.
+fn golden() -> Outcome<PathBuf> {
+    say("the golden set, natively");
+    // The whole workspace, as the native suite builds it: nothing is built twice.
+    shell::run_quietly(shell::cargo().args([
+        "test",
+        "--quiet",
+        "--workspace",
+        "--test",
+        "promises",
+        "golden",
+    ]))?;
+    Ok(shell::target().join("tmp/golden.json"))
 }
 
 /// Independent scripts against the batch program.

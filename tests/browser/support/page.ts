@@ -91,3 +91,24 @@ export async function inPage<T>(driver: WebDriver, body: string, ...values: unkn
   if (outcome.error) throw Object.assign(new Error(outcome.error), { refusal: outcome.refusal });
   return outcome.value;
 }
+
+/** The least that a page can do: a line on a canvas. */
+export const EMPTY = `<!doctype html><title>empty</title><canvas id="c"></canvas><script>
+  requestAnimationFrame(() => {
+    const pen = document.getElementById("c").getContext("2d");
+    pen.lineTo(9, 9);
+    pen.stroke();
+    performance.mark("first-plot");
+  });
+</script>`;
+
+/** Time from the start of loading to the first curve, ms: the median of several loads. */
+export async function firstPlot(driver: WebDriver, url: string, loads: number): Promise<number> {
+  const times: number[] = [];
+  for (let k = 0; k < loads; k += 1) {
+    await driver.get(url);
+    const mark = "return performance.getEntriesByName('first-plot')[0]?.startTime ?? 0";
+    times.push(Number(await driver.wait(() => driver.executeScript<number>(mark), 30_000, "no first plot")));
+  }
+  return times.sort((a, b) => a - b)[loads >> 1] ?? Number.NaN;
+}

@@ -1,11 +1,12 @@
 // Times requests through the page's worker, as a person's browser runs them: reads
-// WIDTHWISE_REQUESTS (a list of { name, request }), writes WIDTHWISE_OUT (lines "name TAB milliseconds").
+// WIDTHWISE_REQUESTS (a sheet and a list of { name, patch, request }), writes WIDTHWISE_OUT (lines "name TAB milliseconds").
 import { readFileSync, writeFileSync } from "node:fs";
+import { pathToFileURL } from "node:url";
 import { By } from "selenium-webdriver";
 import { expect, it } from "vitest";
 import { open } from "../support/engines";
 import { enter } from "../support/hand";
-import { fromFile, inPage, load } from "../support/page";
+import { EMPTY, firstPlot, fromFile, inPage, load } from "../support/page";
 import { afresh, longTasks, quantile, sliderToCurve, tenThousand, watchLongTasks } from "../support/speed";
 
 const file = (name: string): string => {
@@ -14,8 +15,26 @@ const file = (name: string): string => {
   return path;
 };
 
+interface Timed {
+  name: string;
+  patch?: object;
+  /** Problems solved by one request. */
+  times?: number;
+  request: object;
+}
+
+/** A copy changed by a patch (RFC 7396). */
+function merged(into: unknown, patch: unknown): unknown {
+  if (typeof patch !== "object" || patch === null || Array.isArray(patch)) return patch;
+  const fields: Record<string, unknown> = { ...(into as object) };
+  for (const [key, inner] of Object.entries(patch)) fields[key] = merged(fields[key], inner);
+  return fields;
+}
+
 it("times the requests", async () => {
-  const requests = JSON.parse(readFileSync(file("WIDTHWISE_REQUESTS"), "utf8")) as { name: string; request: unknown }[];
+  const { sheet, requests } = JSON.parse(readFileSync(file("WIDTHWISE_REQUESTS"), "utf8")) as { sheet: object; requests: Timed[] };
+  const empty = `${file("WIDTHWISE_OUT")}.html`;
+  writeFileSync(empty, EMPTY);
   const driver = await open("chromium");
   const times: Record<string, number> = {};
   try {
@@ -34,10 +53,11 @@ it("times the requests", async () => {
     times["page: 10,000 points read"] = read;
     times["page: 10,000 points plotted"] = plotted;
     await driver.get("about:blank");
+    times["empty page"] = await firstPlot(driver, pathToFileURL(empty).href, 7);
+    times["start-up"] = await firstPlot(driver, fromFile, 7);
     await load(driver, fromFile);
-    times["start-up"] = await driver.executeScript<number>("return performance.getEntriesByName('first-plot')[0]?.startTime ?? -1");
-    for (const { name, request } of requests) {
-      times[name] = await inPage<number>(
+    for (const { name, patch = {}, times: problems = 1, request } of requests) {
+      const taken = await inPage<number>(
         driver,
         // One worker alone is asked, so that no second instance warms up in between.
         `const taken = [];
@@ -49,12 +69,13 @@ it("times the requests", async () => {
          }
          taken.sort((a, b) => a - b);
          return taken[taken.length >> 1];`,
-        request,
+        { ...request, sheet: merged(sheet, patch) },
       );
+      times[name] = taken / problems;
     }
   } finally {
     await driver.quit();
   }
   writeFileSync(file("WIDTHWISE_OUT"), Object.entries(times).map((pair) => `${pair.join("\t")}\n`).join(""));
-  expect(Object.keys(times).length).toBe(requests.length + 5);
+  expect(Object.keys(times).length).toBe(requests.length + 6);
 });
