@@ -22,11 +22,13 @@ class Row:
     def __init__(self, quantity, source, unit, tolerance, reason):
         self.quantity, self.source, self.unit, self.tolerance, self.reason = quantity, source, unit, tolerance, reason
         self.values, self.largest, self.at = 0, 0.0, ""
+        self.deviations = []
 
     def take(self, deviation, at):
         d = abs(float(deviation))
         d = float("inf") if np.isnan(d) else d
         self.values += 1
+        self.deviations.append(d)
         if d >= self.largest:
             self.largest, self.at = d, at
 
@@ -35,7 +37,8 @@ class Row:
         return self.values > 0 and self.largest <= self.tolerance
 
     def json(self):
-        return {"quantity": self.quantity, "items": "widthwise-batch", "source": self.source, "unit": self.unit, "tolerance": self.tolerance, "reason": self.reason,
+        place = lambda share: sorted(self.deviations)[min(len(self.deviations) * share // 100, len(self.deviations) - 1)] if self.deviations else 0.0
+        return {"p75": place(75), "p99": place(99), "quantity": self.quantity, "items": "widthwise-batch", "source": self.source, "unit": self.unit, "tolerance": self.tolerance, "reason": self.reason,
                 "values": self.values, "largest": self.largest, "at": self.at}
 
 

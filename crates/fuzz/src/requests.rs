@@ -6,8 +6,8 @@ use serde_json::{Value, json};
 use widthwise_sheet::requests::{Request, energy_range};
 use widthwise_sheet::{doc::Sheet, json as file};
 
-/// Kinds of requests, as they are named in JSON; [`kind`] keeps the list whole.
-pub const KINDS: [&str; 19] = [
+/// Kinds of requests, as they are named in JSON; a test compares the list with the page's types.
+pub const KINDS: [&str; 20] = [
     "tables",
     "open",
     "check",
@@ -27,33 +27,8 @@ pub const KINDS: [&str; 19] = [
     "trials",
     "summary",
     "window",
+    "look_up",
 ];
-
-/// The name of a request's kind. A new kind does not compile until it is named here and drawn below.
-#[must_use]
-pub fn kind(request: &Request) -> &'static str {
-    match request {
-        Request::Tables {} => "tables",
-        Request::Open { .. } => "open",
-        Request::Check { .. } => "check",
-        Request::Curve { .. } => "curve",
-        Request::Cursor { .. } => "cursor",
-        Request::Convert { .. } => "convert",
-        Request::Points { .. } => "points",
-        Request::Fit { .. } => "fit",
-        Request::Plan { .. } => "plan",
-        Request::ReadTable { .. } => "read_table",
-        Request::WriteTable { .. } => "write_table",
-        Request::Intervals { .. } => "intervals",
-        Request::Profile { .. } => "profile",
-        Request::Contour { .. } => "contour",
-        Request::Solutions { .. } => "solutions",
-        Request::Influence { .. } => "influence",
-        Request::Trials { .. } => "trials",
-        Request::Summary { .. } => "summary",
-        Request::Window { .. } => "window",
-    }
-}
 
 /// A request as JSON; small enough to be answered in a moment.
 pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
@@ -126,6 +101,7 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
             let value = format!("{:e} {unit}", energy(c));
             json!({ "kind": kind, "sheet": sheet, "from": from, "value": value })
         }
+        "look_up" => json!({ "kind": kind, "what": look_up(mood, c) }),
         "plan" => json!({ "kind": kind, "sheet": sheet, "costs": c.rarely(4) }),
         "read_table" => {
             let text = table(&sheet, mood, c);
@@ -156,6 +132,45 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
             json!({ "kind": kind, "sheet": sheet, "window": window })
         }
         _ => json!({ "kind": kind, "sheet": sheet }),
+    }
+}
+
+/// One of the look-ups with what people type into it.
+fn look_up(mood: Mood, c: &mut Choices) -> Value {
+    let typed = |texts: &[&str], c: &mut Choices| {
+        if mood == Mood::Wild && c.rarely(3) {
+            crate::numbers::strange(c)
+        } else {
+            (*c.one(texts)).to_owned()
+        }
+    };
+    let masses = ["e-", "p", "mu-", "139.57 MeV", "0", "3.1 GeV"];
+    let heavy = ["3.686 GeV", "91.19 GeV", "125 GeV"];
+    let sizes = ["0.26 MeV", "1", "0.02"];
+    match c.below(4) {
+        0 => {
+            json!({ "of": "pair", "first": typed(&masses, c), "second": typed(&masses, c), "w": typed(&heavy, c) })
+        }
+        1 => json!({
+            "of": "coupling",
+            "pseudoscalar": c.rarely(2),
+            "mass": typed(&heavy, c),
+            "fermion": typed(&masses, c),
+            "colours": 1 + c.below(3),
+            "given": *c.one(&["coupling", "width", "lifetime"]),
+            "value": typed(&sizes, c),
+        }),
+        2 => {
+            json!({ "of": "peak", "mass": typed(&heavy, c), "spin": *c.one(&["0", "1/2", "1"]), "product": typed(&sizes, c) })
+        }
+        _ => json!({
+            "of": "rate",
+            "cross_section": typed(&["12 nb", "3 pb"], c),
+            "luminosity": typed(&["1e31 cm^-2 s^-1", "2 nb^-1/h"], c),
+            "efficiency": typed(&["", "0.3", "42 %"], c),
+            "background": typed(&["", "2 /h"], c),
+            "events": typed(&["100", "1e4"], c),
+        }),
     }
 }
 

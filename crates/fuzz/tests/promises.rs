@@ -2,7 +2,7 @@
 #![allow(missing_docs, clippy::unwrap_used)]
 
 use widthwise_fuzz::choices::bytes;
-use widthwise_fuzz::requests::{KINDS, kind, request};
+use widthwise_fuzz::requests::{KINDS, request};
 use widthwise_fuzz::sheets::Mood;
 use widthwise_fuzz::targets::TARGETS;
 use widthwise_fuzz::{choices::Choices, corpus, golden};
@@ -32,10 +32,21 @@ fn fresh_inputs_keep_the_promises() {
 
 #[test]
 fn every_kind_of_request_is_drawn_and_read() {
-    for name in KINDS {
+    let types = include_str!("../../../www/shared/generated/Request.ts");
+    let known: Vec<&str> = types
+        .split("\"kind\": \"")
+        .skip(1)
+        .filter_map(|rest| rest.split('"').next())
+        .collect();
+    assert!(known.len() > 10, "{known:?}");
+    for name in known {
+        assert!(
+            KINDS.contains(&name),
+            "{name} is not drawn: crates/fuzz/src/requests.rs"
+        );
         let data = bytes(3, 4000);
         let drawn = request(name, Mood::Calm, &mut Choices::new(&data));
-        assert_eq!(kind(&Request::read(drawn).unwrap()), name);
+        Request::read(drawn).unwrap();
     }
 }
 

@@ -245,8 +245,9 @@ fn references(tally: &mut Tally) {
         say("independent references");
         shell::run_kept(
             shell::program(python)
-                .arg("tests/reference/check.py")
-                .arg(batch),
+                .arg("tests/reference/validate.py")
+                .arg(batch)
+                .arg("--check"),
         )
     });
     record(tally, "independent references", result);

@@ -11,6 +11,7 @@ import { handOver } from "../hand-over/hand-over";
 import { Icon } from "../parts/icon";
 import { copy, download, fileName, linkOf, openText, saveSheet, tableText } from "../state/files";
 import { blankSheet } from "../state/blank";
+import { Checked } from "./checked";
 import { Compare } from "./compare";
 import { Keys } from "./keys";
 import { open, setField, sheet } from "../state/sheet";
@@ -151,6 +152,7 @@ export function SheetRoom(): JSX.Element {
         )}
       </fieldset>
       <Keys />
+      <Checked />
     </>
   );
 }

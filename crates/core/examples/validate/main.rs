@@ -37,6 +37,13 @@ pub struct Row {
     pub largest: f64,
     /// Where.
     pub at: String,
+    /// All deviations, for the quantiles.
+    #[serde(skip)]
+    deviations: Vec<f64>,
+    /// Three quarters lie below this.
+    pub p75: f64,
+    /// 99 of 100 lie below this.
+    pub p99: f64,
 }
 
 impl Row {
@@ -59,6 +66,9 @@ impl Row {
             values: 0,
             largest: 0.0,
             at: String::new(),
+            deviations: Vec::new(),
+            p75: 0.0,
+            p99: 0.0,
         }
     }
 
@@ -70,6 +80,7 @@ impl Row {
             deviation.abs()
         };
         self.values += 1;
+        self.deviations.push(size);
         if size > self.largest || self.values == 1 {
             self.largest = size;
             self.at = at.into();
@@ -84,6 +95,17 @@ impl Row {
             ours / theirs - 1.0
         };
         self.take(deviation, at);
+    }
+
+    /// The quantiles of what was taken.
+    fn summed_up(mut self) -> Self {
+        self.deviations.sort_by(f64::total_cmp);
+        let share = |share: usize| {
+            let place = self.deviations.len() * share / 100;
+            self.deviations.get(place).copied().unwrap_or(self.largest)
+        };
+        (self.p75, self.p99) = (share(75), share(99));
+        self
     }
 
     fn holds(&self) -> bool {
@@ -125,7 +147,7 @@ fn rows(stride: usize) -> Vec<Row> {
     rows.extend(propagators::rows());
     rows.extend(diagrams::rows());
     rows.extend(statistics::rows());
-    rows
+    rows.into_iter().map(Row::summed_up).collect()
 }
 
 fn main() -> std::process::ExitCode {
