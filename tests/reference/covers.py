@@ -34,6 +34,10 @@ def there_now():
     return {f"{module}::{name}" for module, names in routines().items() for name in names} | {f"request {kind}" for kind in requests()}
 
 
+def unassigned():
+    return json.loads(FILE.read_text())["rows"].get(NOT_ASSIGNED, [])
+
+
 def adopt():
     """Puts what is new into the row of what is not assigned yet, takes out what has gone."""
     kept, there = json.loads(FILE.read_text()), there_now()
