@@ -93,6 +93,7 @@ fn scan() -> Scan {
             .collect(),
         common: CommonErrors::default(),
         covariance_nb2: None,
+        exits: Vec::new(),
     }
 }
 

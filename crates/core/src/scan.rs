@@ -1,8 +1,10 @@
 //! The scan as plain data: everything that the chain, the fit and the plan need to know.
 //! `widthwise-sheet` builds it from the scan sheet; nothing here has been typed by a person.
 
+use crate::amplitude::Region;
 use crate::amplitude::hypothesis::Hypothesis;
 use crate::beam::Beams;
+use crate::error::Answer;
 use serde::{Deserialize, Serialize};
 
 /// How far the measured points are from the Born cross section: where the chain starts.
@@ -76,6 +78,16 @@ pub enum Measured {
         /// (n_off, tau).
         off: Option<(f64, f64)>,
     },
+    /// Events counted in bins of the angle theta of the first final particle against beam 1.
+    Bins {
+        /// The bins, none of which overlap.
+        bins: Vec<CountedBin>,
+    },
+    /// Events counted with the beams apart: background rate alone.
+    BeamsApart {
+        /// n.
+        n: f64,
+    },
     /// A cross section with its Gaussian error, nb.
     CrossSection {
         /// Value, nb.
@@ -83,6 +95,35 @@ pub enum Measured {
         /// Standard error, nb.
         error_nb: f64,
     },
+}
+
+/// Events counted in one angular bin. Backgrounds of the detector are shared out isotropically.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct CountedBin {
+    /// Lower edge.
+    pub from: f64,
+    /// Upper edge.
+    pub to: f64,
+    /// Edges are in |cos theta|, else in cos theta.
+    pub absolute: bool,
+    /// n.
+    pub n: f64,
+    /// Efficiency in this bin if it is not the point's.
+    pub efficiency: Option<f64>,
+}
+
+impl CountedBin {
+    /// The part of the angular range.
+    ///
+    /// # Errors
+    /// Edges that are not in order.
+    pub fn region(&self) -> Answer<Region> {
+        if self.absolute {
+            Region::abs_cos(self.from, self.to)
+        } else {
+            Region::cos(self.from, self.to)
+        }
+    }
 }
 
 /// One row of data, in units of the core.
@@ -110,7 +151,7 @@ pub struct Point {
     pub efficiency: Option<f64>,
     /// Its error.
     pub efficiency_error: f64,
-    /// Exit channel name, if several.
+    /// Name of its exit channel; none: the scan's own hypothesis.
     pub channel: Option<String>,
     /// The measurement.
     pub measured: Measured,
@@ -149,6 +190,22 @@ pub struct CommonErrors {
     pub gaussian_factors: bool,
 }
 
+/// A further exit channel that is fitted together with the scan's own hypothesis: another final
+/// state of the same resonances, or a known peak scanned as a thermometer of offset and spread.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+pub struct Exit {
+    /// As in [`Point::channel`].
+    pub name: String,
+    /// Its cross section.
+    pub hypothesis: Hypothesis,
+    /// Its resonances are the scan's: masses, widths and entrance strengths are common.
+    pub same_resonances: bool,
+    /// Between its cross section and its counts.
+    pub detection: Detection,
+    /// Least W left after radiation, GeV; used where the scan has radiation.
+    pub w_min_gev: Option<f64>,
+}
+
 /// The whole scan.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 pub struct Scan {
@@ -160,6 +217,8 @@ pub struct Scan {
     pub chain: ChainSettings,
     /// Between cross section and counts.
     pub detection: Detection,
+    /// Further exit channels.
+    pub exits: Vec<Exit>,
     /// What the data are.
     pub stage: Stage,
     /// Points in use, in the sheet's order.
@@ -168,4 +227,81 @@ pub struct Scan {
     pub common: CommonErrors,
     /// Covariance of pasted cross sections, nb^2, row by row; replaces the points' own errors.
     pub covariance_nb2: Option<Vec<f64>>,
+}
+
+impl Scan {
+    /// Which exit a point belongs to: 0 the scan's own hypothesis, n the further exit n - 1.
+    #[must_use]
+    pub fn exit_of(&self, point: &Point) -> usize {
+        let name = point.channel.as_deref();
+        self.exits
+            .iter()
+            .position(|e| name == Some(e.name.as_str()))
+            .map_or(0, |i| i + 1)
+    }
+
+    /// Detection of an exit.
+    #[must_use]
+    pub fn detection_of(&self, exit: usize) -> &Detection {
+        exit.checked_sub(1)
+            .and_then(|i| self.exits.get(i))
+            .map_or(&self.detection, |e| &e.detection)
+    }
+
+    /// The scan as one exit sees it: its hypothesis, radiation cut and detection in the place of
+    /// the scan's own, with its points only.
+    #[must_use]
+    pub fn of_exit(&self, exit: usize) -> Self {
+        let mut out = self.clone();
+        out.points.retain(|p| self.exit_of(p) == exit);
+        out.exits.clear();
+        if let Some(e) = exit.checked_sub(1).and_then(|i| self.exits.get(i)) {
+            out.hypothesis = e.hypothesis.clone();
+            out.detection = e.detection.clone();
+            if out.chain.w_min_gev.is_some() && e.w_min_gev.is_some() {
+                out.chain.w_min_gev = e.w_min_gev;
+            }
+        }
+        out
+    }
+
+    /// Which visit each point belongs to, named by the visit's first point: points of different
+    /// channels at one setting of one fill, begun together, are one visit and share its errors.
+    #[must_use]
+    pub fn visits(&self) -> Vec<usize> {
+        visits(&self.points)
+    }
+}
+
+/// [`Scan::visits`] of a list of points.
+#[must_use]
+pub(crate) fn visits(points: &[Point]) -> Vec<usize> {
+    let one_channel = points.windows(2).all(|p| match p {
+        [a, b] => a.channel == b.channel,
+        _ => true,
+    });
+    if one_channel {
+        return (0..points.len()).collect();
+    }
+    let mut out: Vec<usize> = Vec::with_capacity(points.len());
+    for (i, p) in points.iter().enumerate() {
+        let first = out
+            .iter()
+            .zip(points)
+            .enumerate()
+            .find(|(k, (visit, q))| {
+                **visit == *k
+                    && q.w_gev == p.w_gev
+                    && q.w_error_gev == p.w_error_gev
+                    && q.group == p.group
+                    && q.start_h == p.start_h
+                    && !out
+                        .iter()
+                        .zip(points)
+                        .any(|(v, other)| v == k && other.channel == p.channel)
+            })
+            .map_or(i, |(k, _)| k);
+        out.push(first);
+    }
+    out
 }

@@ -65,6 +65,7 @@ fn scan(wave: PartialWave, points: Vec<Point>) -> Scan {
         points,
         common: CommonErrors::default(),
         covariance_nb2: None,
+        exits: Vec::new(),
     }
 }
 

@@ -113,6 +113,7 @@ fn saltmere() -> Scan {
         points,
         common: CommonErrors::default(),
         covariance_nb2: None,
+        exits: Vec::new(),
     }
 }
 

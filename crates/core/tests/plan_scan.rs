@@ -71,6 +71,7 @@ fn saltmere() -> Scan {
         points: Vec::new(),
         common: CommonErrors::default(),
         covariance_nb2: None,
+        exits: Vec::new(),
     }
 }
 

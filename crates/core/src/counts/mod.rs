@@ -83,34 +83,63 @@ pub struct SeenAgainstExpected {
     pub p_value: f64,
 }
 
-/// Compares what a point has seen with `sigma_obs_nb`; `None` if nothing is measured or expected.
+/// Expected counts of a point (cross section: nb) at the observed cross sections of its angular
+/// bins, or its one; `None` if nothing is measured.
+#[must_use]
+pub fn expected(point: &Point, detection: &Detection, sigma_obs_nb: &[f64]) -> Option<f64> {
+    let first = sigma_obs_nb.first().copied();
+    match &point.measured {
+        Measured::Nothing => None,
+        Measured::CrossSection { .. } => first,
+        Measured::Counts { .. } => {
+            first.map(|s| Exposure::of(point, detection).expected(s, detection))
+        }
+        Measured::BeamsApart { .. } => Some(point.live_time_h * detection.rate_bg_per_h),
+        Measured::Bins { bins } => {
+            let all = Exposure::of(point, detection);
+            let usual = point.efficiency.unwrap_or(detection.efficiency);
+            let mut sum = 0.0;
+            for (bin, sigma) in bins.iter().zip(sigma_obs_nb) {
+                let efficiency = bin.efficiency.unwrap_or(usual);
+                sum += all.signal(*sigma) * efficiency / usual;
+                sum += all.background(detection) * bin.region().map_or(0.0, |r| r.fraction());
+            }
+            Some(sum)
+        }
+    }
+}
+
+/// Compares what a point has seen with what its cross sections let expect; `None` if nothing is
+/// measured or expected. Angular bins are compared in their sum.
 #[must_use]
 pub fn compare(
     point: &Point,
     detection: &Detection,
-    sigma_obs_nb: f64,
+    sigma_obs_nb: &[f64],
 ) -> Option<SeenAgainstExpected> {
-    match point.measured {
-        Measured::Nothing => None,
-        Measured::Counts { n, .. } => {
-            let expected = Exposure::of(point, detection).expected(sigma_obs_nb, detection);
-            (expected > 0.0).then(|| SeenAgainstExpected {
-                expected,
-                seen: n,
-                pull: (n - expected) / expected.sqrt(),
-                p_value: poisson_p_value(n, expected),
-            })
+    let expected = expected(point, detection, sigma_obs_nb)?;
+    let n = match &point.measured {
+        Measured::Nothing => return None,
+        Measured::Counts { n, .. } | Measured::BeamsApart { n } => *n,
+        Measured::Bins { bins } => bins.iter().map(|b| b.n).sum(),
+        Measured::CrossSection { sigma_nb, error_nb } => {
+            return (*error_nb > 0.0).then(|| {
+                let pull = (sigma_nb - expected) / error_nb;
+                SeenAgainstExpected {
+                    expected,
+                    seen: *sigma_nb,
+                    pull,
+                    p_value: crate::math::erfc(pull.abs() / core::f64::consts::SQRT_2),
+                }
+            });
         }
-        Measured::CrossSection { sigma_nb, error_nb } => (error_nb > 0.0).then(|| {
-            let pull = (sigma_nb - sigma_obs_nb) / error_nb;
-            SeenAgainstExpected {
-                expected: sigma_obs_nb,
-                seen: sigma_nb,
-                pull,
-                p_value: crate::math::erfc(pull.abs() / core::f64::consts::SQRT_2),
-            }
-        }),
-    }
+    };
+    (expected > 0.0).then(|| SeenAgainstExpected {
+        expected,
+        seen: n,
+        pull: (n - expected) / expected.sqrt(),
+        p_value: poisson_p_value(n, expected),
+    })
 }
 
 #[cfg(test)]
@@ -164,7 +193,7 @@ mod tests {
     fn p_value_of_the_running_point() {
         let mut d = detection();
         d.rate_bg_per_h = 10.0;
-        let seen = compare(&point(5.0, 1.0), &d, 0.0).unwrap();
+        let seen = compare(&point(5.0, 1.0), &d, &[0.0]).unwrap();
         assert!((seen.p_value - 2.0 * 0.067_085_962_879_031_89).abs() < 1e-13);
         assert!((seen.pull + 5.0 / 10.0_f64.sqrt()).abs() < 1e-15);
     }

@@ -42,12 +42,14 @@ pub fn rate_and_gradient(scan: &Scan, ids: &[String], w_gev: &[f64]) -> Answer<R
     observed.stage = Stage::Observed;
     // Points' own sigma_W belong to the points, not to planned energies.
     observed.points.clear();
+    observed.exits.clear();
     let curve = ScanCurve::new(&observed, ids)?;
     let sites: Vec<Site> = w_gev
         .iter()
         .enumerate()
         .map(|(point, &w_gev)| Site {
             point,
+            bin: None,
             w_gev,
             spread_factor: 1.0,
         })

@@ -8,7 +8,7 @@ use crate::error::{Answer, Refusal};
 use crate::math::ln;
 use crate::numerics::minimise::{Tolerance, minimise};
 use crate::numerics::probability::{binomial_interval, chi2_sf, significance};
-use crate::scan::Scan;
+use crate::scan::{Measured, Scan};
 use crate::trials::{Ensemble, TrialSettings};
 use serde::{Deserialize, Serialize};
 
@@ -43,13 +43,19 @@ pub fn compare(
     trials: u64,
     seed: u64,
 ) -> Answer<Comparison> {
-    if let (Hypothesis::PartialWave(a), Hypothesis::PartialWave(b)) =
-        (&null.0.hypothesis, &alternative.0.hypothesis)
-        && a.twice_j != b.twice_j
-    {
+    let (a, b) = (spins(&null.0.hypothesis), spins(&alternative.0.hypothesis));
+    let bins = |scan: &Scan| {
+        let mut measured = scan.points.iter().map(|p| &p.measured);
+        measured.any(|m| matches!(m, Measured::Bins { .. }))
+    };
+    if a != b && !(bins(null.0) && bins(alternative.0)) {
+        let words = |twice: &[u8]| {
+            let all: Vec<String> = twice.iter().map(|j| format!("{j}/2")).collect();
+            all.join(" + ")
+        };
         return Err(Refusal::new(
             "model.j",
-            format!("{}/2 and {}/2", a.twice_j, b.twice_j),
+            format!("J = {} and {}", words(&a), words(&b)),
             "one J, or data in angular bins",
             "a total rate measures (2J+1) B_in B_f: it cannot tell one J from another, only angular bins can",
         ));
@@ -110,6 +116,19 @@ pub fn compare(
     out.trials_interval = Some(binomial_interval(extreme, total, 1.0));
     out.significance = Some(significance(p));
     Ok(out)
+}
+
+/// 2J of the waves of a hypothesis, each once and rising; none where it has no waves.
+fn spins(hypothesis: &Hypothesis) -> Vec<u8> {
+    let mut all = match hypothesis {
+        Hypothesis::PartialWave(wave) => vec![wave.twice_j],
+        Hypothesis::KMatrix(model) => vec![model.twice_j],
+        Hypothesis::Waves(model) => model.waves.iter().map(|w| w.wave.twice_j).collect(),
+        Hypothesis::Diagrams(_) => Vec::new(),
+    };
+    all.sort_unstable();
+    all.dedup();
+    all
 }
 
 /// Whether both have the same terms, so that every parameter of the one means something in the other.

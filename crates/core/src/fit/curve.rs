@@ -26,6 +26,8 @@ pub struct CurveParameter {
 pub struct Site {
     /// Which point (for its own sigma_W and channel).
     pub point: usize,
+    /// Which of its angular bins, if it has any.
+    pub bin: Option<usize>,
     /// W, GeV.
     pub w_gev: f64,
     /// Multiplies the point's sigma_W.

@@ -293,6 +293,7 @@ impl Fitter {
             points.push(FittedPoint {
                 id: problem.points[datum.point].id.clone(),
                 off_region: datum.off_region,
+                bin: datum.bin.clone(),
                 w_gev: prediction.w_gev[datum.point],
                 measured,
                 expected,

@@ -7,6 +7,7 @@ pub mod compare;
 mod contour;
 mod covariance;
 mod curve;
+mod data;
 mod derivatives;
 pub mod derived;
 pub mod equivalent;

@@ -57,13 +57,13 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
     } else {
         points.iter().map(|p| p.w_gev).sum::<f64>() / points.len() as f64
     };
-    let mut add = |name: &str, kind, common, size: &dyn Fn(&Point) -> f64| {
+    let mut add = |name: &str, kind, common, size: &dyn Fn(usize, &Point) -> f64| {
         let effects: Vec<Effect> = points
             .iter()
             .enumerate()
             .map(|(point, p)| Effect {
                 point,
-                size: size(p),
+                size: size(point, p),
             })
             .filter(|e| e.size != 0.0)
             .collect();
@@ -76,16 +76,16 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
             });
         }
     };
-    add("energy offset", Energy, true, &|_| common.energy_gev);
-    add("energy slope", Energy, false, &|p| {
+    add("energy offset", Energy, true, &|_, _| common.energy_gev);
+    add("energy slope", Energy, false, &|_, p| {
         common.energy_slope * p.w_gev
     });
-    add("signal scale", SignalScale, true, &|_| common.scale);
-    add("luminosity", Luminosity, true, &|_| common.luminosity);
-    add("efficiency slope", SignalScale, false, &|p| {
+    add("signal scale", SignalScale, true, &|_, _| common.scale);
+    add("luminosity", Luminosity, true, &|_, _| common.luminosity);
+    add("efficiency slope", SignalScale, false, &|_, p| {
         common.efficiency_slope_per_gev * (p.w_gev - mean_w)
     });
-    add("beam spread", Spread, true, &|_| common.spread);
+    add("beam spread", Spread, true, &|_, _| common.spread);
     let mut groups: Vec<&str> = points.iter().filter_map(|p| p.group.as_deref()).collect();
     groups.sort_unstable();
     groups.dedup();
@@ -95,7 +95,7 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
         ("luminosity", Luminosity, common.group_luminosity),
     ] {
         for group in &groups {
-            add(&format!("{what} of {group}"), kind, false, &|p| {
+            add(&format!("{what} of {group}"), kind, false, &|_, p| {
                 if p.group.as_deref() == Some(group) {
                     size
                 } else {
@@ -104,41 +104,32 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
             });
         }
     }
+    // What the channels of one visit have in common is named by its first point.
+    let visits = crate::scan::visits(points);
     for (i, point) in points.iter().enumerate() {
-        let counts = matches!(point.measured, Measured::Counts { .. });
-        let only = |size: f64| {
-            move |p: &Point| {
-                if core::ptr::eq(p, point) && counts {
-                    size
-                } else {
-                    0.0
-                }
-            }
-        };
+        let visit = |k: usize, p: &Point| visits.get(k) == Some(&i) && is_counted(p);
         let name = |what: &str| format!("{what} of point {}", point.id);
         if common.energy_covariance_gev2.is_none() {
-            add(&name("energy"), Energy, false, &only(point.w_error_gev));
+            add(&name("energy"), Energy, false, &|k, p| {
+                if visit(k, p) { p.w_error_gev } else { 0.0 }
+            });
         }
-        add(
-            &name("luminosity"),
-            Luminosity,
-            false,
-            &only(relative(
-                point.luminosity_error_nbinv,
-                point.luminosity_nbinv,
-            )),
-        );
-        add(
-            &name("efficiency"),
-            SignalScale,
-            false,
-            &only(relative(
-                point.efficiency_error,
-                point.efficiency.unwrap_or(f64::INFINITY),
-            )),
-        );
-        add(&name("beam spread"), Spread, false, &|p| {
-            if core::ptr::eq(p, &points[i]) {
+        add(&name("luminosity"), Luminosity, false, &|k, p| {
+            if visit(k, p) {
+                relative(p.luminosity_error_nbinv, p.luminosity_nbinv)
+            } else {
+                0.0
+            }
+        });
+        add(&name("efficiency"), SignalScale, false, &|k, p| {
+            if k == i && is_counted(p) {
+                relative(p.efficiency_error, p.efficiency.unwrap_or(f64::INFINITY))
+            } else {
+                0.0
+            }
+        });
+        add(&name("beam spread"), Spread, false, &|k, _| {
+            if visits.get(k) == Some(&i) {
                 common.point_spread
             } else {
                 0.0
@@ -149,6 +140,14 @@ pub fn nuisances(points: &[Point], common: &CommonErrors) -> Answer<Vec<Nuisance
         out.extend(from_covariance(rows, points.len())?);
     }
     Ok(out)
+}
+
+/// Energy and luminosity errors of single points act on counts only.
+fn is_counted(point: &Point) -> bool {
+    matches!(
+        point.measured,
+        Measured::Counts { .. } | Measured::Bins { .. }
+    )
 }
 
 fn relative(error: f64, value: f64) -> f64 {

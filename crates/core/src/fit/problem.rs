@@ -3,11 +3,11 @@
 //! Coordinates are the free curve parameters, then free backgrounds, then nuisances.
 
 use super::curve::CurveModel;
+use super::data::data;
 use super::nuisance::{Nuisance, NuisanceKind, is_symmetric, nuisances};
 use super::settings::{Constraint, FitSettings};
-use crate::counts::Exposure;
 use crate::error::{Answer, Refusal};
-use crate::scan::{Detection, Measured, Point, Scan};
+use crate::scan::{Measured, Point, Scan};
 use nalgebra::DMatrix;
 use std::rc::Rc;
 
@@ -15,6 +15,22 @@ use std::rc::Rc;
 pub const BACKGROUND_CROSS_SECTION: &str = "background.cross_section";
 /// Id of the free background rate, counts per hour.
 pub const BACKGROUND_RATE: &str = "background.rate";
+
+/// The exit whose background an id is (`c2.background.rate`: 2), and which of the two.
+pub(crate) fn background_of(id: &str) -> Option<Coordinate> {
+    let (exit, rest) = match id.strip_prefix('c').and_then(|r| r.split_once('.')) {
+        Some((number, rest)) => match number.parse::<usize>() {
+            Ok(exit) => (exit, rest),
+            Err(_) => (0, id),
+        },
+        None => (0, id),
+    };
+    match rest {
+        BACKGROUND_CROSS_SECTION => Some(Coordinate::BackgroundCrossSection(exit)),
+        BACKGROUND_RATE => Some(Coordinate::BackgroundRate(exit)),
+        _ => None,
+    }
+}
 
 /// How a datum enters the statistic.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -46,6 +62,8 @@ pub enum Kind {
 pub struct Datum {
     /// Index of the point in the scan.
     pub point: usize,
+    /// Index of its place on the curve; that of the point unless it has further angular bins.
+    pub site: usize,
     /// Measured.
     pub kind: Kind,
     /// A: multiplies the cross section.
@@ -56,6 +74,8 @@ pub struct Datum {
     pub live_time_h: f64,
     /// This is a point's off region (no signal in it).
     pub off_region: bool,
+    /// Its angular bin in words, if it is one.
+    pub bin: Option<String>,
 }
 
 /// What a coordinate is.
@@ -63,10 +83,10 @@ pub struct Datum {
 pub enum Coordinate {
     /// Parameter of the curve with this index.
     Curve(usize),
-    /// sigma_bg, nb.
-    BackgroundCrossSection,
-    /// r_bg, per hour.
-    BackgroundRate,
+    /// sigma_bg of an exit (0: the scan's own), nb.
+    BackgroundCrossSection(usize),
+    /// r_bg of an exit, per hour.
+    BackgroundRate(usize),
     /// Nuisance with this index.
     Nuisance(usize),
 }
@@ -99,6 +119,10 @@ pub struct Problem {
     pub points: Rc<Vec<Point>>,
     /// What is compared.
     pub data: Vec<Datum>,
+    /// (point, angular bin) of each place on the curve; the first ones are the points in order.
+    pub sites: Rc<Vec<(usize, Option<usize>)>>,
+    /// Exit of each point.
+    pub exit_of: Rc<Vec<usize>>,
     /// Variance matrix of the cross sections' own errors, nb^2, over the cross-section data in their order.
     pub covariance_nb2: Rc<DMatrix<f64>>,
     /// Coordinates.
@@ -107,8 +131,8 @@ pub struct Problem {
     pub nuisances: Rc<Vec<Nuisance>>,
     /// (coordinate, value, error).
     pub constraints: Vec<(usize, f64, f64)>,
-    /// Backgrounds where they are not free.
-    pub detection: Detection,
+    /// (sigma_bg in nb, r_bg per hour) of each exit where they are not free.
+    pub backgrounds: Rc<Vec<(f64, f64)>>,
     /// Scale factors 1 + delta eta.
     pub gaussian_factors: bool,
     /// A change of W that visibly changes the curve, GeV.
@@ -141,44 +165,65 @@ impl Problem {
             })
             .collect();
         for id in &varying {
-            let (coordinate, unit, start, label) = match id.as_str() {
-                BACKGROUND_CROSS_SECTION => (
-                    Coordinate::BackgroundCrossSection,
+            if coordinates.iter().any(|c| c.id == *id) {
+                continue;
+            }
+            let coordinate = background_of(id).filter(|c| match c {
+                Coordinate::BackgroundCrossSection(e) | Coordinate::BackgroundRate(e) => {
+                    *e <= scan.exits.len()
+                }
+                _ => false,
+            });
+            let (unit, start, what, exit) = match coordinate {
+                Some(Coordinate::BackgroundCrossSection(e)) => (
                     "nb",
-                    scan.detection.sigma_bg_nb,
+                    scan.detection_of(e).sigma_bg_nb,
                     "visible background cross section",
+                    e,
                 ),
-                BACKGROUND_RATE => (
-                    Coordinate::BackgroundRate,
+                Some(Coordinate::BackgroundRate(e)) => (
                     "1/h",
-                    scan.detection.rate_bg_per_h,
+                    scan.detection_of(e).rate_bg_per_h,
                     "background rate",
+                    e,
                 ),
-                other => {
-                    if coordinates.iter().any(|c| c.id == *other) {
-                        continue;
-                    }
+                _ => {
                     return Err(Refusal::new(
                         "fit.free",
-                        other,
+                        id,
                         "a parameter of this hypothesis, spread, background.cross_section or background.rate",
-                        format!("there is no parameter {other} to be fitted"),
+                        format!("there is no parameter {id} to be fitted"),
                     ));
                 }
+            };
+            let label = match exit.checked_sub(1).and_then(|i| scan.exits.get(i)) {
+                Some(exit) => format!("{what} ({})", exit.name),
+                None => what.to_string(),
+            };
+            let Some(coordinate) = coordinate else {
+                continue;
             };
             coordinates.push(CoordinateInfo {
                 coordinate,
                 id: id.clone(),
-                label: label.into(),
+                label,
                 unit,
                 start,
                 bounds: (0.0, f64::INFINITY),
                 scale: f64::INFINITY,
             });
         }
-        let free_background = coordinates
-            .iter()
-            .any(|c| !matches!(c.coordinate, Coordinate::Curve(_)));
+        let exit_of: Vec<usize> = scan.points.iter().map(|p| scan.exit_of(p)).collect();
+        let free_background: Vec<bool> = (0..=scan.exits.len())
+            .map(|exit| {
+                coordinates.iter().any(|c| match c.coordinate {
+                    Coordinate::BackgroundCrossSection(e) | Coordinate::BackgroundRate(e) => {
+                        e == exit
+                    }
+                    _ => false,
+                })
+            })
+            .collect();
         let nuisances = nuisances(&scan.points, &scan.common)?;
         for (i, n) in nuisances.iter().enumerate() {
             coordinates.push(CoordinateInfo {
@@ -197,17 +242,24 @@ impl Problem {
             .filter(|c| c.id.ends_with(".mass"))
             .map(|c| c.scale)
             .fold(f64::INFINITY, f64::min);
-        let (data, common_off_regions) = data(scan, free_background)?;
+        let (data, sites, common_off_regions) = data(scan, &free_background)?;
         let covariance_nb2 = covariance(scan, &data)?;
         Ok(Self {
             model,
             points: Rc::new(scan.points.clone()),
             data,
+            sites: Rc::new(sites),
+            exit_of: Rc::new(exit_of),
             covariance_nb2: Rc::new(covariance_nb2),
             coordinates,
             nuisances: Rc::new(nuisances),
             constraints,
-            detection: scan.detection.clone(),
+            backgrounds: Rc::new(
+                (0..=scan.exits.len())
+                    .map(|e| scan.detection_of(e))
+                    .map(|d| (d.sigma_bg_nb, d.rate_bg_per_h))
+                    .collect(),
+            ),
             gaussian_factors: scan.common.gaussian_factors,
             w_scale_gev: if w_scale_gev.is_finite() {
                 w_scale_gev
@@ -289,116 +341,6 @@ fn constraints(
                 })
         })
         .collect()
-}
-
-fn data(scan: &Scan, free_background: bool) -> Answer<(Vec<Datum>, bool)> {
-    let mut out = Vec::new();
-    let mut common_off = false;
-    for (i, point) in scan.points.iter().enumerate() {
-        let field = |what: &str| format!("points[{}].{what}", point.id);
-        if !(point.w_gev > 0.0 && point.w_gev.is_finite()) {
-            return Err(Refusal::new(
-                field("w"),
-                point.w_gev,
-                "an energy above 0",
-                format!("point {} has no W", point.id),
-            ));
-        }
-        match point.measured {
-            Measured::Nothing => {}
-            Measured::CrossSection { sigma_nb, error_nb } => {
-                let own = scan.covariance_nb2.is_none();
-                if !sigma_nb.is_finite() || (own && !(error_nb > 0.0 && error_nb.is_finite())) {
-                    return Err(Refusal::new(
-                        field("cross_section_error"),
-                        format!("{sigma_nb} +- {error_nb}"),
-                        "a cross section with an error above 0",
-                        format!("point {} has no usable cross section and error", point.id),
-                    ));
-                }
-                out.push(Datum {
-                    point: i,
-                    kind: Kind::CrossSection { sigma_nb },
-                    signal: 1.0,
-                    luminosity_nbinv: 0.0,
-                    live_time_h: 0.0,
-                    off_region: false,
-                });
-            }
-            Measured::Counts { n, off } => {
-                if !(n >= 0.0 && n.is_finite()) {
-                    return Err(Refusal::new(
-                        field("counts"),
-                        n,
-                        "counts of 0 or more",
-                        format!("point {} has no usable counts", point.id),
-                    ));
-                }
-                let e = Exposure::of(point, &scan.detection);
-                let usable = |v: f64| v > 0.0 && v.is_finite();
-                if !usable(e.luminosity_nbinv) {
-                    return Err(Refusal::new(
-                        field("luminosity"),
-                        e.luminosity_nbinv,
-                        "a luminosity above 0 (after dead time)",
-                        format!("point {} has counts but no luminosity", point.id),
-                    ));
-                }
-                if !usable(e.signal_nbinv) {
-                    return Err(Refusal::new(
-                        field("efficiency"),
-                        e.signal_nbinv / e.luminosity_nbinv,
-                        "an efficiency above 0",
-                        format!(
-                            "with an efficiency of 0 point {} says nothing about the cross section: leave it out",
-                            point.id
-                        ),
-                    ));
-                }
-                let mut datum = Datum {
-                    point: i,
-                    kind: Kind::Counts { n },
-                    signal: e.signal_nbinv,
-                    luminosity_nbinv: e.luminosity_nbinv,
-                    live_time_h: e.live_time_h,
-                    off_region: false,
-                };
-                if let Some((n_off, tau)) = off {
-                    if !(n_off >= 0.0 && n_off.is_finite() && usable(tau)) {
-                        return Err(Refusal::new(
-                            field("off_counts"),
-                            format!("{n_off} with tau {tau}"),
-                            "counts of 0 or more and a ratio tau above 0",
-                            format!("the off region of point {} cannot be used", point.id),
-                        ));
-                    }
-                    if free_background {
-                        common_off = true;
-                        out.push(datum.clone());
-                        datum.kind = Kind::Counts { n: n_off };
-                        datum.signal = 0.0;
-                        datum.luminosity_nbinv *= tau;
-                        datum.live_time_h *= tau;
-                        datum.off_region = true;
-                    } else {
-                        datum.kind = Kind::OnOff { n, n_off, tau };
-                        datum.luminosity_nbinv = 0.0;
-                        datum.live_time_h = 0.0;
-                    }
-                }
-                out.push(datum);
-            }
-        }
-    }
-    if out.is_empty() {
-        return Err(Refusal::new(
-            "data.rows",
-            "",
-            "at least one row with counts or a cross section, in use",
-            "there is nothing to fit: no row in use has counts or a cross section",
-        ));
-    }
-    Ok((out, common_off))
 }
 
 fn covariance(scan: &Scan, data: &[Datum]) -> Answer<DMatrix<f64>> {

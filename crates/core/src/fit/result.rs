@@ -45,6 +45,8 @@ pub struct FittedPoint {
     pub id: String,
     /// This is its off region.
     pub off_region: bool,
+    /// Its angular bin in words, if it is one.
+    pub bin: Option<String>,
     /// W with fitted shifts, GeV.
     pub w_gev: f64,
     /// Measured: counts, or nb.

@@ -150,5 +150,6 @@ pub fn counting_scan(w_gev: &[f64], counts: &[f64], exposure: f64) -> crate::sca
             .collect(),
         common: CommonErrors::default(),
         covariance_nb2: None,
+        exits: Vec::new(),
     }
 }

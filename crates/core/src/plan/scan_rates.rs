@@ -109,7 +109,14 @@ pub fn rates(
     let measured: Vec<&Point> = scan
         .points
         .iter()
-        .filter(|p| !matches!(p.measured, Measured::Nothing))
+        // Other channels and angular bins say more than is used here: the plan is on the safe side.
+        .filter(|p| {
+            scan.exit_of(p) == 0
+                && matches!(
+                    p.measured,
+                    Measured::Counts { .. } | Measured::CrossSection { .. }
+                )
+        })
         .collect();
     let mut ids = parameters.free.clone();
     if parameters.with_spread {

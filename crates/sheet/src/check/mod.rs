@@ -169,6 +169,7 @@ fn frame_into(sheet: &Sheet, log: &mut Log) -> Option<Frame> {
             points: Vec::new(),
             common,
             covariance_nb2: None,
+            exits: Vec::new(),
         },
     })
 }

@@ -46,14 +46,14 @@ pub(super) fn actions(problem: &Problem) -> Vec<Vec<Action>> {
                         a.directions.push((i, 1.0));
                     }
                 }
-                Coordinate::BackgroundCrossSection => {
-                    for a in &mut row {
-                        a.background = 1.0;
+                Coordinate::BackgroundCrossSection(exit) => {
+                    for (a, of) in row.iter_mut().zip(problem.exit_of.iter()) {
+                        a.background = if *of == exit { 1.0 } else { 0.0 };
                     }
                 }
-                Coordinate::BackgroundRate => {
-                    for a in &mut row {
-                        a.rate = 1.0;
+                Coordinate::BackgroundRate(exit) => {
+                    for (a, of) in row.iter_mut().zip(problem.exit_of.iter()) {
+                        a.rate = if *of == exit { 1.0 } else { 0.0 };
                     }
                 }
                 Coordinate::Nuisance(i) => {

@@ -203,10 +203,10 @@ impl Likelihood {
     fn sites(&self, x: &[f64]) -> Vec<Site> {
         let k = self.problem.model.parameters().len();
         self.problem
-            .points
+            .sites
             .iter()
-            .enumerate()
-            .map(|(point, p)| {
+            .map(|&(point, bin)| {
+                let p = &self.problem.points[point];
                 let (mut shift, mut ln_spread) = (0.0, 0.0);
                 for (row, v) in self.actions.iter().zip(x).skip(k) {
                     for (direction, size) in &row[point].directions {
@@ -219,6 +219,7 @@ impl Likelihood {
                 }
                 Site {
                     point,
+                    bin,
                     w_gev: p.w_gev + shift,
                     spread_factor: exp(ln_spread),
                 }
@@ -256,15 +257,13 @@ impl Likelihood {
         Ok(found)
     }
 
-    fn backgrounds(&self, x: &[f64]) -> (f64, f64) {
-        let mut out = (
-            self.problem.detection.sigma_bg_nb,
-            self.problem.detection.rate_bg_per_h,
-        );
+    /// (sigma_bg, r_bg) of each exit.
+    fn backgrounds(&self, x: &[f64]) -> Vec<(f64, f64)> {
+        let mut out = self.problem.backgrounds.as_ref().clone();
         for (c, v) in self.problem.coordinates.iter().zip(x) {
             match c.coordinate {
-                Coordinate::BackgroundCrossSection => out.0 = *v,
-                Coordinate::BackgroundRate => out.1 = *v,
+                Coordinate::BackgroundCrossSection(exit) => out[exit].0 = *v,
+                Coordinate::BackgroundRate(exit) => out[exit].1 = *v,
                 _ => {}
             }
         }
@@ -278,14 +277,15 @@ impl Likelihood {
     pub fn predict(&mut self, x: &[f64]) -> Answer<Prediction> {
         let d = self.derivatives(x, false)?;
         let factors = self.factors(x);
-        let (bg, rate) = self.backgrounds(x);
+        let backgrounds = self.backgrounds(x);
         let mu = self
             .problem
             .data
             .iter()
             .map(|datum| {
                 let (s, l) = factors[datum.point];
-                datum.signal * s * l * d.sigma[datum.point]
+                let (bg, rate) = backgrounds[self.problem.exit_of[datum.point]];
+                datum.signal * s * l * d.sigma[datum.site]
                     + datum.luminosity_nbinv * l * bg
                     + datum.live_time_h * rate
             })
@@ -322,7 +322,7 @@ impl Likelihood {
         let d = self.derivatives(x, observed)?;
         let n = x.len();
         let factors = self.factors(x);
-        let (bg, rate) = self.backgrounds(x);
+        let backgrounds = self.backgrounds(x);
         let gaussian = self.problem.gaussian_factors;
         let mut out = Expansion {
             value: 0.0,
@@ -337,9 +337,10 @@ impl Likelihood {
         let mut cross_data: Vec<(usize, f64)> = Vec::with_capacity(cross);
         let mut row_of = vec![0.0; n];
         for datum in &self.problem.data {
-            let p = datum.point;
+            let (p, at) = (datum.point, datum.site);
             let (fs, fl) = factors[p];
-            let sigma = d.sigma[p];
+            let (bg, rate) = backgrounds[self.problem.exit_of[p]];
+            let sigma = d.sigma[at];
             let g = fs * fl;
             let mu = datum.signal * g * sigma
                 + datum.luminosity_nbinv * fl * bg
@@ -349,7 +350,7 @@ impl Likelihood {
                 *slot = if a.is_none() {
                     0.0
                 } else {
-                    let ds = along(&a.directions, &d.d_sigma, p);
+                    let ds = along(&a.directions, &d.d_sigma, at);
                     let (dfs, dfl) = factor_change(a, fs, fl, gaussian);
                     datum.signal * (g * ds + (dfs * fl + fs * dfl) * sigma)
                         + datum.luminosity_nbinv * (dfl * bg + fl * a.background)
@@ -392,8 +393,8 @@ impl Likelihood {
                 }
             }
             if observed {
-                let sigma = (d.sigma[p], d.d_sigma.as_slice(), d.dd_sigma.as_slice());
-                self.add_second(&mut out.curvature, sigma, p, (fs, fl), bg, |s, b| {
+                let sigma = (d.sigma[at], d.d_sigma.as_slice(), d.dd_sigma.as_slice());
+                self.add_second(&mut out.curvature, sigma, (p, at), (fs, fl), bg, |s, b| {
                     term.first * (datum.signal * s[3] + datum.luminosity_nbinv * b)
                 });
             }
@@ -427,15 +428,16 @@ impl Likelihood {
             if observed {
                 for (r, &(p, e)) in cross_data.iter().enumerate() {
                     let f = factors[p];
+                    let bg = backgrounds[self.problem.exit_of[p]].0;
                     let sigma = (d.sigma[p], d.d_sigma.as_slice(), d.dd_sigma.as_slice());
-                    self.add_second(&mut out.curvature, sigma, p, f, bg, |s, _| {
+                    self.add_second(&mut out.curvature, sigma, (p, p), f, bg, |s, _| {
                         -2.0 * a[r] * s[3]
                     });
                     if self.need.slope && e > 0.0 {
                         let slope = (d.slope[p], d.d_slope.as_slice(), d.dd_slope.as_slice());
                         let w = -2.0 * a[r] * a[r] * e * e;
                         // Half the second derivative of the slope's square.
-                        self.add_second(&mut out.curvature, slope, p, f, bg, |s, _| {
+                        self.add_second(&mut out.curvature, slope, (p, p), f, bg, |s, _| {
                             w * (s[1] * s[2] + s[0] * s[3])
                         });
                     }
@@ -504,7 +506,7 @@ impl Likelihood {
         &self,
         curvature: &mut DMatrix<f64>,
         (value, first, second): (f64, &[Vec<f64>], &[Vec<f64>]),
-        p: usize,
+        (p, at): (usize, usize),
         (fs, fl): (f64, f64),
         bg: f64,
         weight: impl Fn([f64; 4], f64) -> f64,
@@ -518,7 +520,7 @@ impl Likelihood {
             }
             let (as_, al) = factor_change(a, fs, fl, gaussian);
             let ga = as_ * fl + fs * al;
-            let va = along(&a.directions, first, p);
+            let va = along(&a.directions, first, at);
             for (k, other) in self.actions.iter().enumerate().take(i + 1) {
                 let b = &other[p];
                 if b.is_none() {
@@ -526,14 +528,14 @@ impl Likelihood {
                 }
                 let (bs, bl) = factor_change(b, fs, fl, gaussian);
                 let gb = bs * fl + fs * bl;
-                let vb = along(&b.directions, first, p);
+                let vb = along(&b.directions, first, at);
                 let (ss, ll) = if gaussian {
                     (0.0, 0.0)
                 } else {
                     (a.signal * b.signal * fs, a.luminosity * b.luminosity * fl)
                 };
                 let gab = ss * fl + as_ * bl + bs * al + fs * ll;
-                let vab = along_pairs(&a.directions, &b.directions, second, p);
+                let vab = along_pairs(&a.directions, &b.directions, second, at);
                 let product = [
                     g * value,
                     ga * value + g * va,

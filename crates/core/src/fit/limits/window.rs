@@ -197,17 +197,17 @@ fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
     let mut background = Vec::new();
     let mut exposures = Vec::new();
     for (point, sigma) in scan.points.iter().zip(&continuum) {
-        let Measured::Counts { n, off } = point.measured else {
+        let (0, Measured::Counts { n, off }) = (scan.exit_of(point), &point.measured) else {
             return Err(Refusal::new(
                 format!("points[{}]", point.id),
                 "",
-                "counts",
-                "limits over a mass window are worked out for counts",
+                "counts of the scan's own exit channel",
+                "limits over a mass window are worked out for counts of one channel: leave the other rows out",
             ));
         };
         let exposure = Exposure::of(point, &scan.detection);
-        counts.push(n);
-        background.push(match off {
+        counts.push(*n);
+        background.push(match *off {
             Some((n_off, tau)) => exposure.signal(*sigma) + n_off / tau,
             None => exposure.expected(*sigma, &scan.detection),
         });
