@@ -172,6 +172,7 @@ pub const TABLE: &[Limit] = &[
     from("data.rows[].angle_bins[].from", "lower edge", Number, (-1.0, 1.0), "a cosine"),
     from("data.rows[].angle_bins[].to", "upper edge", Number, (-1.0, 1.0), "a cosine"),
     whole("data.rows[].angle_bins[].counts", "counts in the bin", 1e15, "events are counted, 0 included"),
+    above("data.rows[].angle_bins[].efficiency", "efficiency in the bin", Number, (0.0, 1.0), "nothing is seen with an efficiency of 0"),
     from("data.covariance[][]", "covariance", CrossSectionSquared, (-1e24, 1e24), ANY_SIZE),
     from("data.energy_covariance[][]", "covariance of energies", EnergySquared, (-1e6, 1e6), ANY_SIZE),
     above("plan.from", "least W", Energy, (0.0, TOP_GEV), ABOVE_ZERO),

@@ -42,6 +42,6 @@ pub use problem::{
 };
 pub use profile::{End, Interval, ProfilePlace, RISE_ONE, RISE_TWO};
 pub use result::{FitResult, FittedNuisance, FittedPoint, FittedValue};
-pub use scan_curve::{SPREAD, ScanCurve};
+pub use scan_curve::{SPREAD, ScanCurve, has_angles};
 pub use settings::{Constraint, FitSettings};
 pub use terms::{Term, counts as counts_term, on_off, profiled_background};

@@ -321,16 +321,29 @@ fn prepare(
     beams: &Beams,
     region: Option<&Region>,
 ) -> Answer<Box<dyn Born + Send + Sync>> {
-    match (region, hypothesis) {
-        (None, _) => hypothesis.prepare(beams),
-        (Some(region), Hypothesis::PartialWave(wave)) if wave.twice_j == 0 => {
-            Ok(Box::new(Isotropic {
-                all: hypothesis.prepare(beams)?,
-                fraction: region.fraction(),
-            }))
-        }
-        (Some(region), _) => hypothesis.prepare_in(beams, region),
+    match region {
+        None => hypothesis.prepare(beams),
+        Some(region) if is_isotropic(hypothesis) => Ok(Box::new(Isotropic {
+            all: hypothesis.prepare(beams)?,
+            fraction: region.fraction(),
+        })),
+        Some(region) => hypothesis.prepare_in(beams, region),
     }
+}
+
+/// One wave of spin 0: the same at all angles.
+fn is_isotropic(hypothesis: &Hypothesis) -> bool {
+    match hypothesis {
+        Hypothesis::PartialWave(wave) => wave.twice_j == 0,
+        Hypothesis::KMatrix(model) => model.twice_j == 0,
+        _ => false,
+    }
+}
+
+/// Whether a hypothesis can be compared with counts in angular bins.
+#[must_use]
+pub fn has_angles(hypothesis: &Hypothesis) -> bool {
+    is_isotropic(hypothesis) || matches!(hypothesis, Hypothesis::Waves(_) | Hypothesis::Diagrams(_))
 }
 
 /// A cross section that is the same at all angles, in a part of them.

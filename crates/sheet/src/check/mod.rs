@@ -6,6 +6,7 @@
 //! apart from the rows.
 
 mod beam;
+mod channels;
 mod data;
 mod detection;
 mod log;
@@ -15,6 +16,7 @@ mod resonance;
 mod rows;
 
 pub use beam::{Frame, dial_dimension, setting_kind, twice};
+pub use channels::{path_of as channel_path, sheet_of as channel_sheet};
 pub use plan::{GoalReading, PlanReading, Wanted};
 pub use rows::RowReading;
 
@@ -153,6 +155,7 @@ fn frame_into(sheet: &Sheet, log: &mut Log) -> Option<Frame> {
     let spread = beam::spread(&sheet.beam, beams.as_ref(), w0, log);
     let chain = model::chain(sheet, beams.as_ref(), spread, w0, log);
     let detection = detection::detection(sheet, log);
+    let exits = channels::channels(sheet, beams.as_ref(), chain.as_ref(), log);
     let common = data::common_errors(sheet, log);
     plan::read(sheet, log);
     if log.problems.len() > before {
@@ -169,7 +172,7 @@ fn frame_into(sheet: &Sheet, log: &mut Log) -> Option<Frame> {
             points: Vec::new(),
             common,
             covariance_nb2: None,
-            exits: Vec::new(),
+            exits,
         },
     })
 }

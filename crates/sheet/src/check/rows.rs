@@ -7,7 +7,8 @@ use crate::limits;
 use crate::quantity::Dimension::{CrossSection, Energy, Luminosity, Number, Time};
 use crate::times;
 use jiff::Timestamp;
-use widthwise_core::scan::{Measured, Point};
+use widthwise_core::fit::has_angles;
+use widthwise_core::scan::{CountedBin, Measured, Point};
 
 /// A row as the core understands it.
 #[derive(Debug, Clone)]
@@ -27,7 +28,7 @@ pub fn read(sheet: &Sheet, frame: Option<&Frame>, log: &mut Log) -> Vec<RowReadi
     let mut out = Vec::with_capacity(sheet.data.rows.len());
     let mut starts = Vec::with_capacity(sheet.data.rows.len());
     unique_ids(sheet, log);
-    if sheet.data.stage != Stage::Observed && sheet.data.rows.iter().any(|r| r.counts.is_some()) {
+    if sheet.data.stage != Stage::Observed && sheet.data.rows.iter().any(|r| r.counts.is_some() || !r.angle_bins.is_empty()) {
         log.refuse(
             "data.stage",
             "",
@@ -101,6 +102,21 @@ fn point(
 ) -> Option<Point> {
     let at = |field: &str| format!("{path}.{field}");
     let measured = measured(path, row, sheet, log);
+    let exit = channel(path, row, sheet, log);
+    if let (Some(Measured::Bins { .. }), Some(frame)) = (&measured, frame) {
+        let hypothesis = match exit.checked_sub(1) {
+            None => Some(&frame.scan.hypothesis),
+            Some(i) => frame.scan.exits.get(i).map(|e| &e.hypothesis),
+        };
+        if hypothesis.is_some_and(|h| !has_angles(h)) {
+            log.refuse(
+                &at("angle_bins"),
+                "",
+                "waves with helicity or LS couplings, diagrams, or J = 0",
+                "this hypothesis says nothing about angles, so counts in angular bins cannot be compared with it",
+            );
+        }
+    }
     let efficiency = log.with_error(
         (&at("efficiency"), row.efficiency.as_ref()),
         (&at("efficiency_error"), row.efficiency_error.as_ref()),
@@ -113,9 +129,25 @@ fn point(
     let (w_gev, w_error_gev) = energy(path, row, sheet, frame, log)?;
     let frame = frame?;
     let rate = frame.scan.detection.luminosity_nbinv_per_h;
-    let counted = matches!(measured, Some(Measured::Counts { .. }));
+    let counted = matches!(
+        measured,
+        Some(Measured::Counts { .. } | Measured::Bins { .. })
+    );
+    let apart = matches!(measured, Some(Measured::BeamsApart { .. }));
+    let rate_bg_per_h = frame.scan.detection_of(exit).rate_bg_per_h;
     let luminosity_nbinv = match (luminosity, live_h) {
-        (Some((value, _)), _) => value,
+        (Some((value, _)), _) => {
+            if apart {
+                log.refuse(
+                    &at("luminosity"),
+                    row.luminosity.as_deref().unwrap_or(""),
+                    "no luminosity",
+                    "with the beams apart there is no luminosity",
+                );
+            }
+            value
+        }
+        _ if apart => 0.0,
         // The luminosity of the whole time; the live fraction is taken off later.
         (None, Some(live)) if rate > 0.0 => {
             if counted {
@@ -140,7 +172,7 @@ fn point(
     let live_time_h = match live_h {
         Some(live) => live,
         None if rate > 0.0 && luminosity_nbinv > 0.0 => {
-            if counted && frame.scan.detection.rate_bg_per_h > 0.0 {
+            if counted && rate_bg_per_h > 0.0 {
                 log.warn(
                     "live-time-from-luminosity",
                     "Rows without times take their luminosity over the beam's as live time.",
@@ -149,12 +181,21 @@ fn point(
             luminosity_nbinv / rate * live_fraction
         }
         None => {
-            if counted && frame.scan.detection.rate_bg_per_h > 0.0 {
+            if counted && rate_bg_per_h > 0.0 {
                 log.refuse(
                     &at("live_time"),
                     "",
                     "a live time, or start and stop",
                     "the background rate cannot be taken off without a live time",
+                );
+                return None;
+            }
+            if apart {
+                log.refuse(
+                    &at("live_time"),
+                    "",
+                    "a live time, or start and stop",
+                    "counts with the beams apart need their live time",
                 );
                 return None;
             }
@@ -250,20 +291,7 @@ fn measured(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> Option<Measu
         );
         return None;
     }
-    for (i, bin) in row.angle_bins.iter().enumerate() {
-        let bin_path = at(&format!("angle_bins[{i}]"));
-        let from = log.value(&format!("{bin_path}.from"), &bin.from, Number);
-        let to = log.value(&format!("{bin_path}.to"), &bin.to, Number);
-        log.value(&format!("{bin_path}.counts"), &bin.counts, Number);
-        if from >= to {
-            log.refuse(
-                &format!("{bin_path}.to"),
-                &bin.to,
-                "above the lower edge",
-                "the bin has no width",
-            );
-        }
-    }
+    let bins = angle_bins(path, row, log);
     let tau = log
         .optional(&at("tau"), row.tau.as_ref(), Number)
         .or_else(|| {
@@ -286,6 +314,18 @@ fn measured(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> Option<Measu
         }
         (None, _) => None,
     };
+    if let Some(bins) = bins {
+        return binned(path, row, bins, off.is_some(), log);
+    }
+    if row.beams_apart && (row.counts.is_none() || off.is_some()) {
+        log.refuse(
+            &at("counts"),
+            row.counts.as_deref().unwrap_or(""),
+            "counts, and nothing else",
+            "a row with the beams apart counts background: it has no cross section and no off region",
+        );
+        return None;
+    }
     if let Some(text) = row.counts.as_ref() {
         let reading = log.read(&at("counts"), text, Number)?;
         if reading.error.is_some() {
@@ -296,9 +336,13 @@ fn measured(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> Option<Measu
                 "counts carry their own (Poisson) error",
             );
         }
-        return Some(Measured::Counts {
-            n: reading.value,
-            off,
+        return Some(if row.beams_apart {
+            Measured::BeamsApart { n: reading.value }
+        } else {
+            Measured::Counts {
+                n: reading.value,
+                off,
+            }
         });
     }
     let error_path = at("cross_section_error");
@@ -326,6 +370,110 @@ fn measured(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> Option<Measu
             None
         }
     }
+}
+
+/// The exit of a row: 0 the sheet's own.
+fn channel(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> usize {
+    let Some(name) = row.channel.as_deref().filter(|n| !n.trim().is_empty()) else {
+        return 0;
+    };
+    if let Some(i) = sheet.channels.iter().position(|c| c.name == name) {
+        return i + 1;
+    }
+    if name == sheet.model.final_state {
+        return 0;
+    }
+    if !sheet.channels.is_empty() {
+        let names: Vec<&str> = sheet.channels.iter().map(|c| c.name.as_str()).collect();
+        log.refuse(
+            &format!("{path}.channel"),
+            name,
+            &format!("nothing, or one of: {}", names.join(", ")),
+            "the sheet has no such exit channel",
+        );
+        return 0;
+    }
+    let first = sheet.data.rows.iter().find_map(|r| r.channel.as_deref());
+    if first.is_some_and(|first| first != name) {
+        log.warn(
+            "one-channel",
+            "Rows name several exit channels, but the sheet has one: all are compared with the one cross section.",
+        );
+    }
+    0
+}
+
+/// The angular bins of a row, if it has any.
+fn angle_bins(path: &str, row: &Row, log: &mut Log) -> Option<Vec<CountedBin>> {
+    if row.angle_bins.is_empty() {
+        return None;
+    }
+    let mut bins = Vec::with_capacity(row.angle_bins.len());
+    for (i, bin) in row.angle_bins.iter().enumerate() {
+        let at = format!("{path}.angle_bins[{i}]");
+        bins.push(CountedBin {
+            from: log.value(&format!("{at}.from"), &bin.from, Number),
+            to: log.value(&format!("{at}.to"), &bin.to, Number),
+            absolute: true,
+            n: log.value(&format!("{at}.counts"), &bin.counts, Number),
+            efficiency: log.optional(&format!("{at}.efficiency"), bin.efficiency.as_ref(), Number),
+        });
+    }
+    // One edge below 0 makes all of them edges in cos theta.
+    if bins.iter().any(|b| b.from < 0.0) {
+        for b in &mut bins {
+            b.absolute = false;
+        }
+    }
+    for (i, (bin, typed)) in bins.iter().zip(&row.angle_bins).enumerate() {
+        let at = format!("{path}.angle_bins[{i}].to");
+        if bin.from >= bin.to {
+            log.refuse(&at, &typed.to, "above the lower edge", "the bin has no width");
+        }
+        let others = bins.iter().take(i);
+        if others.into_iter().any(|o| bin.from < o.to && o.from < bin.to) {
+            log.refuse(
+                &at,
+                &typed.to,
+                "bins that do not overlap",
+                "two angular bins overlap: an event would count twice",
+            );
+        }
+    }
+    Some(bins)
+}
+
+/// Counts in bins beside what else the row says.
+fn binned(
+    path: &str,
+    row: &Row,
+    bins: Vec<CountedBin>,
+    off: bool,
+    log: &mut Log,
+) -> Option<Measured> {
+    if off || row.beams_apart || row.cross_section.is_some() {
+        log.refuse(
+            &format!("{path}.angle_bins"),
+            "",
+            "counts in bins, and nothing else",
+            "a row with angular bins has no off region, no cross section, and its beams meet",
+        );
+        return None;
+    }
+    if let Some(text) = row.counts.as_ref() {
+        let total = log.read(&format!("{path}.counts"), text, Number)?.value;
+        let sum: f64 = bins.iter().map(|b| b.n).sum();
+        if total != sum {
+            log.refuse(
+                &format!("{path}.counts"),
+                text,
+                &format!("{sum}, as in the bins, or nothing"),
+                "the row's counts are not the sum of its angular bins; events outside the bins are not fitted",
+            );
+            return None;
+        }
+    }
+    Some(Measured::Bins { bins })
 }
 
 fn live_fraction(path: &str, row: &Row, sheet: &Sheet, log: &mut Log) -> f64 {

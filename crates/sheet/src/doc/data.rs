@@ -147,10 +147,13 @@ pub struct Row {
     /// Its error.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub efficiency_error: Option<Quantity>,
-    /// Exit channel.
+    /// Exit channel: the name of a further one, else the sheet's own.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub channel: Option<String>,
-    /// Angular bins: edges in |cos theta| (or -1, 0, 1 for backward/forward) and counts.
+    /// Counted with the beams apart: background rate alone.
+    #[serde(skip_serializing_if = "core::ops::Not::not")]
+    pub beams_apart: bool,
+    /// Angular bins, which make up the row's counts: edges in |cos theta|, or in cos theta if one is below 0.
     #[serde(skip_serializing_if = "Vec::is_empty")]
     pub angle_bins: Vec<AngleBin>,
     /// Cross section instead of counts.
@@ -185,4 +188,7 @@ pub struct AngleBin {
     pub to: Quantity,
     /// Counts.
     pub counts: Quantity,
+    /// Efficiency, if not the row's.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub efficiency: Option<Quantity>,
 }

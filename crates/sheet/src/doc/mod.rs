@@ -6,6 +6,7 @@
 //! What the text means is decided in one place (`quantity`), what is allowed in another (`limits`).
 
 mod beam;
+mod channel;
 mod data;
 mod detection;
 mod fit;
@@ -14,6 +15,7 @@ mod plan;
 mod resonance;
 
 pub use beam::{Arrangement, Beam, Calibration, Dial, ParticleChoice, Spread, SpreadKind};
+pub use channel::ExitChannel;
 pub use data::{AngleBin, Data, LuminositySource, Row, Stage};
 pub use detection::Detection;
 pub use fit::{Constraint, Fit};
@@ -48,6 +50,9 @@ pub struct Sheet {
     pub beam: Beam,
     /// Hypothesis.
     pub model: Model,
+    /// Further exit channels, fitted together.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub channels: Vec<ExitChannel>,
     /// From cross section to counts.
     pub detection: Detection,
     /// What has been measured.

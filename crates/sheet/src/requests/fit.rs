@@ -138,10 +138,10 @@ fn pulls(result: &FitResult) -> Vec<(String, f64)> {
         .points
         .iter()
         .map(|p| {
-            let name = if p.off_region {
-                format!("{} (off region)", p.id)
-            } else {
-                p.id.clone()
+            let name = match &p.bin {
+                _ if p.off_region => format!("{} (off region)", p.id),
+                Some(bin) => format!("{} ({bin})", p.id),
+                None => p.id.clone(),
             };
             (name, p.pull)
         })

@@ -26,6 +26,15 @@ pub struct Parameter {
 /// # Errors
 /// The sheet has no such parameter.
 pub fn find(sheet: &Sheet, id: &str) -> Answer<Parameter> {
+    if let Some((index, rest)) = of_channel(id)
+        && let Some(seen) = check::channel_sheet(sheet, index)
+    {
+        let mut found = find(&seen, rest)?;
+        if let Some(field) = check::channel_path(sheet, index, &found.field) {
+            found.field = field;
+            return Ok(found);
+        }
+    }
     let (field, dimension, text) = place(sheet, id).ok_or_else(|| {
         Refusal::new(
             "fit.free",
@@ -51,6 +60,12 @@ pub fn find(sheet: &Sheet, id: &str) -> Answer<Parameter> {
             1.0
         },
     })
+}
+
+/// Channel and id within it of "c2.r1.strength".
+fn of_channel(id: &str) -> Option<(usize, &str)> {
+    let (number, rest) = id.strip_prefix('c')?.split_once('.')?;
+    Some((number.parse::<usize>().ok()?.checked_sub(1)?, rest))
 }
 
 fn sigma_w(sheet: &Sheet) -> f64 {

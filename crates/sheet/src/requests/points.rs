@@ -7,7 +7,8 @@ use crate::check::{self, RowReading};
 use crate::doc::Sheet;
 use widthwise_core::counts::{Exposure, HoursTo, SignalRates, compare, hours_to_relative_error};
 use widthwise_core::error::{Answer, Refusal};
-use widthwise_core::scan::{Measured, Point, Stage};
+use widthwise_core::fit::{CurveModel, Probe, ScanCurve, Site};
+use widthwise_core::scan::{Detection, Measured, Point, Scan, Stage};
 
 /// Most rows for which expectations are computed in one request.
 pub const MOST_ROWS: usize = 20_000;
@@ -31,23 +32,18 @@ pub fn answer(sheet: &Sheet) -> Answer<Reply> {
         ));
     }
     let ready = Ready::of(frame, understood.warnings)?;
-    let (w, spreads): (Vec<f64>, Vec<Option<f64>>) = understood
+    let stage = ready.frame.scan.stage;
+    let points: Vec<Point> = understood
         .rows
         .iter()
-        .filter_map(|row| row.point.as_ref())
-        .map(|p| (p.w_gev, p.sigma_w_gev))
-        .unzip();
-    let stage = ready.frame.scan.stage;
-    let mut sigmas = ready.sigma_and_slope(&w, &spreads, stage)?.into_iter();
+        .filter_map(|row| row.point.clone())
+        .collect();
+    let mut sigmas = curves(&ready.frame.scan, &points, stage)?.into_iter();
     // Beam time is spent on observed events, whatever the data have been corrected for.
     let mut observed = if stage == Stage::Observed {
         None
     } else {
-        Some(
-            ready
-                .sigma_and_slope(&w, &spreads, Stage::Observed)?
-                .into_iter(),
-        )
+        Some(curves(&ready.frame.scan, &points, Stage::Observed)?.into_iter())
     };
     let points = understood
         .rows
@@ -56,7 +52,7 @@ pub fn answer(sheet: &Sheet) -> Answer<Reply> {
             let compared = row.point.as_ref().and_then(|_| sigmas.next());
             let now = match observed.as_mut() {
                 Some(list) => row.point.as_ref().and_then(|_| list.next()),
-                None => compared,
+                None => compared.clone(),
             };
             reading(sheet, &ready, row, compared, now)
         })
@@ -70,12 +66,56 @@ pub fn answer(sheet: &Sheet) -> Answer<Reply> {
     })
 }
 
+/// The curve at one point: (sigma, its slope) in each angular bin, or over all angles.
+type AtPoint = Vec<(f64, f64)>;
+
+/// The curve of each point's channel in each of its angular bins, at a stage.
+fn curves(frame: &Scan, points: &[Point], stage: Stage) -> Answer<Vec<AtPoint>> {
+    let scan = Scan {
+        points: points.to_vec(),
+        stage,
+        ..frame.clone()
+    };
+    let curve = ScanCurve::new(&scan, &[])?;
+    let mut sites = Vec::with_capacity(points.len());
+    for (point, p) in points.iter().enumerate() {
+        let bins = match &p.measured {
+            Measured::Bins { bins } => bins.len(),
+            _ => 0,
+        };
+        for bin in 0..bins.max(1) {
+            sites.push(Site {
+                point,
+                bin: (bins > 0).then_some(bin),
+                w_gev: p.w_gev,
+                spread_factor: 1.0,
+            });
+        }
+    }
+    let here = Probe {
+        values: Vec::new(),
+        w_shift_gev: 0.0,
+        spread_factor: 1.0,
+    };
+    let found = curve.evaluate(&sites, &[here], true)?;
+    let mut out: Vec<AtPoint> = vec![Vec::new(); points.len()];
+    for curve in found {
+        let values = curve.sigma_nb.iter().zip(&curve.slope_nb_per_gev);
+        for (site, (sigma, slope)) in sites.iter().zip(values) {
+            if let Some(at) = out.get_mut(site.point) {
+                at.push((*sigma, *slope));
+            }
+        }
+    }
+    Ok(out)
+}
+
 fn reading(
     sheet: &Sheet,
     ready: &Ready,
     row: &RowReading,
-    compared: Option<(f64, f64)>,
-    observed: Option<(f64, f64)>,
+    compared: Option<AtPoint>,
+    observed: Option<AtPoint>,
 ) -> PointReading {
     let mut out = PointReading {
         id: row.id.clone(),
@@ -83,22 +123,25 @@ fn reading(
         running: row.running,
         ..PointReading::default()
     };
-    let (Some(point), Some((sigma_nb, _))) = (&row.point, compared) else {
+    let (Some(point), Some(compared)) = (&row.point, compared) else {
         return out;
     };
-    let detection = &ready.frame.scan.detection;
+    let sigmas: Vec<f64> = compared.iter().map(|(sigma, _)| *sigma).collect();
+    let sigma_nb: f64 = sigmas.iter().sum();
+    let scan = &ready.frame.scan;
+    let detection = scan.detection_of(scan.exit_of(point));
     let exposure = Exposure::of(point, detection);
     out.w_gev = Some(point.w_gev);
     out.w_error_gev = point.w_error_gev;
     out.dial = dial(sheet, ready, point.w_gev).unwrap_or_default();
     out.luminosity_nbinv = (exposure.luminosity_nbinv > 0.0).then_some(exposure.luminosity_nbinv);
     out.live_time_h = (point.live_time_h > 0.0).then_some(point.live_time_h);
-    if let Some((value, error)) = cross_section(point, ready, exposure) {
+    if let Some((value, error)) = cross_section(point, detection, exposure) {
         out.sigma_nb = Some(value);
         out.sigma_error_nb = error;
     }
     // Points with an off region are compared with the background that it tells.
-    match compare(point, detection, sigma_nb) {
+    match compare(point, detection, &sigmas) {
         Some(seen) => {
             out.expected = Some(seen.expected);
             out.seen = Some(seen.seen);
@@ -111,9 +154,11 @@ fn reading(
         None => {}
     }
     let rate = detection.luminosity_nbinv_per_h;
-    if let Some((sigma, slope)) = observed
+    if let Some(observed) = observed
         && rate > 0.0
     {
+        let sigma: f64 = observed.iter().map(|(sigma, _)| *sigma).sum();
+        let slope: f64 = observed.iter().map(|(_, slope)| *slope).sum();
         let mut here = detection.clone();
         here.efficiency = point.efficiency.unwrap_or(detection.efficiency);
         let hour = Exposure::per_hour(&here);
@@ -156,15 +201,20 @@ fn off(point: &Point) -> Option<(f64, f64)> {
 }
 
 /// (value, error) on the scale of the curve, nb: (n - background)/(L eps B).
-fn cross_section(point: &Point, ready: &Ready, exposure: Exposure) -> Option<(f64, f64)> {
+fn cross_section(
+    point: &Point,
+    detection: &Detection,
+    exposure: Exposure,
+) -> Option<(f64, f64)> {
     match point.measured {
-        Measured::Nothing => None,
+        // Bins and background runs are no point of the total's curve.
+        Measured::Nothing | Measured::Bins { .. } | Measured::BeamsApart { .. } => None,
         Measured::CrossSection { sigma_nb, error_nb } => Some((sigma_nb, error_nb)),
         Measured::Counts { n, off } => {
             let per = exposure.signal_nbinv;
             let (background, variance) = match off {
                 Some((n_off, tau)) => (n_off / tau, n_off / (tau * tau)),
-                None => (exposure.background(&ready.frame.scan.detection), 0.0),
+                None => (exposure.background(detection), 0.0),
             };
             // A count of 0 is no measurement without error: its Poisson interval reaches to about 1.
             (per > 0.0).then(|| ((n - background) / per, (n.max(1.0) + variance).sqrt() / per))
