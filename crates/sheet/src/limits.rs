@@ -137,6 +137,7 @@ pub const TABLE: &[Limit] = &[
     from("model.continuum_factor", "factor on the continuum", Number, (0.0, 100.0), "vacuum polarisation is a number near 1"),
     from("model.accuracy", "relative accuracy", Number, (1e-9, 1e-3), "finer than 1e-9 is below what the radiator itself is good for; coarser than 1e-3 shows"),
     above("detection.efficiency", "efficiency", Number, (0.0, 1.0), "nothing is seen with an efficiency of 0"),
+    above("detection.photon_cut", "cut on W that the efficiency belongs to", Energy, (0.0, TOP_GEV), ABOVE_ZERO),
     above("detection.decay_fraction", "decay fraction", Number, (0.0, 1.0), "nothing is seen with a fraction of 0"),
     from("detection.background_cross_section", "background cross section", CrossSection, (0.0, 1e12), "a cross section is 0 or more"),
     from("detection.background_rate", "background rate", Rate, (0.0, 1e12), "a rate is 0 or more"),

@@ -40,8 +40,8 @@ pub struct Comparison {
 pub fn compare(
     null: (&Scan, &FitSettings),
     alternative: (&Scan, &FitSettings),
-    trials: u64,
-    seed: u64,
+    (trials, seed): (u64, u64),
+    progress: &mut dyn FnMut(u64),
 ) -> Answer<Comparison> {
     let (a, b) = (spins(&null.0.hypothesis), spins(&alternative.0.hypothesis));
     let bins = |scan: &Scan| {
@@ -97,6 +97,7 @@ pub fn compare(
     let plain = second.problem().start();
     let mut extreme = 0.0;
     for k in 0..trials {
+        progress(k);
         let q0 = ensemble.minimum(k)?.expansion.value;
         let (kinds, _) = ensemble.draw(k)?;
         second.likelihood().replace_measured(&kinds);

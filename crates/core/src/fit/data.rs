@@ -71,7 +71,10 @@ pub(super) fn data(scan: &Scan, free_background: &[bool]) -> Answer<(Vec<Datum>,
                         field(point, "live_time"),
                         point.live_time_h,
                         "a live time above 0",
-                        format!("point {} has counts without beams but no live time", point.id),
+                        format!(
+                            "point {} has counts without beams but no live time",
+                            point.id
+                        ),
                     ));
                 }
                 out.push(Datum {

@@ -5,7 +5,7 @@ use super::equivalent::gamma_product_gev2;
 use super::fitter::Fitter;
 use super::likelihood::{OfCoordinates, Target};
 use super::profile::End;
-use crate::amplitude::hypothesis::Hypothesis;
+use crate::amplitude::hypothesis::{Hypothesis, Resonance, Strength};
 use crate::beam::Beams;
 use crate::error::Answer;
 use crate::kinematics::break_up_momentum_gev;
@@ -49,7 +49,7 @@ pub struct DerivedValue {
 }
 
 /// What can be derived from a hypothesis: products of strengths, lifetime, peak cross section and area of each
-/// resonance alone, the pole next to the real axis.
+/// resonance alone, the Yukawa coupling of a spin 0 to the beams, the pole next to the real axis.
 ///
 /// Peak: (2J+1)/(n_a n_b) (4 pi/k^2) B_in B_f at W = M (PDG, "Resonances"); area: pi/2 Gamma times the peak, the
 /// integral of a narrow Breit-Wigner over W.
@@ -92,6 +92,21 @@ pub fn quantities(hypothesis: &Hypothesis, beams: &Beams) -> Vec<Quantity> {
                 0.5 * core::f64::consts::PI * r.width_gev * peak,
             );
         }
+        if let (0, Some((gamma_gev, known))) = (wave.twice_j, entrance_width_gev(r))
+            && let Some(beta) = velocity(r.mass_gev, beams)
+        {
+            // Tree width of a scalar into the beams, L = -g phi psibar psi: Gamma = g^2 M beta^3/(8 pi).
+            let g2 = 8.0 * core::f64::consts::PI * gamma_gev / (r.mass_gev * beta * beta * beta);
+            let (name, label) = if known {
+                ("g", "Yukawa coupling to the beams (scalar)")
+            } else {
+                (
+                    "g_root_bf",
+                    "Yukawa coupling to the beams (scalar) times the root of B_f",
+                )
+            };
+            push(name, label, "", g2.max(0.0).sqrt());
+        }
         let pole = Propagator::new(&r.form, r.mass_gev, r.width_gev, "")
             .ok()
             .and_then(|p| p.poles().poles.into_iter().next());
@@ -106,6 +121,25 @@ pub fn quantities(hypothesis: &Hypothesis, beams: &Beams) -> Vec<Quantity> {
         }
     }
     out
+}
+
+/// Entrance width, GeV, and whether it is known without the exit fraction.
+fn entrance_width_gev(r: &Resonance) -> Option<(f64, bool)> {
+    match r.strength {
+        Strength::PartialWidths { gamma_in_gev, .. } => Some((gamma_in_gev, true)),
+        Strength::Branchings { b_in, .. } => Some((b_in * r.width_gev, true)),
+        Strength::GammaInBf { gev } => Some((gev, false)),
+        Strength::BinBf { product } => Some((product * r.width_gev, false)),
+        _ => None,
+    }
+}
+
+/// Velocity of two equal spin-1/2 beams at W = `mass_gev`, above their threshold.
+fn velocity(mass_gev: f64, beams: &Beams) -> Option<f64> {
+    let (a, b) = (&beams.first, &beams.second);
+    let fermions = a.spin_states == 2 && b.spin_states == 2 && a.mass_gev == b.mass_gev;
+    let x = 2.0 * a.mass_gev / mass_gev;
+    (fermions && x < 1.0).then(|| (1.0 - x * x).sqrt())
 }
 
 const TOLERANCE: Tolerance = Tolerance {

@@ -28,8 +28,8 @@ pub fn p_value_by_trials(
     scan: &Scan,
     settings: &FitSettings,
     fit: &FitResult,
-    trials: u64,
-    seed: u64,
+    (trials, seed): (u64, u64),
+    progress: &mut dyn FnMut(u64),
 ) -> Answer<TrialsPValue> {
     let count = fit.parameters.len();
     let mut ensemble = Ensemble::at(
@@ -43,6 +43,7 @@ pub fn p_value_by_trials(
     )?;
     let (mut above, mut total) = (0u64, 0u64);
     for k in 0..trials {
+        progress(k);
         let minimum = ensemble.minimum(k)?;
         if minimum.stop.is_minimum() {
             total += 1;

@@ -406,10 +406,8 @@ impl CurveModel for ScanCurve {
         let mut groups: Vec<Vec<usize>> = Vec::new();
         for (i, site) in sites.iter().enumerate() {
             let place = self.place(site);
-            let same = |g: &&mut Vec<usize>| {
-                g.first()
-                    .is_some_and(|k| self.place(&sites[*k]) == place)
-            };
+            let same =
+                |g: &&mut Vec<usize>| g.first().is_some_and(|k| self.place(&sites[*k]) == place);
             match groups.iter_mut().find(same) {
                 Some(group) => group.push(i),
                 None => groups.push(vec![i]),

@@ -55,6 +55,34 @@ pub fn significance(p: f64) -> f64 {
     -normal_quantile(p)
 }
 
+/// ln of the upper tail of the normal distribution above z, also where the tail itself underflows
+/// (continued fraction, Abramowitz & Stegun 26.2.14, above z = 10; relative accuracy 1e-12).
+#[must_use]
+pub fn ln_normal_tail(z: f64) -> f64 {
+    if z < 10.0 {
+        return ln(normal_cdf(-z));
+    }
+    let mut fraction = z;
+    for k in (1..=60).rev() {
+        fraction = z + f64::from(k) / fraction;
+    }
+    -0.5 * z * z - 0.5 * ln(2.0 * core::f64::consts::PI) - ln(fraction)
+}
+
+/// z with [`ln_normal_tail`] of z = `ln_p`, for `ln_p` < 0.
+#[must_use]
+pub fn significance_of_ln(ln_p: f64) -> f64 {
+    if ln_p > -200.0 {
+        return significance(exp(ln_p).min(1.0));
+    }
+    // Newton's method from the leading term; the derivative is about -z.
+    let mut z = (-2.0 * ln_p).sqrt();
+    for _ in 0..20 {
+        z += (ln_normal_tail(z) - ln_p) / z;
+    }
+    z
+}
+
 /// Regularised lower incomplete gamma function P(a, x), a > 0, x >= 0.
 /// Series below a+1, continued fraction above (DLMF 8.7.1, 8.9.2); relative accuracy about 1e-13 for a < 1e5.
 #[must_use]

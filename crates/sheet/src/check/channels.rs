@@ -131,7 +131,11 @@ pub fn channels(
     let mut out = Vec::with_capacity(sheet.channels.len());
     for (i, channel) in sheet.channels.iter().enumerate() {
         let path = format!("channels[{i}].name");
-        let twice = sheet.channels.iter().take(i).any(|c| c.name == channel.name);
+        let twice = sheet
+            .channels
+            .iter()
+            .take(i)
+            .any(|c| c.name == channel.name);
         if channel.name.trim().is_empty() || twice || channel.name == sheet.model.final_state {
             log.refuse(
                 &path,

@@ -70,6 +70,19 @@ pub fn common_errors(sheet: &Sheet, log: &mut Log) -> CommonErrors {
             "An error common to a fill is given, but no row says which fill it belongs to.",
         );
     }
+    if let Some(monitor) = data.luminosity_monitor {
+        let fed = match monitor {
+            doc::LuminosityMonitor::WideAngle => Some("elastic scattering at wide angles"),
+            doc::LuminosityMonitor::MuonPairs => Some("muon pairs"),
+            _ => None,
+        };
+        if let Some(process) = fed {
+            log.warn(
+                "luminosity-fed-by-resonance",
+                format!("The luminosity is measured with {process}: the resonance decays into them too, so on the peak it counts its own events as luminosity and comes out too low. Take small angles or two photons, or subtract the resonance's part."),
+            );
+        }
+    }
     // A free spread carries its own constraint; otherwise how well it is known is an error of the model.
     let free = sheet.fit.free.iter().any(|id| id == "spread");
     let constrained = sheet

@@ -28,7 +28,13 @@ pub fn read(sheet: &Sheet, frame: Option<&Frame>, log: &mut Log) -> Vec<RowReadi
     let mut out = Vec::with_capacity(sheet.data.rows.len());
     let mut starts = Vec::with_capacity(sheet.data.rows.len());
     unique_ids(sheet, log);
-    if sheet.data.stage != Stage::Observed && sheet.data.rows.iter().any(|r| r.counts.is_some() || !r.angle_bins.is_empty()) {
+    if sheet.data.stage != Stage::Observed
+        && sheet
+            .data
+            .rows
+            .iter()
+            .any(|r| r.counts.is_some() || !r.angle_bins.is_empty())
+    {
         log.refuse(
             "data.stage",
             "",
@@ -428,10 +434,18 @@ fn angle_bins(path: &str, row: &Row, log: &mut Log) -> Option<Vec<CountedBin>> {
     for (i, (bin, typed)) in bins.iter().zip(&row.angle_bins).enumerate() {
         let at = format!("{path}.angle_bins[{i}].to");
         if bin.from >= bin.to {
-            log.refuse(&at, &typed.to, "above the lower edge", "the bin has no width");
+            log.refuse(
+                &at,
+                &typed.to,
+                "above the lower edge",
+                "the bin has no width",
+            );
         }
         let others = bins.iter().take(i);
-        if others.into_iter().any(|o| bin.from < o.to && o.from < bin.to) {
+        if others
+            .into_iter()
+            .any(|o| bin.from < o.to && o.from < bin.to)
+        {
             log.refuse(
                 &at,
                 &typed.to,

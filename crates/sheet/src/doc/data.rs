@@ -44,6 +44,9 @@ pub struct Data {
     /// Scale factors are 1 + delta eta (Gaussian) instead of exp(delta eta).
     #[serde(skip_serializing_if = "core::ops::Not::not")]
     pub gaussian_factors: bool,
+    /// Process that the luminosity is measured with.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub luminosity_monitor: Option<LuminosityMonitor>,
     /// Which luminosity counts where rows bring both.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub luminosity_source: Option<LuminositySource>,
@@ -83,6 +86,24 @@ pub enum LuminositySource {
     Online,
     /// Final analysis.
     Final,
+}
+
+/// Process that a luminosity is measured with.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize, Copy, Eq)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+#[cfg_attr(test, derive(schemars::JsonSchema))]
+#[serde(rename_all = "snake_case")]
+pub enum LuminosityMonitor {
+    /// Elastic scattering of the beams at small angles.
+    SmallAngle,
+    /// Elastic scattering of the beams at wide angles: a resonance decays into it.
+    WideAngle,
+    /// Annihilation into two photons.
+    TwoPhotons,
+    /// Muon pairs: a resonance decays into them.
+    MuonPairs,
+    /// Something that no resonance feeds.
+    Other,
 }
 
 /// One row of data. Every field but setting or w, and counts or cross section, is optional.

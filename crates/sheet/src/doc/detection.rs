@@ -12,6 +12,9 @@ pub struct Detection {
     /// Efficiency where a row brings none.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub efficiency: Option<Quantity>,
+    /// Least W after radiation for which the efficiency was determined.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub photon_cut: Option<Quantity>,
     /// Decay fractions of the final state's particles.
     #[serde(skip_serializing_if = "Option::is_none")]
     pub decay_fraction: Option<Quantity>,

@@ -16,7 +16,7 @@ mod resonance;
 
 pub use beam::{Arrangement, Beam, Calibration, Dial, ParticleChoice, Spread, SpreadKind};
 pub use channel::ExitChannel;
-pub use data::{AngleBin, Data, LuminositySource, Row, Stage};
+pub use data::{AngleBin, Data, LuminosityMonitor, LuminositySource, Row, Stage};
 pub use detection::Detection;
 pub use fit::{Constraint, Fit};
 pub use model::{Coherent, Incoherent, Model, Radiation};

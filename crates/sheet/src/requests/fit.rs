@@ -46,6 +46,12 @@ pub fn answer(sheet: &Sheet) -> Answer<Reply> {
                     name: n.name.clone(),
                     pull: n.pull,
                     error: n.error,
+                    impacts: n
+                        .impacts
+                        .iter()
+                        .zip(&result.parameters)
+                        .map(|(impact, p)| p.error.map_or(0.0, |e| impact / e))
+                        .collect(),
                 })
                 .collect(),
             stopped: stopped(&result.stop),

@@ -6,6 +6,7 @@ mod cursor;
 mod curve;
 mod fit;
 mod look_up;
+mod judge;
 mod parameter;
 mod plan;
 mod points;
@@ -21,10 +22,13 @@ mod window;
 pub use csv::csv_of;
 pub use fit::settings as fit_settings;
 pub use look_up::{Given, LookUp};
+pub use judge::{At, SoFar};
 pub use parameter::{Parameter, find as find_parameter};
 pub use ready::Ready;
 pub use reply::*;
-pub use statistics::{DerivedReading, EndReading, ParameterIntervals, PointInfluence, Solution};
+pub use statistics::{
+    DerivedReading, EndReading, ParameterIntervals, PointInfluence, Separated, Solution,
+};
 pub use table::range as energy_range;
 pub use trials::TrialRange;
 pub use window::MassWindow;
@@ -32,6 +36,7 @@ pub use window::MassWindow;
 use crate::doc::Sheet;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Answer, Refusal};
+use widthwise_core::fit::looks::p_value_of_looks;
 use widthwise_core::trials::TrialRow;
 
 /// One request, on the wire `{ "kind": NAME, ...fields }`; [`Request::read`] reads it. The sheet
@@ -154,6 +159,51 @@ pub enum Request {
         /// The sheet.
         sheet: Sheet,
     },
+    /// Likelihood ratio of two sheets that differ in their hypothesis, with significance.
+    Compare {
+        /// The narrower hypothesis.
+        null: Sheet,
+        /// The wider one.
+        alternative: Sheet,
+        /// Pseudo-experiments of the narrower one; 0: none.
+        trials: u32,
+        /// Their seed.
+        #[cfg_attr(feature = "typescript", ts(type = "number"))]
+        seed: u64,
+    },
+    /// p-value of the fit by pseudo-experiments.
+    Goodness {
+        /// The sheet.
+        sheet: Sheet,
+        /// How many.
+        trials: u32,
+        /// Their seed.
+        #[cfg_attr(feature = "typescript", ts(type = "number"))]
+        seed: u64,
+    },
+    /// The fit after each point as it came in, and the residuals against time.
+    AgainstTime {
+        /// The sheet.
+        sheet: Sheet,
+    },
+    /// Upper limit on a strength with all else profiled, against the phase of the background.
+    Limit {
+        /// The sheet.
+        sheet: Sheet,
+        /// Id of the strength.
+        parameter: String,
+        /// Phases, 4 to 72.
+        places: u32,
+    },
+    /// Chance that background alone looks significant at one of several looks.
+    Looks {
+        /// Background counts expected between two looks.
+        rate_per_look: f64,
+        /// Looks.
+        looks: u32,
+        /// One-sided p-value that is looked for.
+        p: f64,
+    },
     /// A range of pseudo-experiments; the sheet's present values are the truth.
     Trials {
         /// The sheet.
@@ -252,6 +302,31 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         } => statistics::contour(sheet, first, second, *places),
         Request::Solutions { sheet } => statistics::solutions(sheet, progress),
         Request::Influence { sheet } => statistics::influence(sheet),
+        Request::Compare {
+            null,
+            alternative,
+            trials,
+            seed,
+        } => judge::compared(null, alternative, (*trials, *seed), progress),
+        Request::Goodness {
+            sheet,
+            trials,
+            seed,
+        } => judge::goodness(sheet, (*trials, *seed), progress),
+        Request::AgainstTime { sheet } => judge::against_time(sheet),
+        Request::Limit {
+            sheet,
+            parameter,
+            places,
+        } => judge::limit(sheet, parameter, *places),
+        Request::Looks {
+            rate_per_look,
+            looks,
+            p,
+        } => Ok(Body::Looks {
+            p: p_value_of_looks(rate_per_look.min(1e3), (*looks).min(1000), *p),
+        }
+        .into()),
         Request::Trials { sheet, range } => trials::run(sheet, range, progress),
         Request::Summary { sheet, rows } => trials::merge(sheet, rows),
         Request::Window { sheet, window } => window::answer(sheet, window),

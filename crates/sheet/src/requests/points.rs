@@ -201,11 +201,7 @@ fn off(point: &Point) -> Option<(f64, f64)> {
 }
 
 /// (value, error) on the scale of the curve, nb: (n - background)/(L eps B).
-fn cross_section(
-    point: &Point,
-    detection: &Detection,
-    exposure: Exposure,
-) -> Option<(f64, f64)> {
+fn cross_section(point: &Point, detection: &Detection, exposure: Exposure) -> Option<(f64, f64)> {
     match point.measured {
         // Bins and background runs are no point of the total's curve.
         Measured::Nothing | Measured::Bins { .. } | Measured::BeamsApart { .. } => None,

@@ -1,12 +1,15 @@
 //! Answers.
 
-use super::statistics::{DerivedReading, ParameterIntervals, PointInfluence, Solution};
+use super::judge::SoFar;
+use super::statistics::{DerivedReading, ParameterIntervals, PointInfluence, Separated, Solution};
 use crate::doc::{Row, Sheet};
 use crate::quantity::unit::Unit;
 use crate::quantity::{Dimension, format};
 use crate::table::RowChange;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Refusal, Warning};
+use widthwise_core::fit::compare::Comparison;
+use widthwise_core::fit::goodness::TrialsPValue;
 use widthwise_core::fit::limits::GlobalSignificance;
 use widthwise_core::trials::{Summary, TrialRow};
 
@@ -159,6 +162,8 @@ pub enum Body {
         note: String,
         /// The sets.
         solutions: Vec<Solution>,
+        /// What would tell the others from the best one; empty where nothing at these energies would.
+        separated: Vec<Separated>,
         /// Warnings.
         warnings: Vec<Warning>,
     },
@@ -172,6 +177,35 @@ pub enum Body {
         repeats: Vec<(String, f64)>,
         /// Warnings.
         warnings: Vec<Warning>,
+    },
+    /// Two hypotheses on the same data.
+    Comparison {
+        /// Ratio and significance.
+        comparison: Comparison,
+    },
+    /// Goodness by pseudo-experiments.
+    Goodness {
+        /// p-value.
+        found: TrialsPValue,
+    },
+    /// The fit against time; the columns are start and pull of each point that has a time.
+    AgainstTime {
+        /// Parameters of the whole fit.
+        parameters: Vec<FittedParameter>,
+        /// After each point.
+        fits: Vec<SoFar>,
+        /// Significance of a drift of the pulls, standard deviations.
+        drift: Option<f64>,
+    },
+    /// Limits on a strength (numbers in the columns).
+    Limit {
+        /// Against the phase of a coherent background; else one number.
+        interferes: bool,
+    },
+    /// Chance of a significant look at background alone.
+    Looks {
+        /// Probability.
+        p: f64,
     },
     /// Pseudo-experiments.
     Trials {
@@ -378,4 +412,6 @@ pub struct Nuisance {
     pub pull: f64,
     /// Error of the pull.
     pub error: f64,
+    /// What one such error does to each fitted parameter, in the parameter's own errors.
+    pub impacts: Vec<f64>,
 }

@@ -56,15 +56,28 @@ fn a_second_channel_joins_the_fit_and_writes_back_to_its_own_field() {
     else {
         panic!("no fit");
     };
-    let own = parameters.iter().find(|p| p.id == "c1.r1.strength").unwrap();
-    assert_eq!((own.field.as_str(), own.unit.as_str()), ("channels[0].strengths[0]", "eV"));
+    let own = parameters
+        .iter()
+        .find(|p| p.id == "c1.r1.strength")
+        .unwrap();
+    assert_eq!(
+        (own.field.as_str(), own.unit.as_str()),
+        ("channels[0].strengths[0]", "eV")
+    );
     assert!(own.error.unwrap() > 0.0 && own.name.contains("eta rho"));
     assert_eq!(pulls.len(), 24);
     // A visit is one energy, whatever it is counted in: no nuisance of a point of the second channel.
-    assert!(nuisances.iter().all(|n| !n.name.ends_with('b')), "{nuisances:?}");
-    let Ok(Body::Points { points, .. }) =
-        answer(&Request::Points { sheet: with_channel() }, &mut |_, _| ()).map(|r| r.body)
-    else {
+    assert!(
+        nuisances.iter().all(|n| !n.name.ends_with('b')),
+        "{nuisances:?}"
+    );
+    let Ok(Body::Points { points, .. }) = answer(
+        &Request::Points {
+            sheet: with_channel(),
+        },
+        &mut |_, _| (),
+    )
+    .map(|r| r.body) else {
         panic!("no points");
     };
     let (first, second) = (&points[6], &points[18]);
@@ -82,7 +95,9 @@ fn a_second_channel_joins_the_fit_and_writes_back_to_its_own_field() {
     let (first, second) = (points[6].expected.unwrap(), points[18].expected.unwrap());
     assert!((second - (2.0 * (first - 4.5) + 4.5)).abs() < 1e-6 * second);
     assert_eq!(
-        find_parameter(&with_channel(), "c1.background.rate").unwrap().field,
+        find_parameter(&with_channel(), "c1.background.rate")
+            .unwrap()
+            .field,
         "channels[0].detection.background_rate"
     );
 }
@@ -121,7 +136,10 @@ fn angular_bins_are_fitted_where_the_hypothesis_has_angles_and_refused_where_not
     // Ostrel looks for a scalar: the same at all angles, so bins carry what the total carries.
     let mut sheet = demos::open("ostrel").unwrap();
     sheet.fit.free = vec!["r1.b_in".into()];
-    let Ok(Body::Fit { parameters: whole, .. }) = fit(sheet.clone()) else {
+    let Ok(Body::Fit {
+        parameters: whole, ..
+    }) = fit(sheet.clone())
+    else {
         panic!("no fit");
     };
     for row in &mut sheet.data.rows {
@@ -132,7 +150,10 @@ fn angular_bins_are_fitted_where_the_hypothesis_has_angles_and_refused_where_not
             bin("0.5", "1", &(n - part).to_string()),
         ];
     }
-    let Ok(Body::Fit { parameters, pulls, .. }) = fit(sheet.clone()) else {
+    let Ok(Body::Fit {
+        parameters, pulls, ..
+    }) = fit(sheet.clone())
+    else {
         panic!("no fit");
     };
     assert!((parameters[0].value / whole[0].value - 1.0).abs() < 1e-5);
@@ -152,7 +173,10 @@ fn angular_bins_are_fitted_where_the_hypothesis_has_angles_and_refused_where_not
     vector.data.rows[0].counts = None;
     vector.data.rows[0].angle_bins = vec![bin("-1", "0", "40"), bin("0", "1", "58")];
     let found = check::understand(&vector).problems;
-    assert!(found[0].message.contains("nothing about angles"), "{found:?}");
+    assert!(
+        found[0].message.contains("nothing about angles"),
+        "{found:?}"
+    );
 }
 
 #[test]

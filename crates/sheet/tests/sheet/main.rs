@@ -3,6 +3,7 @@
 
 mod bad_input;
 mod channels;
+mod judge;
 mod properties;
 mod scenarios;
 mod statistics;

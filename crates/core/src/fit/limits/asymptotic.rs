@@ -32,13 +32,11 @@ pub fn asymptotic_cls(q: f64, q_asimov: f64) -> f64 {
 pub fn limit_against_phase(
     scan: &Scan,
     id: &str,
+    others: &FitSettings,
     phases_rad: &[f64],
     level: f64,
 ) -> Answer<Vec<Option<f64>>> {
-    let settings = FitSettings {
-        free: vec![id.into()],
-        ..FitSettings::default()
-    };
+    let settings = alone_first(id, others);
     phases_rad
         .iter()
         .map(|&phase| {
@@ -47,6 +45,29 @@ pub fn limit_against_phase(
             one_limit(&here, &settings, level)
         })
         .collect()
+}
+
+/// The same without interference: one limit, at the present mass and width.
+///
+/// # Errors
+/// As [`limit_against_phase`].
+pub fn limit_with_errors(
+    scan: &Scan,
+    id: &str,
+    others: &FitSettings,
+    level: f64,
+) -> Answer<Option<f64>> {
+    one_limit(scan, &alone_first(id, others), level)
+}
+
+/// The strength as the first free parameter, then the others.
+fn alone_first(id: &str, others: &FitSettings) -> FitSettings {
+    let mut free = vec![id.to_string()];
+    free.extend(others.free.iter().filter(|o| *o != id).cloned());
+    FitSettings {
+        free,
+        ..others.clone()
+    }
 }
 
 fn one_limit(scan: &Scan, settings: &FitSettings, level: f64) -> Answer<Option<f64>> {

@@ -2,8 +2,8 @@
 
 use super::asymptotic::asymptotic_cls;
 use crate::error::{Answer, Refusal};
-use crate::math::{exp, ln};
-use crate::numerics::probability::{normal_cdf, normal_quantile, poisson_deviance};
+use crate::math::exp;
+use crate::numerics::probability::{normal_cdf, poisson_deviance};
 use crate::numerics::random::Stream;
 use serde::{Deserialize, Serialize};
 
@@ -243,16 +243,6 @@ impl Template {
     #[must_use]
     pub fn local_p_value(&self, n: &[f64]) -> f64 {
         normal_cdf(-self.discovery_statistic(n).sqrt())
-    }
-}
-
-/// Standard deviations of a one-sided p-value that may underflow: from ln p where needed.
-#[must_use]
-pub fn significance_of(p: f64) -> f64 {
-    if p > 1e-300 {
-        -normal_quantile(p)
-    } else {
-        (-2.0 * ln(p.max(f64::MIN_POSITIVE))).sqrt()
     }
 }
 

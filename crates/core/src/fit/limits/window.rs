@@ -1,13 +1,13 @@
 //! A mass window searched for an incoherent signal: limits, significances, look-elsewhere effect.
 
-use super::template::{Limit, Template, significance_of};
+use super::template::{Limit, Template};
 use crate::amplitude::hypothesis::{Hypothesis, Strength};
 use crate::counts::Exposure;
 use crate::error::{Answer, Refusal};
 use crate::fit::equivalent::gamma_product_gev2;
 use crate::line_shape::Chain;
-use crate::math::exp;
-use crate::numerics::probability::normal_cdf;
+use crate::math::{exp, ln};
+use crate::numerics::probability::{ln_normal_tail, significance_of_ln};
 use crate::numerics::random::Stream;
 use crate::scan::{Measured, Scan};
 use serde::{Deserialize, Serialize};
@@ -47,6 +47,8 @@ pub struct GlobalSignificance {
     pub mass_gev: f64,
     /// Local p-value.
     pub local_p: f64,
+    /// Its natural logarithm, where the number itself is too small to be one.
+    pub ln_local_p: f64,
     /// Local significance.
     pub local_significance: f64,
     /// Mean number of upcrossings of the reference level in background-only pseudo-experiments.
@@ -55,6 +57,8 @@ pub struct GlobalSignificance {
     pub reference: f64,
     /// Global p-value: local + upcrossings e^{-(q - reference)/2} (arXiv:1005.1891, eq. 6), at most 1; one degree of freedom.
     pub global_p: f64,
+    /// Its natural logarithm.
+    pub ln_global_p: f64,
     /// Global significance.
     pub global_significance: f64,
 }
@@ -99,16 +103,22 @@ pub fn mass_window(
         (Some(place), Some(first)) if settings.trials > 0 => {
             let q = place.local_significance * place.local_significance;
             let upcrossings = upcrossings(&known, &first.background, settings);
-            let local_p = normal_cdf(-place.local_significance);
-            let global_p = (local_p + upcrossings * exp(-0.5 * (q - REFERENCE))).min(1.0);
+            // Logarithms: at great significance the p-values are below the smallest number.
+            let ln_local_p = ln_normal_tail(place.local_significance);
+            let ln_trials = ln(upcrossings.max(f64::MIN_POSITIVE)) - 0.5 * (q - REFERENCE);
+            let larger = ln_local_p.max(ln_trials);
+            let sum = exp(ln_local_p - larger) + exp(ln_trials - larger);
+            let ln_global_p = (larger + ln(sum)).min(0.0);
             Some(GlobalSignificance {
                 mass_gev: place.mass_gev,
-                local_p,
+                local_p: exp(ln_local_p),
+                ln_local_p,
                 local_significance: place.local_significance,
                 upcrossings,
                 reference: REFERENCE,
-                global_p,
-                global_significance: significance_of(global_p).max(0.0),
+                global_p: exp(ln_global_p),
+                ln_global_p,
+                global_significance: significance_of_ln(ln_global_p).max(0.0),
             })
         }
         _ => None,

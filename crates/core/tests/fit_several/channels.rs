@@ -1,129 +1,8 @@
 //! Several exit channels, angular bins, a thermometer and runs with the beams apart in one fit.
-#![allow(
-    clippy::unwrap_used,
-    clippy::panic,
-    reason = "test helpers stop where a value is missing"
-)]
 
-use widthwise_core::amplitude::hypothesis::*;
-use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
+use super::*;
 use widthwise_core::fit::compare::compare;
-use widthwise_core::fit::{Constraint, FitResult, FitSettings, Fitter, fit};
-use widthwise_core::scan::*;
-use widthwise_core::units::M_ELECTRON_GEV;
-
-fn beams() -> Beams {
-    let particle = BeamParticle {
-        name: "e-".into(),
-        mass_gev: M_ELECTRON_GEV,
-        spin_states: 2,
-    };
-    Beams {
-        first: particle.clone(),
-        second: particle,
-        arrangement: Arrangement::EqualBeams { crossing_rad: 0.0 },
-        dial: SettingKind::W,
-    }
-}
-
-fn wave(mass_gev: f64, width_gev: f64, gamma_bf_gev: f64, twice_j: u8) -> PartialWave {
-    PartialWave {
-        twice_j,
-        resonances: vec![Resonance {
-            name: "V".into(),
-            mass_gev,
-            width_gev,
-            strength: Strength::GammaInBf { gev: gamma_bf_gev },
-            phase_rad: 0.0,
-            form: Form::ConstantWidth,
-            entrance: Vertex::Constant,
-            exit: Vertex::Constant,
-        }],
-        coherent: None,
-        incoherent: None,
-        final_threshold_gev: 0.5,
-        continuum_factor: 1.0,
-    }
-}
-
-const OFFSETS_MEV: [f64; 7] = [-6.0, -1.5, -0.6, 0.0, 0.7, 1.6, 6.0];
-
-fn point(id: &str, w_gev: f64, channel: Option<&str>) -> Point {
-    Point {
-        id: id.into(),
-        group: None,
-        w_gev,
-        w_error_gev: 0.0,
-        sigma_w_gev: None,
-        luminosity_nbinv: 100.0,
-        luminosity_error_nbinv: 0.0,
-        live_time_h: 3.0,
-        live_fraction: 1.0,
-        efficiency: None,
-        efficiency_error: 0.0,
-        channel: channel.map(Into::into),
-        measured: Measured::Counts { n: 0.0, off: None },
-        start_h: None,
-    }
-}
-
-fn scan(hypothesis: Hypothesis, m_gev: f64) -> Scan {
-    Scan {
-        beams: beams(),
-        hypothesis,
-        chain: ChainSettings {
-            w_min_gev: None,
-            spread: Spread::Gaussian {
-                sigma_gev: 0.5e-3,
-                w0_gev: m_gev,
-                power: 2.0,
-            },
-            accuracy: 1e-7,
-        },
-        detection: Detection {
-            efficiency: 0.4,
-            decay_fraction: 1.0,
-            sigma_bg_nb: 0.0,
-            rate_bg_per_h: 2.0,
-            luminosity_nbinv_per_h: 30.0,
-        },
-        exits: Vec::new(),
-        stage: Stage::Observed,
-        points: OFFSETS_MEV
-            .iter()
-            .enumerate()
-            .map(|(i, o)| point(&format!("{}", i + 1), m_gev + 1e-3 * o, None))
-            .collect(),
-        common: CommonErrors::default(),
-        covariance_nb2: None,
-    }
-}
-
-/// Every count as the present parameters let expect it.
-fn as_expected(scan: &mut Scan) {
-    let mut fitter = Fitter::new(scan, &FitSettings::default()).unwrap();
-    let start = fitter.problem().start();
-    let mu = fitter.likelihood().predict(&start).unwrap().mu;
-    let mut next = mu.into_iter();
-    for p in &mut scan.points {
-        match &mut p.measured {
-            Measured::Counts { n, .. } | Measured::BeamsApart { n } => *n = next.next().unwrap(),
-            Measured::Bins { bins } => bins.iter_mut().for_each(|b| b.n = next.next().unwrap()),
-            _ => {}
-        }
-    }
-}
-
-fn settings(free: &[&str]) -> FitSettings {
-    FitSettings {
-        free: free.iter().map(|f| (*f).to_string()).collect(),
-        ..FitSettings::default()
-    }
-}
-
-fn error(result: &FitResult, id: &str) -> f64 {
-    result.parameter(id).unwrap().error.unwrap()
-}
+use widthwise_core::fit::{Constraint, fit};
 
 fn two_channels() -> Scan {
     let mut all = scan(Hypothesis::PartialWave(wave(2.9, 1.2e-3, 30e-9, 2)), 2.9);
@@ -220,12 +99,19 @@ fn channels_of_a_visit_share_its_energy_error() {
 /// mass of the wanted state is known to the thermometer's statistics instead of the offset's prior.
 #[test]
 fn a_thermometer_measures_offset_and_spread() {
-    let mut all = scan(Hypothesis::PartialWave(wave(3.686, 0.3e-3, 0.1e-6, 2)), 3.686);
+    let mut all = scan(
+        Hypothesis::PartialWave(wave(3.686, 0.3e-3, 0.1e-6, 2)),
+        3.686,
+    );
     all.common.energy_gev = 0.4e-3;
     let without = {
         let mut s = all.clone();
         as_expected(&mut s);
-        fit(&s, &settings(&["r1.mass", "r1.width", "r1.strength", "spread"])).unwrap()
+        fit(
+            &s,
+            &settings(&["r1.mass", "r1.width", "r1.strength", "spread"]),
+        )
+        .unwrap()
     };
     all.exits.push(Exit {
         name: "thermometer".into(),
@@ -240,12 +126,27 @@ fn a_thermometer_measures_offset_and_spread() {
         all.points.push(p);
     }
     as_expected(&mut all);
-    let free = ["r1.mass", "r1.width", "r1.strength", "spread", "c1.r1.strength"];
+    let free = [
+        "r1.mass",
+        "r1.width",
+        "r1.strength",
+        "spread",
+        "c1.r1.strength",
+    ];
     let with = fit(&all, &settings(&free)).unwrap();
     assert!(with.statistic < 1e-9);
     assert!(error(&without, "r1.mass") > 0.39e-3);
-    assert!(error(&with, "r1.mass") < 0.05e-3, "{}", error(&with, "r1.mass"));
-    assert!(error(&with, "r1.width") < 0.7 * error(&without, "r1.width"), "{} {}", error(&with, "r1.width"), error(&without, "r1.width"));
+    assert!(
+        error(&with, "r1.mass") < 0.05e-3,
+        "{}",
+        error(&with, "r1.mass")
+    );
+    assert!(
+        error(&with, "r1.width") < 0.7 * error(&without, "r1.width"),
+        "{} {}",
+        error(&with, "r1.width"),
+        error(&without, "r1.width")
+    );
     // The offset that the thermometer has seen is found: points of both moved by 0.4 MeV.
     for p in &mut all.points {
         p.w_gev -= 0.4e-3;
@@ -327,14 +228,24 @@ fn angular_bins_measure_the_phase_between_waves() {
     as_expected(&mut all);
     let free = ["r1.strength", "r2.strength", "w2.phase"];
     let total = fit(&all, &settings(&free)).unwrap();
-    assert!(total.parameter("w2.phase").unwrap().error.is_none_or(|e| e > 10.0));
+    assert!(
+        total
+            .parameter("w2.phase")
+            .unwrap()
+            .error
+            .is_none_or(|e| e > 10.0)
+    );
     for p in &mut all.points {
         p.measured = bins(&[-1.0, 0.0, 1.0], false);
     }
     as_expected(&mut all);
     let result = fit(&all, &settings(&free)).unwrap();
     assert_eq!(result.points.len(), 14);
-    assert!(error(&result, "w2.phase") < 0.2, "{}", error(&result, "w2.phase"));
+    assert!(
+        error(&result, "w2.phase") < 0.2,
+        "{}",
+        error(&result, "w2.phase")
+    );
     // The sign of the phase is not free: starting elsewhere ends at the same place.
     let mut elsewhere = all.clone();
     elsewhere.hypothesis.set("w2.phase", 0.3).unwrap();
@@ -364,7 +275,7 @@ fn spin_needs_angular_bins() {
         ..vector.clone()
     };
     let free = settings(&["r1.strength"]);
-    let refused = compare((&vector, &free), (&tensor, &free), 0, 1).unwrap_err();
+    let refused = compare((&vector, &free), (&tensor, &free), (0, 1), &mut |_| ()).unwrap_err();
     assert!(refused.message.contains("(2J+1)"), "{}", refused.message);
     for p in &mut vector.points {
         p.measured = bins(&[0.0, 0.25, 0.5, 0.75, 1.0], true);
@@ -375,7 +286,7 @@ fn spin_needs_angular_bins() {
         ..vector.clone()
     };
     // sin^2 against sin^2 cos^2 in the limit of many counts: the wrong one is far off.
-    let found = compare((&tensor, &free), (&vector, &free), 0, 1).unwrap();
+    let found = compare((&tensor, &free), (&vector, &free), (0, 1), &mut |_| ()).unwrap();
     assert!(found.ratio > 25.0, "{}", found.ratio);
     assert!(found.wilks_p.is_none());
 }
