@@ -15,4 +15,8 @@ to: string,
 /**
  * Counts.
  */
-counts: string, };
+counts: string, 
+/**
+ * Efficiency, if not the row's.
+ */
+efficiency?: string | null, };

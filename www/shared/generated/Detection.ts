@@ -9,6 +9,10 @@ export type Detection = {
  */
 efficiency: string | null, 
 /**
+ * Least W after radiation for which the efficiency was determined.
+ */
+photon_cut: string | null, 
+/**
  * Decay fractions of the final state's particles.
  */
 decay_fraction: string | null, 

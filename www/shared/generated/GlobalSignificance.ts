@@ -13,6 +13,10 @@ mass_gev: number,
  */
 local_p: number, 
 /**
+ * Its natural logarithm, where the number itself is too small to be one.
+ */
+ln_local_p: number, 
+/**
  * Local significance.
  */
 local_significance: number, 
@@ -28,6 +32,10 @@ reference: number,
  * Global p-value: local + upcrossings e^{-(q - reference)/2} (arXiv:1005.1891, eq. 6), at most 1; one degree of freedom.
  */
 global_p: number, 
+/**
+ * Its natural logarithm.
+ */
+ln_global_p: number, 
 /**
  * Global significance.
  */

@@ -15,4 +15,8 @@ pull: number,
 /**
  * Error of the pull.
  */
-error: number, };
+error: number, 
+/**
+ * What one such error does to each fitted parameter, in the parameter's own errors.
+ */
+impacts: Array<number>, };

@@ -139,7 +139,63 @@ sheet: Sheet, } | { "kind": "influence",
 /**
  * The sheet.
  */
-sheet: Sheet, } | { "kind": "trials", 
+sheet: Sheet, } | { "kind": "compare", 
+/**
+ * The narrower hypothesis.
+ */
+null: Sheet, 
+/**
+ * The wider one.
+ */
+alternative: Sheet, 
+/**
+ * Pseudo-experiments of the narrower one; 0: none.
+ */
+trials: number, 
+/**
+ * Their seed.
+ */
+seed: number, } | { "kind": "goodness", 
+/**
+ * The sheet.
+ */
+sheet: Sheet, 
+/**
+ * How many.
+ */
+trials: number, 
+/**
+ * Their seed.
+ */
+seed: number, } | { "kind": "against_time", 
+/**
+ * The sheet.
+ */
+sheet: Sheet, } | { "kind": "limit", 
+/**
+ * The sheet.
+ */
+sheet: Sheet, 
+/**
+ * Id of the strength.
+ */
+parameter: string, 
+/**
+ * Phases, 4 to 72.
+ */
+places: number, } | { "kind": "looks", 
+/**
+ * Background counts expected between two looks.
+ */
+rate_per_look: number, 
+/**
+ * Looks.
+ */
+looks: number, 
+/**
+ * One-sided p-value that is looked for.
+ */
+p: number, } | { "kind": "trials", 
 /**
  * The sheet.
  */

@@ -83,11 +83,15 @@ efficiency: string | null,
  */
 efficiency_error: string | null, 
 /**
- * Exit channel.
+ * Exit channel: the name of a further one, else the sheet's own.
  */
 channel: string | null, 
 /**
- * Angular bins: edges in |cos theta| (or -1, 0, 1 for backward/forward) and counts.
+ * Counted with the beams apart: background rate alone.
+ */
+beams_apart: boolean, 
+/**
+ * Angular bins, which make up the row's counts: edges in |cos theta|, or in cos theta if one is below 0.
  */
 angle_bins: Array<AngleBin>, 
 /**

@@ -2,6 +2,7 @@
 import type { Beam } from "./Beam";
 import type { Data } from "./Data";
 import type { Detection } from "./Detection";
+import type { ExitChannel } from "./ExitChannel";
 import type { Fit } from "./Fit";
 import type { Model } from "./Model";
 import type { Plan } from "./Plan";
@@ -38,6 +39,10 @@ beam: Beam,
  * Hypothesis.
  */
 model: Model, 
+/**
+ * Further exit channels, fitted together.
+ */
+channels?: Array<ExitChannel>, 
 /**
  * From cross section to counts.
  */
