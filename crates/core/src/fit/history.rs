@@ -45,7 +45,7 @@ pub fn history(scan: &Scan, settings: &FitSettings, whole: &FitResult) -> Answer
     let stride = order.len().saturating_sub(least) / MOST + 1;
     let mut out = Vec::new();
     for n in least..=order.len() {
-        if (order.len() - n) % stride != 0 {
+        if !(order.len() - n).is_multiple_of(stride) {
             continue;
         }
         let mut later: Vec<usize> = order[n..].to_vec();

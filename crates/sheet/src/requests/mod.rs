@@ -5,8 +5,8 @@ mod csv;
 mod cursor;
 mod curve;
 mod fit;
-mod look_up;
 mod judge;
+mod look_up;
 mod parameter;
 mod plan;
 mod points;
@@ -21,8 +21,8 @@ mod window;
 
 pub use csv::csv_of;
 pub use fit::settings as fit_settings;
-pub use look_up::{Given, LookUp};
 pub use judge::{At, SoFar};
+pub use look_up::{Given, LookUp};
 pub use parameter::{Parameter, find as find_parameter};
 pub use ready::Ready;
 pub use reply::*;
@@ -162,9 +162,9 @@ pub enum Request {
     /// Likelihood ratio of two sheets that differ in their hypothesis, with significance.
     Compare {
         /// The narrower hypothesis.
-        null: Sheet,
+        null: Box<Sheet>,
         /// The wider one.
-        alternative: Sheet,
+        alternative: Box<Sheet>,
         /// Pseudo-experiments of the narrower one; 0: none.
         trials: u32,
         /// Their seed.

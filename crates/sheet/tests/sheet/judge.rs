@@ -27,8 +27,8 @@ fn interference_of_scenario_a_is_significant() {
     null.fit.free.retain(|id| !id.starts_with("coherent"));
     null.fit.free.push("incoherent.0".into());
     let request = Request::Compare {
-        null: null.clone(),
-        alternative,
+        null: Box::new(null.clone()),
+        alternative: Box::new(alternative),
         trials: 0,
         seed: 1,
     };
@@ -42,8 +42,8 @@ fn interference_of_scenario_a_is_significant() {
     );
     null.data.rows.pop();
     let request = Request::Compare {
-        null,
-        alternative: saltmere(),
+        null: Box::new(null),
+        alternative: Box::new(saltmere()),
         trials: 0,
         seed: 1,
     };
@@ -54,8 +54,8 @@ fn interference_of_scenario_a_is_significant() {
     let mut spin = saltmere();
     spin.model.j = "2".into();
     let request = Request::Compare {
-        null: saltmere(),
-        alternative: spin,
+        null: Box::new(saltmere()),
+        alternative: Box::new(spin),
         trials: 0,
         seed: 1,
     };
