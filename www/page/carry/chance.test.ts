@@ -1,12 +1,12 @@
 // What comes in by link or camera is not trusted: any text is read or refused in words, nothing else.
-// CARRY_SECONDS makes a longer run of it (default: some hundred cases each).
+// VITE_CARRY_SECONDS makes a longer run of it (default: some hundred cases each).
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import { decode45, encode45 } from "./base45";
 import { fromAddress, pack, toAddress, unpack, Unreadable } from "./pack";
 import { collect, missing, seriesOf, textOf, type Collected } from "./series";
 
-const seconds = Number(process.env["CARRY_SECONDS"] ?? 0);
+const seconds = Number(import.meta.env["VITE_CARRY_SECONDS"] ?? 0);
 const how = seconds > 0 ? { interruptAfterTimeLimit: 1000 * seconds, numRuns: 1e9 } : { numRuns: 300 };
 const timeout = 30_000 + 2000 * seconds;
 
