@@ -7,4 +7,5 @@ import { decode85 } from "./bridge/base85";
 
 const script = document.createElement("script");
 script.textContent = strFromU8(inflateSync(decode85(document.getElementById("page-program")?.textContent?.trim() ?? "")));
-document.body.append(script);
+// In a task of its own, so that neither is a long one.
+setTimeout(() => document.body.append(script));

@@ -38,7 +38,7 @@ export async function text(driver: WebDriver, selector: string): Promise<string>
 
 /** Waits until a condition in the page holds. */
 export async function until(driver: WebDriver, what: string, body: string, ...values: unknown[]): Promise<void> {
-  await driver.wait(() => driver.executeScript<boolean>(body, ...values), 15_000, what);
+  await driver.wait(() => driver.executeScript<boolean>(body, ...values), 30_000, what);
 }
 
 /** Waits until the curve and the points of the open sheet are drawn. */

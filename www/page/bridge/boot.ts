@@ -18,6 +18,8 @@ function inline(id: string): string {
 }
 
 async function engineBytes(): Promise<Uint8Array<ArrayBuffer>> {
+  // After the page has shown itself: a megabyte is read here.
+  await new Promise((resolve) => setTimeout(resolve));
   const packed = decode85(inline("engine-wasm").trim());
   if (typeof DecompressionStream === "undefined") return new Uint8Array(inflateSync(packed));
   const stream = new Blob([packed]).stream().pipeThrough(new DecompressionStream("deflate-raw"));
