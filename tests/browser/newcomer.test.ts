@@ -7,13 +7,13 @@ import { enter, field, press, text, type, until } from "./support/hand";
 import { fromFile, outgoing } from "./support/page";
 import { afresh } from "./support/speed";
 
-/** Five points of a narrow vector state, invented: W, luminosity, counts (sigma about 15 nb at the top, 42 % efficiency). */
+/** Five points as the hypothesis that is typed in below would give them, read off its curve: W, luminosity, counts. */
 const POINTS = [
-  ["2870.0 MeV", "97.2", "52"],
-  ["2873.2 MeV", "97.2", "224"],
-  ["2874.4 MeV", "97.2", "602"],
-  ["2875.4 MeV", "97.2", "425"],
-  ["2879.0 MeV", "97.2", "131"],
+  ["2871.0 MeV", "97.2", "25"],
+  ["2873.2 MeV", "97.2", "530"],
+  ["2874.4 MeV", "97.2", "1115"],
+  ["2875.2 MeV", "97.2", "530"],
+  ["2878.0 MeV", "97.2", "16"],
 ] as const;
 
 describe.each(engines)("a newcomer in %s", (engine) => {
@@ -72,8 +72,13 @@ describe.each(engines)("a newcomer in %s", (engine) => {
     await fill("plan.hours", "24 h");
     await fill("plan.from", "2868 MeV");
     await fill("plan.to", "2880 MeV");
-    const plans = await driver.findElement(By.css(".room .button-main"));
-    await driver.executeScript("arguments[0].scrollIntoView({ block: 'center' }); arguments[0].click()", plans);
+    await press(driver, "Plan the hours left");
+    // It says itself what it still has to know.
+    await until(driver, "not told what is missing", "return /step of W/.test(document.querySelector('.room .problem').innerText)");
+    await fill("plan.step", "0.2 MeV");
+    await fill("plan.dwell_step", "1 h");
+    await fill("plan.least_dwell", "1 h");
+    await press(driver, "Plan the hours left");
     await until(driver, "no plan", "return /\\d/.test(document.querySelector('.cell-next .figure').innerText)");
 
     // Five points, as they come.
@@ -91,7 +96,7 @@ describe.each(engines)("a newcomer in %s", (engine) => {
     }
 
     // The fit follows by itself.
-    await until(driver, "no fit", "return /2874\\.\\d/.test(document.querySelector('.cell-results').innerText)");
+    await until(driver, "no fit", "return /287\\d\\.\\d/.test(document.querySelector('.cell-results')?.innerText ?? '')");
     await enter(driver, "Fit");
     await until(driver, "no result", "return document.querySelectorAll('.results tbody tr').length === 2");
     const mass = await driver.executeScript<number>("return Number(document.querySelector('.results tbody td').innerText.replace(/[^\\d.]/g, ''))");
@@ -107,6 +112,6 @@ describe.each(engines)("a newcomer in %s", (engine) => {
     await press(driver, "Print");
     await until(driver, "not printed", "return globalThis.printed === true");
     await driver.findElement(By.css("dialog[open]")).sendKeys(Key.ESCAPE);
-    expect(await outgoing(driver, fromFile)).toEqual([]);
-  });
+    expect((await outgoing(driver, fromFile)).filter((address) => address !== `${fromFile}?fresh`)).toEqual([]);
+  }, 240_000);
 });

@@ -133,6 +133,22 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
     done("rate", 0, 2);
   });
 
+  it("tells the next setting, for how long and why, and takes it with one click", async () => {
+    await enter(driver, "Plan");
+    await driver.findElement(By.xpath("//button[normalize-space()='Plan the hours left']")).click();
+    await until(driver, "no plan", "return /\\d/.test(document.querySelector('.cell-next .figure').innerText)".replaceAll("\\\\", "\\"));
+    await enter(driver, "Shift");
+    await driver.executeScript("scrollTo(0, 0)");
+    hand = new Hand(driver);
+    const next = (await seen(driver, ".cell-next")).text;
+    expect(next).toMatch(/\d+\.\d+ MeV/);
+    expect(next).toMatch(/\d+\s*(h|min)/);
+    const dial = /([\d.]+) MeV/.exec(next)?.[1] ?? "none";
+    await hand.press("Accept");
+    await until(driver, "the point does not run", "return document.querySelector('.cell-dial .figure').innerText.startsWith(arguments[0])", dial);
+    done("next setting", 1, 3);
+  });
+
   it("gives the number to dial in one tap, in large digits that can be copied", async () => {
     await hand.press("Look up");
     await until(driver, "no digits", "return document.querySelectorAll('.line-big').length === 4");
