@@ -2,6 +2,7 @@
 import { render } from "preact";
 import { App } from "./app";
 import { examples } from "./examples";
+import { keepPlanning } from "./plan/make";
 import { broken } from "./state/answers";
 import { keepComparing } from "./state/compare";
 import { openText, sheetInLink } from "./state/files";
@@ -29,6 +30,7 @@ export async function start(root: HTMLElement, bridge: Promise<Bridge>): Promise
   }
   keepComparing();
   keepLookingForOthers();
+  keepPlanning();
   keepSaving();
   keepTime();
   keepSavedWords();

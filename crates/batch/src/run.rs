@@ -99,6 +99,7 @@ fn request(command: &str, sheet: Sheet, options: &Options) -> Result<Request, Fa
         "plan" => Request::Plan {
             sheet,
             costs: options.costs,
+            keep: None,
         },
         _ => {
             let (low, high) = match (&options.from, &options.to) {

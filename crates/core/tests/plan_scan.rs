@@ -8,7 +8,8 @@ use widthwise_core::amplitude::hypothesis::{
 use widthwise_core::beam::{Arrangement, BeamParticle, Beams, SettingKind};
 use widthwise_core::fit::{Constraint, FitSettings};
 use widthwise_core::plan::clock::{Fills, Machine, Settle};
-use widthwise_core::plan::for_scan::{Goal, PlanSettings, ScanPlanner};
+use widthwise_core::plan::for_scan::{PlanSettings, ScanPlanner};
+use widthwise_core::plan::goal::Goal;
 use widthwise_core::plan::problem::VisitErrors;
 use widthwise_core::plan::timetable::{Demands, Row};
 use widthwise_core::scan::{ChainSettings, CommonErrors, Detection, Scan, Spread, Stage};
@@ -100,11 +101,13 @@ fn settings(w_gev: Vec<f64>) -> PlanSettings {
     PlanSettings {
         fit: free(),
         goals: vec![Goal::parameter("r1.mass")],
+        rival: None,
         others_share: 0.0,
         w_gev,
         machine: Machine {
             hours: 40.0,
             fills: None,
+            elapsed_h: 0.0,
             blocked_h: Vec::new(),
             calibration_h: None,
             dwell_step_h: 0.5,
@@ -116,6 +119,7 @@ fn settings(w_gev: Vec<f64>) -> PlanSettings {
         demands: Demands::default(),
         visit_errors: VisitErrors::default(),
         fill_energy_gev: 0.0,
+        luminosity: Vec::new(),
         truths: 1,
         wanted: 0.999,
         effort: 2000,
@@ -163,7 +167,7 @@ fn forecast_of_the_scenarios_scan() {
         s.goals.clear();
         s.visit_errors.energy_gev = point;
         s.fill_energy_gev = fill;
-        let planner = ScanPlanner::new(&saltmere(), &s).unwrap();
+        let planner = ScanPlanner::new(&saltmere(), &s, &mut |_, _| {}).unwrap();
         let variances = planner.planner.variances(&rows, 0);
         let mass = 1e6 * variances[0].unwrap().sqrt();
         let width = 1e6 * variances[1].unwrap().sqrt();
@@ -202,8 +206,8 @@ fn report_is_complete() {
     s.fill_energy_gev = 60e-6;
     s.truths = 2;
     s.effort = 200;
-    let planner = ScanPlanner::new(&saltmere(), &s).unwrap();
-    let report = planner.report(true).unwrap();
+    let planner = ScanPlanner::new(&saltmere(), &s, &mut |_, _| {}).unwrap();
+    let report = planner.report(true, &mut |_, _| {}).unwrap().0;
     assert!(report.certificate >= 0.999);
     assert!(report.efficiency > 0.5 && report.efficiency <= 1.0);
     let goal = &report.goals[0];
@@ -232,7 +236,7 @@ fn fitted_errors_equal_the_forecast() {
     s.goals = Vec::new();
     s.machine.hours = 160.0;
     let scan = saltmere();
-    let planner = ScanPlanner::new(&scan, &s).unwrap();
+    let planner = ScanPlanner::new(&scan, &s, &mut |_, _| {}).unwrap();
     let plan = planner.planner.plan().unwrap();
     let forecast = planner.planner.variances(&plan.rows, 0);
     let mut planned = scan;

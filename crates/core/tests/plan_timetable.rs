@@ -8,8 +8,9 @@ use widthwise_core::math;
 use widthwise_core::plan::clock::{Fills, Machine, Settle};
 use widthwise_core::plan::criterion::Criterion;
 use widthwise_core::plan::problem::{Rates, VisitErrors};
+use widthwise_core::plan::scan_rates::brightness;
 use widthwise_core::plan::task::{Planner, Task};
-use widthwise_core::plan::timetable::{Demands, Row};
+use widthwise_core::plan::timetable::{Demands, Row, in_order};
 
 const WIDTH_GEV: f64 = 0.6e-3;
 
@@ -41,6 +42,7 @@ fn machine(hours: f64) -> Machine {
     Machine {
         hours,
         fills: None,
+        elapsed_h: 0.0,
         blocked_h: Vec::new(),
         calibration_h: None,
         dwell_step_h: 0.5,
@@ -348,4 +350,52 @@ fn refusals_are_plain_sentences() {
         Planner::new(crowded).unwrap().plan().unwrap_err().field,
         "plan.demands"
     );
+}
+
+/// Visits laid one after the other: inside the fills, settled, each as long as asked where the hours hold it.
+#[test]
+fn visits_in_order_keep_to_the_clock() {
+    let mut m = machine(20.0);
+    m.fills = Some(Fills {
+        length_h: 6.0,
+        refill_h: 1.0,
+        lifetime_h: Some(5.0),
+    });
+    m.settle.fixed_h = 0.25;
+    let w_gev = [1.0, 2.0, 3.0];
+    let rows = in_order(&m, &w_gev, &[(0, 4.0), (2, 4.0), (1, 3.0)]);
+    let spent = |c: usize| -> f64 {
+        let here = rows.iter().filter(|r| r.candidate == c);
+        here.map(|r| r.live_h).sum()
+    };
+    for (c, hours) in [(0, 4.0), (2, 4.0), (1, 3.0)] {
+        assert!((spent(c) - hours).abs() < 1e-9, "{rows:?}");
+    }
+    for (row, window) in rows.iter().map(|r| (r, m.windows()[r.fill])) {
+        assert!(row.start_h >= window.start_h && row.start_h + row.live_h <= window.end_h + 1e-9);
+        assert!(row.bright_h < row.live_h);
+    }
+    // By hand: 0-4 h, a change, 4.25-6 h; the other 2.25 h after the refill at 7 h (settled by then).
+    assert!((rows[1].start_h - 4.25).abs() < 1e-9 && (rows[1].live_h - 1.75).abs() < 1e-9);
+    assert!((rows[2].start_h - 7.0).abs() < 1e-9 && (rows[2].live_h - 2.25).abs() < 1e-9);
+    // What the hours do not hold falls away.
+    let short = in_order(&machine(3.0), &w_gev, &[(0, 2.0), (1, 4.0)]);
+    let end = short.last().map(|r| r.start_h + r.live_h);
+    assert!(end.unwrap() <= 3.0 + 1e-9, "{short:?}");
+}
+
+#[test]
+fn luminosity_against_energy_is_a_broken_line() {
+    let table = [(1.0, 0.5), (2.0, 1.5), (4.0, 1.0)];
+    for (w, ratio) in [
+        (0.0, 0.5),
+        (1.0, 0.5),
+        (1.5, 1.0),
+        (2.0, 1.5),
+        (3.0, 1.25),
+        (9.0, 1.0),
+    ] {
+        assert!((brightness(&table, w) - ratio).abs() < 1e-15, "{w}");
+    }
+    assert_eq!(brightness(&[], 1.0), 1.0);
 }

@@ -1,7 +1,7 @@
-/** A study of the fit that is asked for by a button, takes its time, and can be cancelled. Its answer outlives the room. */
-import { computed, signal, type ReadonlySignal, type Signal } from "@preact/signals";
+/** A study of the fit that is asked for by a button, takes its time, and can be cancelled. Its answer outlives the room, not the sheet. */
+import { computed, effect, signal, type ReadonlySignal, type Signal } from "@preact/signals";
 import { Cancelled, Refused, Trapped } from "../bridge/failures";
-import { revision, sheet } from "../state/sheet";
+import { openings, revision, sheet } from "../state/sheet";
 import type { Sheet } from "../state/types";
 import type { AskOptions } from "../state/work";
 
@@ -37,6 +37,13 @@ export function study<T>(): Study<T> {
     own = null;
     pace.value = null;
   };
+
+  effect(() => {
+    void openings.value;
+    cancel();
+    made.value = null;
+    refused.value = "";
+  });
 
   return {
     made,

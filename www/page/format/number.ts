@@ -120,3 +120,13 @@ function superscript(value: number): string {
   const marks = "⁰¹²³⁴⁵⁶⁷⁸⁹";
   return (value < 0 ? "⁻" : "") + [...String(Math.abs(value))].map((c) => marks[Number(c)] ?? "").join("");
 }
+
+/** A moment on the clock of this machine, with its day: "Tue 14:30". */
+export function clock(ms: number): string {
+  return new Date(ms).toLocaleString("en-GB", { weekday: "short", hour: "2-digit", minute: "2-digit", hourCycle: "h23" }).replace(",", "");
+}
+
+/** A share as percent. */
+export function percent(share: number, decimals = 1): string {
+  return `${fixed(share * 100, decimals)}${THIN}%`;
+}

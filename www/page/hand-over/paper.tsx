@@ -1,6 +1,6 @@
 /** What stands on the hand-over page: where we are, results, plot, points, assumptions, provenance, cautions. */
 import type { JSX } from "preact";
-import { count, digits, fixed, hours, pValue, signed, THIN, withError } from "../format/number";
+import { clock, count, digits, fixed, hours, pValue, signed, THIN, withError } from "../format/number";
 import { Chart } from "../lanes/chart";
 import { drawBeamTime } from "../lanes/beam-time";
 import { drawLineShape } from "../lanes/line-shape";
@@ -165,7 +165,7 @@ function Plan(): JSX.Element | null {
             <th scope="col" class="number">Dial</th>
             <th scope="col" class="number">W</th>
             <th scope="col" class="number">Time</th>
-            <th scope="col" class="number">Starts in</th>
+            <th scope="col">Begins</th>
             <th scope="col" class="number">Expected</th>
             <th scope="col">Why</th>
           </tr>
@@ -176,16 +176,17 @@ function Plan(): JSX.Element | null {
               <th scope="row" class="number strong"><Quantity text={stop.dial} /></th>
               <td class="number">{(stop.w * 1e3).toFixed(2)} MeV</td>
               <td class="number">{hours(stop.hours)}</td>
-              <td class="number">{hours(stop.start)}</td>
+              <td>{clock(stop.at)}</td>
               <td class="number">{count(Math.round(stop.expected))}</td>
               <td>{stop.why}</td>
             </tr>
           ))}
         </tbody>
       </table>
-      {plan.value?.forecasts.map((forecast) => (
-        <p key={forecast.name}>
-          Error of {forecast.name}: {forecast.now === null ? "unknown" : digits(forecast.now, 2)} now, {forecast.planned === null ? "unknown" : digits(forecast.planned, 2)} {units(forecast.unit)} after it.
+      {plan.value?.forecasts.map(({ name, unit, numbers }) => (
+        <p key={name}>
+          Error of {symbolOf(name, sheet.value).replace(/_/g, "")}: {numbers.now == null ? "unknown" : digits(numbers.now, 2)} now,{" "}
+          {numbers.planned == null ? "unknown" : digits(numbers.planned, 2)} {units(unit)} after it.
         </p>
       ))}
     </section>

@@ -2,7 +2,7 @@
 import type { JSX } from "preact";
 import { useLayoutEffect, useRef } from "preact/hooks";
 import { WhyParameter } from "../fit/why-parameter";
-import { count, hours, signed, THIN, withError } from "../format/number";
+import { clock, count, hours, signed, THIN, withError } from "../format/number";
 import { Quantity } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import { Why } from "../parts/why";
@@ -11,9 +11,8 @@ import { Expected, PValue } from "../rooms/health";
 import * as answers from "../state/answers";
 import { calibration, calibrationAge, needsAttention } from "../state/health";
 import { otherSolutions } from "../state/others";
-import { nextFill, nextStop, planned, type PlannedStop } from "../state/plan";
+import { accept, hoursLeft, nextFill, nextStop, planned, type PlannedStop } from "../state/plan";
 import { room } from "../state/prefs";
-import { addRow } from "../state/rows";
 import { rows, runningIndex, sheet } from "../state/sheet";
 
 /** The strip. */
@@ -245,7 +244,7 @@ function Next(): JSX.Element {
             </Why>
           </p>
           <p class="note">
-            <button type="button" class="link" onClick={() => addRow({ setting: next.dial }, true)}>
+            <button type="button" class="link" onClick={() => accept(next)}>
               Accept
             </button>{" "}
             {hours(next.hours)} · {next.why}
@@ -261,24 +260,26 @@ function whyNext(next: PlannedStop): [string, string][] {
     ["True W", wText(next.w)],
     ["Time there", hours(next.hours)],
     ["Counts expected", count(Math.round(next.expected))],
-    ["Fill", String(next.fill + 1)],
+    ["Begins", clock(next.at)],
+    ["Fill", String(next.fill)],
     ["Hours of the plan", sheet.value.plan.hours ?? "not entered"],
   ];
 }
 
 function Left(): JSX.Element {
   const left = sheet.value.plan.hours;
+  const counted = hoursLeft.value;
   const fill = nextFill.value;
   return (
     <Cell name="Beam time left" kind="cell-left">
-      <p class="figure">{left ? <Quantity text={left} /> : <span class="quiet">–</span>}</p>
+      <p class="figure">{counted !== null ? hours(counted) : left ? <Quantity text={left} /> : <span class="quiet">–</span>}</p>
       <p class="note">
         {left === undefined || left === "" ? (
           <button type="button" class="link" onClick={() => (room.value = "plan")}>
             Enter it
           </button>
         ) : fill !== null ? (
-          `next fill in ${hours(fill)}`
+          `next fill at ${clock(fill)}`
         ) : sheet.value.plan.fill ? (
           <>
             fills of <Quantity text={sheet.value.plan.fill} />

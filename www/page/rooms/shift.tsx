@@ -2,10 +2,9 @@
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
 import { useId } from "preact/hooks";
-import { hours } from "../format/number";
-import { Quantity, units } from "../parts/quantity";
+import { units } from "../parts/quantity";
+import { Caution, Next } from "../plan/next";
 import * as answers from "../state/answers";
-import { nextStop } from "../state/plan";
 import { room } from "../state/prefs";
 import { addRow, closeRow, columnUnit, setCell, withoutUnit, withUnit } from "../state/rows";
 import { rows, runningIndex } from "../state/sheet";
@@ -146,37 +145,20 @@ function StartForm(): JSX.Element {
 }
 
 function NextStop(): JSX.Element {
-  const next = nextStop.value;
   return (
     <fieldset>
       <legend>Next setting</legend>
-      {next === null ? (
-        <p class="empty">
-          No plan yet.{" "}
-          <button type="button" class="link" onClick={() => (room.value = "plan")}>
-            Make one
-          </button>
-        </p>
-      ) : (
-        <>
-          <p class="dial-line">
-            <span class="figure">
-              <Quantity text={next.dial} />
-            </span>{" "}
-            for {hours(next.hours)}
-          </p>
-          <p class="note">{next.why}</p>
-          <p class="actions">
-            <button type="button" class="button button-main" onClick={() => addRow({ setting: next.dial }, true)}>
-              Accept and start
+      <Next
+        empty={
+          <p class="empty">
+            No plan yet.{" "}
+            <button type="button" class="link" onClick={() => (room.value = "plan")}>
+              Make one
             </button>
           </p>
-        </>
-      )}
-      <p class="note">
-        Beam changes are made by the accelerator's operators under the facility's procedures. Radiation and machine protection
-        are not modelled.
-      </p>
+        }
+      />
+      <Caution />
     </fieldset>
   );
 }

@@ -87,13 +87,13 @@ export function removeRow(index: number): void {
   change(`remove ${id}`, (before) => withRows(before, before.data.rows.filter((_, i) => i !== index)));
 }
 
-/** A new row at the end, with an id that no other row has; `running` makes it the running one. */
-export function addRow(content: Partial<Row>, running: boolean): string {
+/** A new row at the end, with an id that no other row has; `running` makes it the running one; `also` is part of the same step. */
+export function addRow(content: Partial<Row>, running: boolean, also: (sheet: Sheet) => Sheet = (same) => same): string {
   const rows = sheet.peek().data.rows;
   const id = freshId(rows);
   const row: Row = { ...content, id, ...(running ? { running: true, start: nowWithZone() } : {}) };
   change(running ? `start ${id}` : `add ${id}`, (before) =>
-    withRows(before, [...before.data.rows.map((other) => (running && other.running ? { ...other, running: false } : other)), row]),
+    withRows(also(before), [...before.data.rows.map((other) => (running && other.running ? { ...other, running: false } : other)), row]),
   );
   return id;
 }

@@ -38,6 +38,8 @@ export const undoable = computed(() => past.value.at(-1)?.did ?? "");
 export const redoable = computed(() => future.value.at(-1)?.did ?? "");
 /** How often the document has changed; also tells an answer from a stale one. */
 export const revision = signal(0);
+/** How often another document has been opened: what was asked of the one before is forgotten. */
+export const openings = signal(0);
 
 /** Replaces the document by another one; with `did` it can be undone. */
 export function open(next: Sheet, did = ""): void {
@@ -48,6 +50,7 @@ export function open(next: Sheet, did = ""): void {
   }
   current.value = next;
   revision.value += 1;
+  openings.value += 1;
 }
 
 /** Changes the document. `did` is what a person would call it; changes with one `key` in a row are one step. */

@@ -20,6 +20,7 @@ type LeftOut =
   | "gaussian_factors"
   | "goals"
   | "blocked"
+  | "luminosity_at"
   | "energy_covariance"
   | "table"
   | "channels"

@@ -10,7 +10,7 @@ export type PlanGoal = {
  */
 quantity: string, 
 /**
- * Error wanted of an energy, in its unit, or relative of anything else ("2 %").
+ * Error wanted, in the quantity's unit ("20 keV", "5 deg") or relative ("2 %").
  */
 wanted: string | null, 
 /**

@@ -68,6 +68,11 @@ costs: Array<[string, number]>,
  */
 loss_if_mass_off: [number, number] | null, 
 /**
+ * With a rival hypothesis: expected 2 ln of the likelihood ratio, the rival refitted, after the
+ * timetable and after the same hours spread evenly.
+ */
+log_ratio: [number, number] | null, 
+/**
  * Truths planned for.
  */
 truths: number, 

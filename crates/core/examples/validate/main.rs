@@ -10,6 +10,7 @@
 
 mod chain;
 mod diagrams;
+mod plan;
 mod propagators;
 mod statistics;
 
@@ -146,6 +147,7 @@ fn rows(stride: usize) -> Vec<Row> {
     rows.push(chain::map(stride));
     rows.extend(propagators::rows());
     rows.extend(diagrams::rows());
+    rows.extend(plan::rows());
     rows.extend(statistics::rows());
     rows.into_iter().map(Row::summed_up).collect()
 }

@@ -32,9 +32,11 @@ pub struct Settle {
 pub struct Machine {
     /// Hours on the clock that are left, from now.
     pub hours: f64,
+    /// Hours of the schedule that are over; fills, calibrations and blocked times count from its beginning.
+    pub elapsed_h: f64,
     /// Fills; `None`: continuous beam.
     pub fills: Option<Fills>,
-    /// Intervals (from, to) without beam, h from now.
+    /// Intervals (from, to) without beam, h from the beginning of the schedule.
     pub blocked_h: Vec<(f64, f64)>,
     /// Calibration block of (every so many hours, lasting so many hours), before the beam that follows.
     pub calibration_h: Option<(f64, f64)>,
@@ -57,6 +59,8 @@ pub struct Window {
     pub start_h: f64,
     /// End, h from now.
     pub end_h: f64,
+    /// Age of the fill at `start_h`, h: above 0 for a fill that is running now.
+    pub age_h: f64,
 }
 
 impl Machine {
@@ -80,6 +84,7 @@ impl Machine {
             }
         }
         let mut others = vec![
+            ("plan.hours_used", self.elapsed_h),
             ("plan.least_dwell", self.least_dwell_h),
             ("plan.settle", self.settle.fixed_h),
             ("plan.settle", self.settle.up_h_per_gev),
@@ -169,7 +174,8 @@ impl Machine {
         // The first calibration is the one that has just been made.
         let mut calibrated = 0.0_f64;
         // Every pass moves `now` by at least `shortest`, a refill or a blocked end.
-        while now + 1e-9 < self.hours && windows.len() < 10_000 {
+        let all_h = self.elapsed_h + self.hours;
+        while now + 1e-9 < all_h && windows.len() < 10_000 {
             if let Some(&(_, end)) = blocked.iter().find(|b| b.0 <= now && now < b.1) {
                 now = end;
                 continue;
@@ -181,20 +187,19 @@ impl Machine {
                 calibrated = now;
                 continue;
             }
-            let mut end = self
-                .fills
-                .map_or(self.hours, |f| now + f.length_h)
-                .min(self.hours);
+            let mut end = self.fills.map_or(all_h, |f| now + f.length_h).min(all_h);
             if let (Some((every, _)), None) = (self.calibration_h, self.fills) {
                 end = end.min(calibrated + every);
             }
             if let Some(&(start, _)) = blocked.iter().find(|b| b.0 > now && b.0 < end) {
                 end = start;
             }
-            if end - now + 1e-9 >= shortest {
+            let start = now.max(self.elapsed_h);
+            if end - start + 1e-9 >= shortest {
                 windows.push(Window {
-                    start_h: now,
-                    end_h: end,
+                    start_h: start - self.elapsed_h,
+                    end_h: end - self.elapsed_h,
+                    age_h: start - now,
                 });
             }
             now = end.max(now + 1e-6);
@@ -237,6 +242,7 @@ mod tests {
     pub(crate) fn plain(hours: f64) -> Machine {
         Machine {
             hours,
+            elapsed_h: 0.0,
             fills: None,
             blocked_h: Vec::new(),
             calibration_h: None,
@@ -255,7 +261,8 @@ mod tests {
             m.windows(),
             vec![Window {
                 start_h: 0.0,
-                end_h: 24.0
+                end_h: 24.0,
+                age_h: 0.0
             }]
         );
         m.fills = Some(Fills {
@@ -276,6 +283,33 @@ mod tests {
         assert_eq!(
             starts,
             vec![(0.0, 6.0), (7.0, 13.0), (16.0, 22.0), (23.0, 24.0)]
+        );
+    }
+
+    /// Five hours into the schedule above: the rest of the first fill, then as it was planned.
+    #[test]
+    fn a_schedule_goes_on_where_it_is() {
+        let mut m = plain(19.0);
+        m.elapsed_h = 5.0;
+        m.fills = Some(Fills {
+            length_h: 6.0,
+            refill_h: 1.0,
+            lifetime_h: None,
+        });
+        m.blocked_h = vec![(8.0, 10.0)];
+        let windows: Vec<(f64, f64, f64)> = m
+            .windows()
+            .iter()
+            .map(|w| (w.start_h, w.end_h, w.age_h))
+            .collect();
+        assert_eq!(
+            windows,
+            vec![
+                (0.0, 1.0, 5.0),
+                (2.0, 3.0, 0.0),
+                (5.0, 11.0, 0.0),
+                (12.0, 18.0, 0.0)
+            ]
         );
     }
 

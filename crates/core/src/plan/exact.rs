@@ -178,6 +178,7 @@ mod tests {
             let machine = Machine {
                 hours: f64::from(hours),
                 fills: None,
+                elapsed_h: 0.0,
                 blocked_h: Vec::new(),
                 calibration_h: None,
                 dwell_step_h: 0.5,

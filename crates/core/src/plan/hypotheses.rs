@@ -7,18 +7,15 @@
 //! energy shows a difference beyond what the parameters can absorb, the goal is undetermined and
 //! refused: more beam of the same kind decides nothing.
 
-use super::criterion::Criterion;
 use super::problem::{Rates, refuse};
 use crate::error::Answer;
-use crate::math;
-use nalgebra::DMatrix;
 
-/// The task's truth and criterion for telling `first` from `second`: `second`'s parameters are the
-/// nuisances, lambda is the last parameter. The rate is the mean of both.
+/// The task's truth for telling `first` from `second`: `second`'s parameters are the nuisances,
+/// lambda is the last parameter (`second.prior` may hold what is known of it). The rate is the mean of both.
 ///
 /// # Errors
 /// Rates at different energies.
-pub fn contrast(first_rate_per_h: &[f64], second: &Rates) -> Answer<(Rates, Criterion)> {
+pub fn contrast(first_rate_per_h: &[f64], second: &Rates) -> Answer<Rates> {
     let n = second.rate_per_h.len();
     if first_rate_per_h.len() != n || n == 0 || !second.gradient_per_h.len().is_multiple_of(n) {
         return Err(refuse(
@@ -40,33 +37,17 @@ pub fn contrast(first_rate_per_h: &[f64], second: &Rates) -> Answer<(Rates, Crit
         truth.gradient_per_h.push(m1 - m2);
     }
     truth.prior = second.prior.clone().resize(p + 1, p + 1, 0.0);
-    let mut c = DMatrix::zeros(p + 1, 1);
-    c[(p, 0)] = 1.0;
-    Ok((truth, Criterion::Variance(c)))
-}
-
-/// Expected 2 ln of the likelihood ratio if the first holds, with the second's parameters where
-/// they are: 2 sum t (m1 ln(m1/m2) - m1 + m2). An upper bound of what a refit leaves.
-#[must_use]
-pub fn expected_log_ratio(
-    first_rate_per_h: &[f64],
-    second_rate_per_h: &[f64],
-    hours: &[f64],
-) -> f64 {
-    first_rate_per_h
-        .iter()
-        .zip(second_rate_per_h)
-        .zip(hours)
-        .filter(|((m1, m2), t)| **t > 0.0 && **m1 > 0.0 && **m2 > 0.0)
-        .map(|((m1, m2), t)| 2.0 * t * (m1 * math::ln(m1 / m2) - m1 + m2))
-        .sum()
+    Ok(truth)
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::math;
+    use crate::plan::criterion::Criterion;
     use crate::plan::problem::{Problem, VisitErrors};
     use crate::plan::relaxed::optimise;
+    use nalgebra::DMatrix;
 
     fn rates(rate: Vec<f64>, gradient: Vec<f64>) -> Rates {
         Rates {
@@ -86,7 +67,8 @@ mod tests {
         let xs: Vec<f64> = (0..41).map(|i| -1.0 + 0.05 * f64::from(i)).collect();
         let second = rates(vec![100.0; 41], vec![1.0; 41]);
         let first: Vec<f64> = xs.iter().map(|x| 100.0 + 5.0 * x).collect();
-        let (mut truth, criterion) = contrast(&first, &second).unwrap();
+        let mut truth = contrast(&first, &second).unwrap();
+        let criterion = Criterion::parameter(1, 2);
         truth.rate_per_h = vec![100.0; 41];
         let names = ["level".to_string(), "lambda".to_string()];
         let problem = Problem::new(&names, &[truth], VisitErrors::default(), 8.0, 1.0).unwrap();
@@ -100,16 +82,11 @@ mod tests {
     fn equal_curves_are_refused() {
         let second = rates(vec![100.0; 9], vec![1.0; 9]);
         let first = vec![103.0; 9];
-        let (truth, criterion) = contrast(&first, &second).unwrap();
+        let truth = contrast(&first, &second).unwrap();
+        let criterion = Criterion::parameter(1, 2);
         let names = ["level".to_string(), "lambda".to_string()];
         let problem = Problem::new(&names, &[truth], VisitErrors::default(), 8.0, 1.0).unwrap();
         let refusal = optimise(&problem, &criterion, 0.999).unwrap_err();
         assert!(refusal.message.contains("lambda"), "{}", refusal.message);
-    }
-
-    #[test]
-    fn log_ratio_by_hand() {
-        let found = expected_log_ratio(&[12.0], &[10.0], &[3.0]);
-        assert!((found - 6.0 * (12.0 * math::ln(1.2) - 2.0)).abs() < 1e-12);
     }
 }

@@ -1,6 +1,7 @@
 //! From a scan to the arrays of a planning task: rates at the allowed energies, what is known
 //! already, nuisances common to all points, and the truths that the prior allows.
 
+use super::hypotheses::contrast;
 use super::problem::{Rates, refuse};
 use crate::counts::{Exposure, rate_and_gradient};
 use crate::error::Answer;
@@ -17,6 +18,46 @@ pub struct Parameters {
     /// Names of the nuisances after them.
     pub nuisances: Vec<String>,
     with_spread: bool,
+    /// One more at the end: the share of another hypothesis ([`super::hypotheses`]).
+    with_difference: bool,
+}
+
+/// Name of the share of the other hypothesis.
+pub const DIFFERENCE: &str = "difference of the hypotheses";
+
+/// What rates are computed for.
+#[derive(Clone, Copy)]
+pub struct Sources<'a> {
+    /// What the fit leaves free, with its constraints.
+    pub fit: &'a FitSettings,
+    /// Parameters.
+    pub parameters: &'a Parameters,
+    /// Allowed energies, GeV.
+    pub w_gev: &'a [f64],
+    /// Luminosity over that of the scan's detection, (W in GeV, ratio) with W rising, on straight
+    /// lines between and constant outside; empty: 1 everywhere.
+    pub luminosity: &'a [(f64, f64)],
+    /// The hypothesis that holds, where the scan's own is the rival to be told from it.
+    pub first: Option<&'a Scan>,
+}
+
+impl Sources<'_> {
+    /// Luminosity at W over that of the scan's detection.
+    #[must_use]
+    pub fn brightness(&self, w_gev: f64) -> f64 {
+        brightness(self.luminosity, w_gev)
+    }
+}
+
+/// Piecewise-linear ratio of luminosities; 1 for an empty table.
+#[must_use]
+pub fn brightness(table: &[(f64, f64)], w_gev: f64) -> f64 {
+    let k = table.partition_point(|r| r.0 <= w_gev);
+    match (k.checked_sub(1).and_then(|i| table.get(i)), table.get(k)) {
+        (Some(a), Some(b)) => a.1 + (b.1 - a.1) * (w_gev - a.0) / (b.0 - a.0),
+        (Some(end), None) | (None, Some(end)) => end.1,
+        (None, None) => 1.0,
+    }
 }
 
 impl Parameters {
@@ -45,13 +86,25 @@ impl Parameters {
             free,
             nuisances,
             with_spread,
+            with_difference: false,
         })
+    }
+
+    /// With the share of another hypothesis as the last one.
+    #[must_use]
+    pub fn with_difference(self) -> Self {
+        Self {
+            with_difference: true,
+            ..self
+        }
     }
 
     /// All names.
     #[must_use]
     pub fn names(&self) -> Vec<String> {
-        self.free.iter().chain(&self.nuisances).cloned().collect()
+        let last = self.with_difference.then(|| DIFFERENCE.to_string());
+        let known = self.free.iter().chain(&self.nuisances).cloned();
+        known.chain(last).collect()
     }
 }
 
@@ -99,13 +152,13 @@ pub fn set_value(scan: &mut Scan, id: &str, value: f64) -> Answer<()> {
 ///
 /// # Errors
 /// What chain, hypothesis and detection refuse.
-pub fn rates(
-    scan: &Scan,
-    fit: &FitSettings,
-    parameters: &Parameters,
-    w_gev: &[f64],
-    weight: f64,
-) -> Answer<Rates> {
+pub fn rates(scan: &Scan, sources: Sources<'_>, weight: f64) -> Answer<Rates> {
+    let Sources {
+        fit,
+        parameters,
+        w_gev,
+        ..
+    } = sources;
     let measured: Vec<&Point> = scan
         .points
         .iter()
@@ -125,8 +178,12 @@ pub fn rates(
     let mut all = w_gev.to_vec();
     all.extend(measured.iter().map(|p| p.w_gev));
     let r = rate_and_gradient(scan, &ids, &all)?;
-    let p = parameters.free.len() + parameters.nuisances.len();
+    let first = match sources.first {
+        Some(first) => Some(rate_and_gradient(first, &[], &all)?),
+        None => None,
+    };
     let free = parameters.free.len();
+    let p = free + parameters.nuisances.len();
     // Row of derivatives at energy j of the list: signal scaled by `s`, background exposures `l` (1/nb) and `t` (h).
     let row = |j: usize, s: f64, l: f64, t: f64| {
         let mut g = Vec::with_capacity(p);
@@ -162,11 +219,18 @@ pub fn rates(
     };
     let hour = Exposure::per_hour(&scan.detection);
     let n = w_gev.len();
+    let dark = scan.detection.rate_bg_per_h;
+    let bright: Vec<f64> = w_gev.iter().map(|&w| sources.brightness(w)).collect();
     let mut gradient_per_h = Vec::with_capacity(n * p);
-    for j in 0..n {
-        gradient_per_h.extend(row(j, 1.0, hour.luminosity_nbinv, 1.0));
+    for (j, b) in bright.iter().enumerate() {
+        gradient_per_h.extend(row(j, *b, hour.luminosity_nbinv * b, 1.0));
     }
-    let mut prior = DMatrix::zeros(p, p);
+    let lit = |rates: &[f64]| -> Vec<f64> {
+        let pairs = rates.iter().zip(&bright);
+        pairs.map(|(m, b)| (m - dark) * b + dark).collect()
+    };
+    let size = p + usize::from(first.is_some());
+    let mut prior = DMatrix::zeros(size, size);
     for c in &fit.constraints {
         if let Some(i) = parameters.free.iter().position(|f| *f == c.parameter) {
             prior[(i, i)] += 1.0 / (c.error * c.error);
@@ -192,25 +256,32 @@ pub fn rates(
                 } => b.max(n_off / tau),
                 _ => b,
             };
-            place(
-                point,
-                signal,
-                background,
-                slope,
-                row(j, s, e.luminosity_nbinv, e.live_time_h),
-                e.luminosity_nbinv,
-            )
+            let mut gradient = row(j, s, e.luminosity_nbinv, e.live_time_h);
+            if let Some(first) = &first {
+                gradient.push(s * first.signal_per_h.get(j).copied().unwrap_or(0.0) - signal);
+            }
+            let luminosity = e.luminosity_nbinv;
+            place(point, signal, background, slope, gradient, luminosity)
         })
         .collect();
     add_points(&mut prior, &measured, &places, scan.common.group_energy_gev);
-    Ok(Rates {
+    let own = Rates {
         weight,
-        rate_per_h: r.rate_per_h.iter().take(n).copied().collect(),
+        rate_per_h: lit(&r.rate_per_h),
         gradient_per_h,
-        slope_per_h_gev: r.slope_per_h_gev.iter().take(n).copied().collect(),
-        rate_without_beam_per_h: scan.detection.rate_bg_per_h,
+        slope_per_h_gev: r
+            .slope_per_h_gev
+            .iter()
+            .zip(&bright)
+            .map(|(s, b)| s * b)
+            .collect(),
+        rate_without_beam_per_h: dark,
         prior,
-    })
+    };
+    match first {
+        Some(first) => contrast(&lit(&first.rate_per_h), &own),
+        None => Ok(own),
+    }
 }
 
 /// A measured point: gradient, slope and variance of its expected counts.

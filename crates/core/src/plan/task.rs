@@ -114,10 +114,7 @@ impl Planner {
         task.machine.check()?;
         let windows = task.machine.windows();
         let beam_h: f64 = windows.iter().map(|w| w.end_h - w.start_h).sum();
-        let bright_h = windows
-            .iter()
-            .map(|w| task.machine.bright_hours(0.0, w.end_h - w.start_h))
-            .sum();
+        let bright_h = bright_hours(&task.machine, &windows);
         let visits = windows.len().max(1) as f64;
         let base = Problem::new(&task.names, &task.truths, task.errors, bright_h, visits)?;
         let base_criterion = Scaled::new(&task.criterion, &base)?;
@@ -226,6 +223,24 @@ impl Planner {
             rows,
             draft,
         })
+    }
+
+    /// The relaxed optimum as rows without order.
+    pub(crate) fn relaxed_rows(&self) -> Answer<Vec<Row>> {
+        let best = optimise(&self.relaxed, &self.relaxed_criterion, self.task.wanted)?;
+        let longest = best.hours.iter().copied().fold(0.0, f64::max);
+        let used = best.hours.iter().enumerate();
+        Ok(used
+            .filter(|(_, h)| **h > 1e-3 * longest)
+            .map(|(candidate, &hours)| Row {
+                fill: 0,
+                candidate,
+                start_h: 0.0,
+                live_h: hours,
+                bright_h: hours,
+                settle_h: 0.0,
+            })
+            .collect())
     }
 
     /// phi of rows over all truths, in the scale of the relaxed problem's phi.
@@ -443,6 +458,14 @@ impl Planner {
         }
         warnings
     }
+}
+
+/// Hours of full luminosity in these windows.
+fn bright_hours(machine: &Machine, windows: &[Window]) -> f64 {
+    windows
+        .iter()
+        .map(|w| machine.bright_hours(w.age_h, w.end_h - w.start_h))
+        .sum()
 }
 
 fn combination_error(info: &DMatrix<f64>, problem: &Problem, gradient: &[f64]) -> Option<f64> {

@@ -94,7 +94,9 @@ impl Judge<'_> {
                     candidate: visit.candidate,
                     start_h,
                     live_h,
-                    bright_h: self.machine.bright_hours(start_h - window.start_h, live_h),
+                    bright_h: self
+                        .machine
+                        .bright_hours(window.age_h + start_h - window.start_h, live_h),
                     settle_h,
                 });
             };
@@ -133,7 +135,12 @@ impl Judge<'_> {
                 .sum();
             missing += ((hours / self.machine.dwell_step_h - 1e-9).ceil() - units).max(0.0);
         }
-        for stretch in draft.iter().filter(|s| !s.visits.is_empty()) {
+        // A fill that is running now has had its chance at what every fill must contain.
+        let whole = draft
+            .iter()
+            .zip(self.windows)
+            .filter(|(_, w)| w.age_h <= 0.0);
+        for (stretch, _) in whole.filter(|(s, _)| !s.visits.is_empty()) {
             let at = |test: &dyn Fn(f64) -> bool| {
                 stretch.visits.iter().any(|v| test(self.w_gev[v.candidate]))
             };
@@ -167,6 +174,53 @@ impl Judge<'_> {
         }
         sum / weight
     }
+}
+
+/// Visits (candidate, live hours) one after the other on the clock: the rest of a fill that is
+/// shorter than a least dwell is left, a visit that does not fit goes on in the next fill, and what
+/// the hours do not hold falls away.
+#[must_use]
+pub fn in_order(machine: &Machine, w_gev: &[f64], visits: &[(usize, f64)]) -> Vec<Row> {
+    let windows = machine.windows();
+    let least = f64::from(machine.least_units()) * machine.dwell_step_h;
+    let mut rows = Vec::new();
+    let mut at_gev = machine.current_w_gev;
+    let mut credit_h = 0.0;
+    let (mut fill, mut now) = (0, windows.first().map_or(0.0, |w| w.start_h));
+    for &(candidate, hours) in visits {
+        let Some(&w) = w_gev.get(candidate) else {
+            continue;
+        };
+        let mut left = hours;
+        while left > 1e-9 {
+            let Some(window) = windows.get(fill) else {
+                return rows;
+            };
+            let settle_h =
+                (at_gev.map_or(0.0, |from| machine.settle_h(from, w)) - credit_h).max(0.0);
+            let start_h = now + settle_h;
+            let live_h = left.min(window.end_h - start_h);
+            if live_h + 1e-9 < least.min(left) {
+                fill += 1;
+                now = windows.get(fill).map_or(now, |w| w.start_h);
+                credit_h = machine.fills.map_or(0.0, |f| f.refill_h);
+                continue;
+            }
+            rows.push(Row {
+                fill,
+                candidate,
+                start_h,
+                live_h,
+                bright_h: machine.bright_hours(window.age_h + start_h - window.start_h, live_h),
+                settle_h,
+            });
+            credit_h = 0.0;
+            at_gev = Some(w);
+            now = start_h + live_h;
+            left -= live_h;
+        }
+    }
+    rows
 }
 
 /// Scaled information of rows: prior, visits with their own errors, fills with their common one.

@@ -17,7 +17,7 @@ mod rows;
 
 pub use beam::{Frame, dial_dimension, setting_kind, twice};
 pub use channels::{path_of as channel_path, sheet_of as channel_sheet};
-pub use plan::{GoalReading, PlanReading, Wanted};
+pub use plan::{CombReading, GoalReading, PlanReading, Wanted};
 pub use rows::RowReading;
 
 use crate::doc::Sheet;

@@ -2,7 +2,8 @@
 
 use super::log::Log;
 use crate::doc::Sheet;
-use crate::quantity::Dimension::{self, Energy, Number, Time};
+use crate::quantity::Dimension::{self, Angle, CrossSection, Energy, LuminosityRate, Number, Time};
+use jiff::Timestamp;
 
 /// The plan's section; what is absent is `None` or has its neutral value.
 #[derive(Debug, Clone, Default, PartialEq)]
@@ -15,8 +16,10 @@ pub struct PlanReading {
     pub step_gev: Option<f64>,
     /// Hours on the clock, h.
     pub hours: Option<f64>,
-    /// Used, h.
-    pub hours_used: f64,
+    /// When they begin.
+    pub starts: Option<Timestamp>,
+    /// Used, h; `None`: as the rows say.
+    pub hours_used: Option<f64>,
     /// Unit of dwell, h.
     pub dwell_step_h: Option<f64>,
     /// Least dwell, h.
@@ -33,9 +36,13 @@ pub struct PlanReading {
     pub refill_h: f64,
     /// Lifetime, h.
     pub lifetime_h: Option<f64>,
+    /// (W in GeV, luminosity in 1/nb per h).
+    pub luminosity_at: Vec<(f64, f64)>,
+    /// The comb.
+    pub comb: Option<CombReading>,
     /// (every, lasting), h.
     pub calibration_h: Option<(f64, f64)>,
-    /// (from, to), h from now.
+    /// (from, to), h after the hours began.
     pub blocked_h: Vec<(f64, f64)>,
     /// Distinct energies asked for.
     pub least_distinct: usize,
@@ -68,11 +75,24 @@ pub struct GoalReading {
     pub weight: f64,
 }
 
+/// A comb; what is absent has its usual value or is `None`.
+#[derive(Debug, Clone, PartialEq)]
+pub struct CombReading {
+    /// Reach to either side, GeV.
+    pub reach_gev: Option<f64>,
+    /// Spacing in observed FWHM.
+    pub spacing: f64,
+    /// Live time of each point, h.
+    pub dwell_h: Option<f64>,
+    /// Global significance that counts as found.
+    pub significance: f64,
+}
+
 /// Error wanted of a goal.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Wanted {
-    /// GeV.
-    Energy(f64),
+    /// In the core's unit of what was typed.
+    Absolute(f64, Dimension),
     /// Relative to the value.
     Relative(f64),
 }
@@ -97,7 +117,15 @@ pub fn read(sheet: &Sheet, log: &mut Log) -> PlanReading {
         to_gev: get("to", &p.to, Energy),
         step_gev: get("step", &p.step, Energy),
         hours: get("hours", &p.hours, Time),
-        hours_used: get("hours_used", &p.hours_used, Time).unwrap_or(0.0),
+        hours_used: get("hours_used", &p.hours_used, Time),
+        starts: None,
+        luminosity_at: Vec::new(),
+        comb: p.comb.as_ref().map(|c| CombReading {
+            reach_gev: get("comb.reach", &c.reach, Energy),
+            spacing: get("comb.spacing", &c.spacing, Number).unwrap_or(0.6),
+            dwell_h: get("comb.dwell", &c.dwell, Time),
+            significance: get("comb.significance", &c.significance, Number).unwrap_or(5.0),
+        }),
         dwell_step_h: get("dwell_step", &p.dwell_step, Time),
         least_dwell_h: get("least_dwell", &p.least_dwell, Time),
         settle_h: (
@@ -127,9 +155,32 @@ pub fn read(sheet: &Sheet, log: &mut Log) -> PlanReading {
     };
     for (i, (from, to)) in p.blocked.iter().enumerate() {
         let path = format!("plan.blocked[{i}]");
-        reading
-            .blocked_h
-            .push((log.value(&path, from, Time), log.value(&path, to, Time)));
+        reading.blocked_h.push((
+            log.value(&format!("{path}[0]"), from, Time),
+            log.value(&format!("{path}[1]"), to, Time),
+        ));
+    }
+    for (i, (w, luminosity)) in p.luminosity_at.iter().enumerate() {
+        let path = format!("plan.luminosity_at[{i}]");
+        let row = (
+            log.value(&format!("{path}[0]"), w, Energy),
+            log.value(&format!("{path}[1]"), luminosity, LuminosityRate),
+        );
+        if reading.luminosity_at.last().is_some_and(|l| l.0 >= row.0) {
+            log.refuse(
+                &format!("{path}[0]"),
+                w,
+                "a larger W than in the row before",
+                "the energies of the luminosity have to rise",
+            );
+        }
+        reading.luminosity_at.push(row);
+    }
+    if let Some(text) = &p.starts {
+        match crate::times::parse("plan.starts", text) {
+            Ok(at) => reading.starts = Some(at),
+            Err(refusal) => log.problems.push(refusal),
+        }
     }
     reading.one_way = match p.one_way.as_deref() {
         None => None,
@@ -168,12 +219,15 @@ pub fn read(sheet: &Sheet, log: &mut Log) -> PlanReading {
             .optional(&format!("{path}.weight"), goal.weight.as_ref(), Number)
             .unwrap_or(1.0);
         let wanted = goal.wanted.as_ref().map(|text| {
-            // An energy has a unit; what has none is relative.
             let field = format!("{path}.wanted");
-            if crate::quantity::read(text, Number).is_ok() {
-                Wanted::Relative(log.value(&field, text, Number))
-            } else {
-                Wanted::Energy(log.value(&field, text, Energy))
+            // What has no unit is relative.
+            let units = [Number, Energy, Angle, CrossSection];
+            let unit = units
+                .into_iter()
+                .find(|d| crate::quantity::read(text, *d).is_ok());
+            match unit.unwrap_or(Energy) {
+                Number => Wanted::Relative(log.value(&field, text, Number)),
+                other => Wanted::Absolute(log.value(&field, text, other), other),
             }
         });
         reading.goals.push(GoalReading {

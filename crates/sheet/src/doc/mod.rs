@@ -20,7 +20,7 @@ pub use data::{AngleBin, Data, LuminosityMonitor, LuminositySource, Row, Stage};
 pub use detection::Detection;
 pub use fit::{Constraint, Fit};
 pub use model::{Coherent, Incoherent, Model, Radiation};
-pub use plan::Plan;
+pub use plan::{Plan, PlanComb, PlanGoal, PlanRival};
 pub use resonance::{Channel, Form, Resonance, Shape, Strength, Vertex};
 use serde::{Deserialize, Serialize};
 

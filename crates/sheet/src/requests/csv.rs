@@ -3,7 +3,7 @@
 use super::{Body, Column, Reply};
 use crate::table::{guarded, write};
 use widthwise_core::error::{Answer, Refusal};
-use widthwise_core::plan::for_scan::PlannedRow;
+use widthwise_core::plan::report::PlannedRow;
 
 /// The columns of a reply as CSV, or its table where it has one.
 ///

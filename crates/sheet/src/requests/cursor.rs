@@ -137,7 +137,7 @@ pub fn dial(sheet: &Sheet, ready: &Ready, w_gev: f64) -> Option<String> {
 }
 
 /// The unit in which this sheet's settings are typed.
-fn dial_unit(sheet: &Sheet, dimension: Dimension) -> Option<Unit> {
+pub(super) fn dial_unit(sheet: &Sheet, dimension: Dimension) -> Option<Unit> {
     sheet
         .data
         .rows

@@ -24,6 +24,7 @@ pub use fit::settings as fit_settings;
 pub use judge::{At, SoFar};
 pub use look_up::{Given, LookUp};
 pub use parameter::{Parameter, find as find_parameter};
+pub use plan::{Changes, CombReading, ForecastReading, KeptPlan, Steering};
 pub use ready::Ready;
 pub use reply::*;
 pub use statistics::{
@@ -37,6 +38,8 @@ use crate::doc::Sheet;
 use serde::{Deserialize, Serialize};
 use widthwise_core::error::{Answer, Refusal};
 use widthwise_core::fit::looks::p_value_of_looks;
+use widthwise_core::plan::design::{DesignProblem, solve};
+use widthwise_core::plan::report::PlannedRow;
 use widthwise_core::trials::TrialRow;
 
 /// One request, on the wire `{ "kind": NAME, ...fields }`; [`Request::read`] reads it. The sheet
@@ -107,6 +110,42 @@ pub enum Request {
         sheet: Sheet,
         /// Also what each property of the machine and each demand costs: the plan is made again without it.
         costs: bool,
+        /// An older plan: what changed, and what is lost by keeping it.
+        #[serde(default)]
+        keep: Option<KeptPlan>,
+    },
+    /// The comb of the sheet, and its chance by pseudo-experiments.
+    Comb {
+        /// The sheet.
+        sheet: Sheet,
+        /// Pseudo-experiments.
+        trials: u32,
+        /// Their seed.
+        #[cfg_attr(feature = "typescript", ts(type = "number"))]
+        seed: u64,
+    },
+    /// Trials of the hours left: a timetable, the uniform scan, or a shift planned again after each point.
+    PlanTrials {
+        /// The sheet.
+        sheet: Sheet,
+        /// The timetable.
+        rows: Vec<PlannedRow>,
+        /// How the hours are spent.
+        steering: Steering,
+        /// Which trials.
+        range: TrialRange,
+    },
+    /// The relaxed problem alone, from arrays.
+    Design {
+        /// The problem.
+        design: DesignProblem,
+    },
+    /// What trials of the hours left found.
+    PlanSummary {
+        /// The sheet.
+        sheet: Sheet,
+        /// Rows of all ranges.
+        rows: Vec<TrialRow>,
     },
     /// Reads a table (CSV or pasted cells): how each column was understood, and the rows.
     ReadTable {
@@ -339,7 +378,25 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         Request::Cursor { sheet, w_gev } => cursor::answer(sheet, *w_gev),
         Request::Points { sheet } => points::answer(sheet),
         Request::Fit { sheet } => fit::answer(sheet),
-        Request::Plan { sheet, costs } => plan::answer(sheet, *costs),
+        Request::Comb {
+            sheet,
+            trials,
+            seed,
+        } => plan::comb(sheet, *trials, *seed, progress),
+        Request::PlanTrials {
+            sheet,
+            rows,
+            steering,
+            range,
+        } => plan::run(sheet, rows, *steering, range, progress),
+        Request::Design { design } => Ok(Body::Design {
+            design: solve(design)?,
+        }
+        .into()),
+        Request::PlanSummary { sheet, rows } => plan::merge(sheet, rows),
+        Request::Plan { sheet, costs, keep } => {
+            plan::answer(sheet, *costs, keep.as_ref(), progress)
+        }
     }
 }
 

@@ -1,6 +1,7 @@
 //! Answers.
 
 use super::judge::SoFar;
+use super::plan::{Changes, CombReading, ForecastReading};
 use super::statistics::{DerivedReading, ParameterIntervals, PointInfluence, Separated, Solution};
 use crate::doc::{Row, Sheet};
 use crate::quantity::unit::Unit;
@@ -225,11 +226,29 @@ pub enum Body {
     /// A plan; its curves over the allowed energies are in the columns.
     Plan {
         /// The plan.
-        plan: Box<widthwise_core::plan::for_scan::ScanPlan>,
+        plan: Box<widthwise_core::plan::report::ScanPlan>,
+        /// Its forecasts in the sheet's units: parameters, then goals that are none.
+        forecasts: Vec<ForecastReading>,
         /// The number to dial for each row of the timetable, with unit.
         dial: Vec<String>,
         /// Staying at the present setting against moving on, if the sheet says where the machine stands.
         stay: Option<StayOrMove>,
+        /// Where the values planned from come from.
+        basis: String,
+        /// The plan's hour 0, h after the hours began.
+        begins_h: f64,
+        /// What became of an older plan, if one was given.
+        changes: Option<Changes>,
+    },
+    /// The optimum of a design.
+    Design {
+        /// It.
+        design: widthwise_core::plan::design::Design,
+    },
+    /// A comb for a peak of unknown mass.
+    Comb {
+        /// The comb and its chance.
+        reading: Box<CombReading>,
     },
     /// Text of a file.
     Text {

@@ -11,7 +11,7 @@ use widthwise_core::trials::{Ensemble, Summary, TrialRow, TrialSettings, summari
 /// Most trials of one request; larger runs are made of several.
 pub const MOST_TRIALS: u32 = 100_000;
 /// Trials between two words of progress.
-const STEP: u32 = 20;
+pub(super) const STEP: u32 = 20;
 
 /// A range of pseudo-experiments.
 #[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
@@ -31,15 +31,21 @@ pub struct TrialRange {
     pub profiles: bool,
 }
 
-fn ensemble(sheet: &Sheet, range: &TrialRange) -> Answer<Ensemble> {
-    if range.count > MOST_TRIALS {
-        return Err(Refusal::new(
-            "range.count",
-            range.count,
-            format!("up to {MOST_TRIALS}"),
-            "so many trials are not made in one request: ask for several ranges and merge them",
-        ));
+/// Refuses more trials than one request makes.
+pub(super) fn check_range(range: &TrialRange) -> Answer<()> {
+    if range.count <= MOST_TRIALS {
+        return Ok(());
     }
+    Err(Refusal::new(
+        "range.count",
+        range.count,
+        format!("up to {MOST_TRIALS}"),
+        "so many trials are not made in one request: ask for several ranges and merge them",
+    ))
+}
+
+fn ensemble(sheet: &Sheet, range: &TrialRange) -> Answer<Ensemble> {
+    check_range(range)?;
     let scan = check::understand(sheet).scan().map_err(first_problem)?;
     Ensemble::new(
         &scan,

@@ -4,6 +4,7 @@
 mod bad_input;
 mod channels;
 mod judge;
+mod plan;
 mod properties;
 mod scenarios;
 mod statistics;

@@ -75,7 +75,9 @@ pub fn mass_window(
     scan: &Scan,
     settings: &WindowSettings,
 ) -> Answer<(Vec<WindowPlace>, Option<GlobalSignificance>)> {
-    let (counts, templates) = templates(scan, &settings.masses_gev)?;
+    let Templates {
+        counts, templates, ..
+    } = templates(scan, &settings.masses_gev)?;
     let places: Vec<WindowPlace> = settings
         .masses_gev
         .iter()
@@ -145,10 +147,17 @@ fn upcrossings(templates: &[&Template], background: &[f64], settings: &WindowSet
     count / settings.trials as f64
 }
 
-type Templates = (Vec<f64>, Vec<Option<Template>>);
+/// Counts of the points, and what each mass would bring them.
+pub(crate) struct Templates {
+    pub counts: Vec<f64>,
+    /// Present strength, in the units of the templates' strength.
+    pub strength: f64,
+    /// `None` where no point sees a signal.
+    pub templates: Vec<Option<Template>>,
+}
 
 /// Counts, and the template of each mass.
-fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
+pub(crate) fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
     let Hypothesis::PartialWave(wave) = &scan.hypothesis else {
         return Err(Refusal::new(
             "model",
@@ -236,5 +245,9 @@ fn templates(scan: &Scan, masses_gev: &[f64]) -> Answer<Templates> {
             .collect();
         out.push(Template::new(signal, background.clone()).ok());
     }
-    Ok((counts, out))
+    Ok(Templates {
+        counts,
+        strength: unit,
+        templates: out,
+    })
 }

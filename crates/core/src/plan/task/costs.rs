@@ -1,10 +1,11 @@
 //! What the demands, the machine and not knowing the truth cost, and staying against moving on.
 
-use super::{Plan, Planner, optimum_phi};
+use super::{Plan, Planner, bright_hours, optimum_phi};
 use crate::error::Answer;
 use crate::math;
-use crate::plan::clock::{Machine, Settle};
+use crate::plan::clock::{Fills, Machine, Settle};
 use crate::plan::criterion::Criterion;
+use crate::plan::problem::Rates;
 use crate::plan::relaxed::{Relaxed, evaluate, optimise};
 use crate::plan::search::search;
 use crate::plan::timetable::Demands;
@@ -82,10 +83,13 @@ impl Planner {
             quick.settle = Settle::default();
             add("settling after a change of energy", &quick, demands, 1);
         }
-        if machine.one_way.is_some() {
-            let mut free = machine.clone();
-            free.one_way = None;
-            add("energies in one direction only", &free, demands, 1);
+        let mut any_order = machine.clone();
+        any_order.one_way = None;
+        any_order.settle.up_h_per_gev = 0.0;
+        any_order.settle.down_h_per_gev = 0.0;
+        let ordered = any_order != *machine;
+        if ordered {
+            add("the order of the energies", &any_order, demands, 1);
         }
         let parts: [(&str, bool, Demands); 4] = [
             (
@@ -126,17 +130,13 @@ impl Planner {
                 add(what, machine, &without, 1);
             }
         }
-        if self.bright_h < machine.hours - 1e-9 {
-            let whole = self.relaxed.with_hours(machine.hours)?;
-            let best = optimise(&whole, &self.relaxed_criterion, self.task.wanted)?;
-            let gap = optimum_phi(&best, &whole, &self.relaxed_criterion)
-                - optimum_phi(&plan.relaxed, &self.relaxed, &self.relaxed_criterion);
+        if !ordered {
             costs.push(Cost {
-                what: "refilling, calibration, blocked times and the decay of the luminosity"
-                    .to_string(),
-                loss: (1.0 - math::exp(gap)).max(0.0),
+                what: "the order of the energies".to_string(),
+                loss: 0.0,
             });
         }
+        costs.extend(self.costs_of_beam(plan)?);
         if self.task.fill_energy_gev > 0.0 {
             let mut task = self.task.clone();
             task.fill_energy_gev = 0.0;
@@ -161,6 +161,71 @@ impl Planner {
             });
         }
         Ok(costs)
+    }
+
+    /// What the machine's times without beam and its decay cost, each on its own, in the relaxed optimum.
+    fn costs_of_beam(&self, plan: &Plan) -> Answer<Vec<Cost>> {
+        let machine = &self.task.machine;
+        let mut cases: Vec<(&str, Machine)> = Vec::new();
+        let fills = |change: fn(&mut Fills)| {
+            let mut other = machine.clone();
+            other.fills.iter_mut().for_each(change);
+            other
+        };
+        if machine.fills.is_some_and(|f| f.refill_h > 0.0) {
+            cases.push(("refilling between the fills", fills(|f| f.refill_h = 0.0)));
+        }
+        if machine.fills.is_some_and(|f| f.lifetime_h.is_some()) {
+            let other = fills(|f| f.lifetime_h = None);
+            cases.push(("the decay of the luminosity", other));
+        }
+        if machine.calibration_h.is_some() {
+            let mut other = machine.clone();
+            other.calibration_h = None;
+            cases.push(("calibrations", other));
+        }
+        if !machine.blocked_h.is_empty() {
+            let mut other = machine.clone();
+            other.blocked_h.clear();
+            cases.push(("blocked times", other));
+        }
+        let here = optimum_phi(&plan.relaxed, &self.relaxed, &self.relaxed_criterion);
+        let mut costs = Vec::new();
+        for (what, other) in cases {
+            let hours = bright_hours(&other, &other.windows());
+            let mut loss = 0.0;
+            if hours > self.bright_h {
+                let whole = self.relaxed.with_hours(hours)?;
+                let best = optimise(&whole, &self.relaxed_criterion, self.task.wanted)?;
+                let gap = optimum_phi(&best, &whole, &self.relaxed_criterion) - here;
+                loss = (1.0 - math::exp(gap)).max(0.0);
+            }
+            costs.push(Cost {
+                what: what.to_string(),
+                loss,
+            });
+        }
+        Ok(costs)
+    }
+
+    /// Share of the information that the best guess would bring more at these rates (0 if less).
+    ///
+    /// # Errors
+    /// An undetermined goal.
+    pub fn cost_against(&self, better: &Rates) -> Answer<f64> {
+        let best = |truth: Option<&Rates>| {
+            let mut task = self.task.clone();
+            task.truths = truth.cloned().into_iter().collect();
+            let planner = Planner::new(task)?;
+            let best = optimise(
+                &planner.relaxed,
+                &planner.relaxed_criterion,
+                self.task.wanted,
+            )?;
+            Ok(best.criterion_down(&planner.relaxed_criterion, planner.base.parameters))
+        };
+        let gap = best(Some(better))? - best(self.task.truths.first())?;
+        Ok((1.0 - math::exp(gap)).max(0.0))
     }
 
     /// Staying `hours` longer at `candidate` against moving on now: relative loss of information of
