@@ -258,7 +258,7 @@ impl Nature {
                 n: self.stream.poisson(signal + background),
                 off: None,
             },
-            Measured::CrossSection { .. } | Measured::Nothing => {
+            _ => {
                 return Err(Refusal::new(
                     "data.rows",
                     &point.id,
