@@ -10,7 +10,6 @@
 
 mod chain;
 mod diagrams;
-mod plan;
 mod propagators;
 mod statistics;
 
@@ -147,7 +146,6 @@ fn rows(stride: usize) -> Vec<Row> {
     rows.push(chain::map(stride));
     rows.extend(propagators::rows());
     rows.extend(diagrams::rows());
-    rows.extend(plan::rows());
     rows.extend(statistics::rows());
     rows.into_iter().map(Row::summed_up).collect()
 }
