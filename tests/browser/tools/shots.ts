@@ -42,7 +42,7 @@ it("takes the screenshots", async () => {
           features: [{ name: "prefers-color-scheme", value: theme === "light" ? "light" : "dark" }],
         });
         await load(driver, fromFile);
-        await driver.executeScript("document.documentElement.dataset.theme = arguments[0]", theme);
+        await driver.executeScript("const choice = document.querySelector('#theme'); choice.value = arguments[0]; choice.dispatchEvent(new Event('change', { bubbles: true }))", theme);
         await driver.sleep(800);
         const rooms = await driver.executeScript<string[]>(
           "return [...document.querySelectorAll('.doors button')].map((door) => door.textContent.trim())",

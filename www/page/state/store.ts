@@ -23,6 +23,8 @@ const DATABASE = "widthwise";
 const STORE = "versions";
 const FALLBACK = "widthwise.newest.1";
 const STILL_MS = 400;
+/** Longest wait for the store to open. */
+const PATIENCE_MS = 5000;
 /** Even while the typing goes on, nothing is older than this in the store. */
 const LONGEST_MS = 2000;
 /** One version at least this often is kept for good (up to KEPT); those between replace each other. */
@@ -134,9 +136,15 @@ async function save(now: Sheet): Promise<void> {
 
 function openDatabase(): Promise<IDBDatabase> {
   return new Promise((resolve, reject) => {
+    // A store that is being deleted elsewhere may keep one waiting for ever; the page must not.
+    setTimeout(() => reject(new Error("storage does not answer")), PATIENCE_MS);
     const request = indexedDB.open(DATABASE, 1);
     request.onupgradeneeded = () => request.result.createObjectStore(STORE, { keyPath: ["key", "tab"] });
-    request.onsuccess = () => resolve(request.result);
+    request.onsuccess = () => {
+      // Whoever clears this browser's storage is not to wait for us.
+      request.result.onversionchange = () => request.result.close();
+      resolve(request.result);
+    };
     request.onerror = () => reject(request.error ?? new Error("storage refused"));
     request.onblocked = () => reject(new Error("storage blocked"));
   });
