@@ -190,6 +190,20 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
     done("read the table again", 2, 10);
   });
 
+  it("what if: hours dragged, the error at their end read off", async () => {
+    await enter(driver, "Plan");
+    await driver.findElement(By.xpath("//button[normalize-space()='Plan the hours left']")).click();
+    await until(driver, "no plan", "return document.querySelector('#what-if') !== null");
+    hand = new Hand(driver);
+    const slider = await driver.findElement(By.id("what-if"));
+    await driver.executeScript("arguments[0].scrollIntoView({ block: 'center' }); arguments[0].focus()", slider);
+    const error = async (): Promise<number> => Number(/[\d.]+/.exec(await text(driver, "[data-what-if] strong"))?.[0]);
+    const before = await error();
+    await slider.sendKeys(Key.ARROW_RIGHT);
+    await driver.wait(async () => (await error()) < before, 5000, "more hours do not help");
+    done("what if, hours", 1, 5);
+  });
+
   it("what if: the curve follows a drag", async () => {
     await enter(driver, "Model");
     hand = new Hand(driver);

@@ -6,7 +6,7 @@ import { clock, count, hours, signed, THIN, withError } from "../format/number";
 import { Quantity } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import { Why } from "../parts/why";
-import { Explained } from "../parts/why-list";
+import { Explained, WhyList } from "../parts/why-list";
 import { Expected, PValue } from "../rooms/health";
 import * as answers from "../state/answers";
 import { calibration, calibrationAge, needsAttention } from "../state/health";
@@ -232,15 +232,9 @@ function Next(): JSX.Element {
         <>
           <p class="figure">
             <Why title="The next setting" value={<Quantity text={next.dial} />}>
-              <p>{next.why}</p>
-              <dl class="inputs">
-                {whyNext(next).map(([name, text]) => (
-                  <div key={name}>
-                    <dt>{name}</dt>
-                    <dd>{text}</dd>
-                  </div>
-                ))}
-              </dl>
+              <WhyList of="next" inputs={whyNext(next)}>
+                <p>{next.why}</p>
+              </WhyList>
             </Why>
           </p>
           <p class="note">

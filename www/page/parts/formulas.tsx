@@ -90,6 +90,12 @@ export const BEHIND: Record<string, Behind> = {
     source: "Baker and Cousins, Nucl. Instrum. Methods 221 (1984) 437.",
     accuracy: "as said with the fit: why it stopped",
   },
+  next: {
+    formula: "max_t Ψ(I_0 + \\sum t_i I(W_i)), I(W) = \\frac{1}{μ} \\frac{∂ μ}{∂ θ_a} \\frac{∂ μ}{∂ θ_b}",
+    words: "Hours t are laid where the information I on the free parameters serves the aim Ψ of the plan best, with what has been measured already (I₀); the timetable then keeps the machine's rules.",
+    source: "Kiefer and Wolfowitz, Canad. J. Math. 12 (1960) 363; the guarantee is said in Plan.",
+    accuracy: "as guaranteed in Plan",
+  },
   threshold: { formula: "W_{thr} = m_1 + m_2", words: "The pair can be made from here on.", source: PDG, accuracy: ROUNDING },
   "break-up momentum": {
     formula: "q = \\frac{\\sqrt{(W^2 − (m_1+m_2)^2)(W^2 − (m_1−m_2)^2)}}{2W}",

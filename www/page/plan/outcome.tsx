@@ -10,6 +10,7 @@ import { plan, planned, type PlanView } from "../state/plan";
 import { sheet } from "../state/sheet";
 import { cursor } from "../state/view";
 import { askCosts, costing } from "./make";
+import { WhatIf } from "./what-if";
 
 /** The result, or nothing before there is one. */
 export function PlanOutcome(): JSX.Element | null {
@@ -153,14 +154,17 @@ function Against({ made }: { made: PlanView }): JSX.Element | null {
   const symbol = symbolOf(main.name, sheet.value).replace(/_/g, "");
   const floor = main.numbers.floor ?? 0;
   return (
-    <Plot
-      words={`Error of ${symbol} against hours of beam: ${known.map(([h, e]) => `${digits(h, 3)} h ${digits(e, 2)}`).join(", ")} ${main.unit}`}
-      x="hours of beam"
-      y={`error of ${symbol}${main.unit ? ` (${units(main.unit)})` : ""}`}
-      lines={[{ x: known.map(([h]) => h), y: known.map(([, e]) => e), look: "main" }]}
-      levels={floor > 0 ? [[floor, "floor"]] : []}
-      from={0}
-    />
+    <>
+      <Plot
+        words={`Error of ${symbol} against hours of beam: ${known.map(([h, e]) => `${digits(h, 3)} h ${digits(e, 2)}`).join(", ")} ${main.unit}`}
+        x="hours of beam"
+        y={`error of ${symbol}${main.unit ? ` (${units(main.unit)})` : ""}`}
+        lines={[{ x: known.map(([h]) => h), y: known.map(([, e]) => e), look: "main" }]}
+        levels={floor > 0 ? [[floor, "floor"]] : []}
+        from={0}
+      />
+      <WhatIf known={known} symbol={symbol} unit={main.unit} planned={made.beamHours} />
+    </>
   );
 }
 
