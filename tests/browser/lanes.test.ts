@@ -104,26 +104,26 @@ describe.each(engines)("lanes in %s", (engine) => {
 
   it("are taken away as SVG, PNG and CSV", async () => {
     // What would be saved, kept instead.
-    await driver.executeScript("globalThis.saved = []; const make = URL.createObjectURL; URL.createObjectURL = (blob) => { globalThis.saved.push(blob); return make(blob); }; HTMLAnchorElement.prototype.click = () => undefined;");
+    await driver.executeScript("window.saved = []; const make = URL.createObjectURL; URL.createObjectURL = (blob) => { window.saved.push(blob); return make(blob); }; HTMLAnchorElement.prototype.click = () => undefined;");
     await enter(driver, "Sheet");
     await press(driver, "Plot, SVG");
     await press(driver, "Plot, PNG");
     await press(driver, "Curve, CSV");
-    await until(driver, "not three files", "return globalThis.saved.length === 3");
-    const kinds = await driver.executeScript<string[]>("return globalThis.saved.map((blob) => blob.type).sort()");
+    await until(driver, "not three files", "return window.saved.length === 3");
+    const kinds = await driver.executeScript<string[]>("return window.saved.map((blob) => blob.type).sort()");
     expect(kinds).toEqual(["image/png", "image/svg+xml", "text/csv"]);
     const drawn = await driver.executeAsyncScript<{ wrong: boolean; paths: number; words: string }>(`
       const done = arguments[0];
-      globalThis.saved.find((blob) => blob.type === 'image/svg+xml').text().then((text) => {
+      window.saved.find((blob) => blob.type === 'image/svg+xml').text().then((text) => {
         const svg = new DOMParser().parseFromString(text, 'image/svg+xml');
         done({ wrong: svg.querySelector('parsererror') !== null, paths: svg.querySelectorAll('path').length, words: svg.documentElement.textContent });
       });`);
     expect(drawn.wrong).toBe(false);
     expect(drawn.paths).toBeGreaterThan(20);
     for (const word of ["Saltmere", "invented", "Cross section (nb)", "Residuals (errors)", "W (MeV)", "Observed"]) expect(drawn.words).toContain(word);
-    const csv = await driver.executeAsyncScript<string>("const done = arguments[0]; globalThis.saved.find((blob) => blob.type === 'text/csv').text().then(done)");
+    const csv = await driver.executeAsyncScript<string>("const done = arguments[0]; window.saved.find((blob) => blob.type === 'text/csv').text().then(done)");
     expect(csv.split("\r\n").length).toBeGreaterThan(50);
-    const bytes = await driver.executeScript<number>("return globalThis.saved.find((blob) => blob.type === 'image/png').size");
+    const bytes = await driver.executeScript<number>("return window.saved.find((blob) => blob.type === 'image/png').size");
     expect(bytes).toBeGreaterThan(5000);
   });
 });

@@ -100,15 +100,15 @@ describe.each(engines)("a shift's tasks in %s", (engine) => {
       const results = document.querySelector('.cell-results');
       const figures = () => [...results.querySelectorAll('dd')].map((part) => part.innerText).join();
       const before = figures();
-      addEventListener('keydown', (event) => { if (event.key === 'Enter') globalThis.entered = performance.now(); }, true);
+      addEventListener('keydown', (event) => { if (event.key === 'Enter') window.entered = performance.now(); }, true);
       const watch = () => {
-        if (globalThis.entered && figures() !== before) globalThis.answered = performance.now() - globalThis.entered;
+        if (window.entered && figures() !== before) window.answered = performance.now() - window.entered;
         else requestAnimationFrame(watch);
       };
       watch();`);
     await (await driver.switchTo().activeElement()).sendKeys("131.0", Key.ENTER);
-    await until(driver, "no new fit", "return globalThis.answered !== undefined");
-    const took = await driver.executeScript<number>("return globalThis.answered");
+    await until(driver, "no new fit", "return window.answered !== undefined");
+    const took = await driver.executeScript<number>("return window.answered");
     told.push(`${engine}, from Enter to the new fit: ${took.toFixed(0)} ms`);
     expect(await text(driver, ".cell-results")).not.toBe(before);
     expect(await text(driver, ".cell-results")).toMatch(/moved/);

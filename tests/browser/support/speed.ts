@@ -88,11 +88,11 @@ export async function tenThousand(driver: WebDriver): Promise<{ read: number; pl
 /** Watches for tasks of the main thread of more than 50 ms (Chromium alone tells of them). */
 export async function watchLongTasks(driver: WebDriver): Promise<void> {
   await driver.executeScript(
-    "globalThis.longTasks = []; if (PerformanceObserver.supportedEntryTypes.includes('longtask')) new PerformanceObserver((list) => globalThis.longTasks.push(...list.getEntries().map((entry) => entry.duration))).observe({ type: 'longtask', buffered: true });",
+    "window.longTasks = []; if (PerformanceObserver.supportedEntryTypes.includes('longtask')) new PerformanceObserver((list) => window.longTasks.push(...list.getEntries().map((entry) => entry.duration))).observe({ type: 'longtask', buffered: true });",
   );
 }
 
 /** Their lengths so far, ms. */
 export async function longTasks(driver: WebDriver): Promise<number[]> {
-  return driver.executeScript<number[]>("return globalThis.longTasks.splice(0)");
+  return driver.executeScript<number[]>("return window.longTasks.splice(0)");
 }
