@@ -1,7 +1,7 @@
 //! The one place where transcendental functions are computed, over the crate `libm`:
 //! native and WebAssembly then give the same bits. Clippy forbids the `std` ones elsewhere.
 
-use num_complex::Complex64;
+pub use num_complex::Complex64;
 
 macro_rules! over_libm {
     ($($(#[$doc:meta])* $name:ident($($arg:ident),+) = $target:ident;)*) => {

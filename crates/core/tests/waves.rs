@@ -247,6 +247,21 @@ fn unitarity_of_a_sum_of_resonances() {
 }
 
 #[test]
+fn grid_is_the_pointwise_function() {
+    let model = mixture();
+    let waves = PreparedWaves::new(&model, &beams(), &Region::all()).unwrap();
+    let (w, cos) = ([0.001, 2.9, 3.0, 3.1], [-1.0, -0.4, 0.3, 1.0]);
+    let grid = waves.dsigma_dcos_grid_nb(&w, &cos);
+    for (i, w) in w.iter().enumerate() {
+        for (j, cos) in cos.iter().enumerate() {
+            let one = waves.dsigma_dcos_nb(Energy::at(*w), *cos);
+            let here = grid[i * 4 + j];
+            assert!((here - one).abs() <= 1e-13 * one.abs(), "{here} {one}");
+        }
+    }
+}
+
+#[test]
 fn what_cannot_be_is_refused() {
     let field = |model: Waves| {
         Hypothesis::Waves(model)

@@ -123,6 +123,30 @@ pub const TABLE: &[Limit] = &[
     from("model.resonances[].exit.m1", "mass of daughter 1", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
     from("model.resonances[].exit.m2", "mass of daughter 2", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
     from("model.resonances[].exit.radius", "barrier radius", Radius, (0.0, 1e4), "0 means no barrier"),
+    from("model.resonances[].flatte[].g_squared", "squared coupling", EnergySquared, (0.0, 1e10), "a squared coupling is 0 or more"),
+    from("model.resonances[].flatte[].m1", "mass of daughter 1", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.resonances[].flatte[].m2", "mass of daughter 2", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    above("model.resonances[].daughter", "mass of each daughter", Energy, (0.0, TOP_GEV), "this form is for two equal massive daughters"),
+    from("model.resonances[].loops[].g", "coupling g", Number, (-100.0, 100.0), "a larger Yukawa coupling is no perturbation"),
+    from("model.resonances[].loops[].mass", "mass in the loop", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.resonances[].loops[].h", "coupling h", Energy, (-TOP_GEV, TOP_GEV), ANY_SIZE),
+    from("model.resonances[].loops[].m1", "mass 1 in the loop", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.resonances[].loops[].m2", "mass 2 in the loop", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    above("model.k_matrix.poles[].mass", "mass of the bare pole", Energy, (0.0, TOP_GEV), ABOVE_ZERO),
+    from("model.k_matrix.poles[].g1", "coupling to channel 1", Energy, (-TOP_GEV, TOP_GEV), ANY_SIZE),
+    from("model.k_matrix.poles[].g2", "coupling to channel 2", Energy, (-TOP_GEV, TOP_GEV), ANY_SIZE),
+    from("model.k_matrix.channels[].m1", "mass 1 of the channel", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.k_matrix.channels[].m2", "mass 2 of the channel", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.k_matrix.c11", "c11", Number, (-1e12, 1e12), ANY_SIZE),
+    from("model.k_matrix.c12", "c12", Number, (-1e12, 1e12), ANY_SIZE),
+    from("model.k_matrix.c22", "c22", Number, (-1e12, 1e12), ANY_SIZE),
+    from("model.diagrams.other_mass", "mass of F", Energy, (0.0, TOP_GEV), "a mass is 0 or more"),
+    from("model.diagrams.mediators[].g", "coupling g", Number, (-100.0, 100.0), "a larger Yukawa coupling is no perturbation"),
+    from("model.diagrams.mediators[].g_other", "coupling g_F", Number, (-100.0, 100.0), "a larger Yukawa coupling is no perturbation"),
+    from("model.waves[].phase", "phase of the wave", Angle, (-TURNS, TURNS), A_PHASE),
+    from("model.waves[].couplings[].magnitude", "size of a coupling", Number, (0.0, 1e12), "a modulus is 0 or more; only ratios count"),
+    from("model.waves[].couplings[].phase", "phase of a coupling", Angle, (-TURNS, TURNS), A_PHASE),
+    above("model.cos_cut", "cut on |cos theta|", Number, (0.0, 1.0), "a cosine above 0; 1 means all angles"),
     above("model.coherent.w0", "W0", Energy, (0.0, TOP_GEV), ABOVE_ZERO),
     from("model.coherent.coefficients[]", "coefficient", NumberPerEnergy(0), (-1e30, 1e30), ANY_SIZE),
     from("model.coherent.phase", "phase of the background", Angle, (-TURNS, TURNS), A_PHASE),
@@ -260,6 +284,27 @@ pub fn pattern(path: &str) -> String {
     out
 }
 
+/// Places that share one row of the table: a mediator's propagator is a resonance's, and the
+/// couplings of a wave are alike on both sides and in both kinds.
+fn one_name(pattern: String) -> String {
+    if let Some(rest) = pattern.strip_prefix("model.diagrams.mediators[].")
+        && !matches!(rest, "g" | "g_other")
+    {
+        return format!("model.resonances[].{rest}");
+    }
+    for side in [
+        "entrance.amplitudes",
+        "entrance.terms",
+        "exit.amplitudes",
+        "exit.terms",
+    ] {
+        if let Some(rest) = pattern.strip_prefix(&format!("model.waves[].{side}[].")) {
+            return format!("model.waves[].couplings[].{rest}");
+        }
+    }
+    pattern
+}
+
 /// The limit of a path, of this dimension.
 #[must_use]
 pub fn find(path: &str, dimension: Dimension) -> Option<&'static Limit> {
@@ -269,6 +314,7 @@ pub fn find(path: &str, dimension: Dimension) -> Option<&'static Limit> {
         CrossSectionPerEnergy(_) => CrossSectionPerEnergy(0),
         other => other,
     };
+    let pattern = one_name(pattern);
     TABLE
         .iter()
         .find(|l| l.field == pattern && l.dimension == kind(dimension))

@@ -5,7 +5,9 @@ import type { CombReading } from "./CombReading";
 import type { Comparison } from "./Comparison";
 import type { DerivedReading } from "./DerivedReading";
 import type { Design } from "./Design";
+import type { DiagramReading } from "./DiagramReading";
 import type { Dial } from "./Dial";
+import type { Elastic } from "./Elastic";
 import type { FittedParameter } from "./FittedParameter";
 import type { ForecastReading } from "./ForecastReading";
 import type { GlobalSignificance } from "./GlobalSignificance";
@@ -16,6 +18,7 @@ import type { Nuisance } from "./Nuisance";
 import type { ParameterIntervals } from "./ParameterIntervals";
 import type { PointInfluence } from "./PointInfluence";
 import type { PointReading } from "./PointReading";
+import type { PoleReading } from "./PoleReading";
 import type { Refusal } from "./Refusal";
 import type { Row } from "./Row";
 import type { RowChange } from "./RowChange";
@@ -29,6 +32,8 @@ import type { Summary } from "./Summary";
 import type { TrialRow } from "./TrialRow";
 import type { TrialsPValue } from "./TrialsPValue";
 import type { Warning } from "./Warning";
+import type { WaveReading } from "./WaveReading";
+import type { Words } from "./Words";
 
 /**
  * Plain data of an answer.
@@ -305,7 +310,115 @@ design: Design, } | { "kind": "comb",
 /**
  * The comb and its chance.
  */
-reading: CombReading, } | { "kind": "text", 
+reading: CombReading, } | { "kind": "amplitude", 
+/**
+ * Names of all propagators of the hypothesis.
+ */
+names: Array<string>, 
+/**
+ * M of this one, GeV.
+ */
+mass_gev: number, 
+/**
+ * Gamma(M), GeV; 0 where nothing is open, and for a K-matrix.
+ */
+width_gev: number, 
+/**
+ * hbar/Gamma, s.
+ */
+lifetime_s: number | null, 
+/**
+ * Below every threshold.
+ */
+stable: boolean, 
+/**
+ * Thresholds that separate sheets: (channel, W in GeV).
+ */
+thresholds: Array<[string, number]>, 
+/**
+ * Signs of Im q of the sheet next to the real axis at M (true: +).
+ */
+sheet: Array<boolean>, 
+/**
+ * Mass and width in every convention.
+ */
+words: Array<Words>, 
+/**
+ * Poles.
+ */
+poles: Array<PoleReading>, 
+/**
+ * What the search found, one sentence.
+ */
+pole_note: string, 
+/**
+ * Unitarity of the sum beside the K-matrix, where it can be told.
+ */
+elastic: Elastic | null, 
+/**
+ * Warnings.
+ */
+warnings: Array<Warning>, } | { "kind": "image", 
+/**
+ * Values in a row.
+ */
+columns: number, 
+/**
+ * Rows.
+ */
+rows: number, 
+/**
+ * Least value.
+ */
+least: number, 
+/**
+ * Largest value.
+ */
+most: number, 
+/**
+ * Sheet of a complex plane (signs of Im q).
+ */
+sheet: Array<boolean>, 
+/**
+ * Warnings.
+ */
+warnings: Array<Warning>, } | { "kind": "slice", 
+/**
+ * 1/2 for identical particles in the final state: belongs to totals only.
+ */
+identical_factor: number, 
+/**
+ * Diagrams, in the order of the columns.
+ */
+diagrams: Array<DiagramReading>, 
+/**
+ * Warnings.
+ */
+warnings: Array<Warning>, } | { "kind": "partial_waves", 
+/**
+ * Waves at the energy asked for.
+ */
+waves: Array<WaveReading>, 
+/**
+ * Waves that leave |Re a| <= 1/2, each at its first place.
+ */
+breaches: Array<WaveReading>, 
+/**
+ * One plain sentence.
+ */
+note: string, 
+/**
+ * Warnings.
+ */
+warnings: Array<Warning>, } | { "kind": "words", 
+/**
+ * Mass and width in every convention.
+ */
+words: Array<Words>, 
+/**
+ * Coupling, width, lifetime.
+ */
+values: Array<Named>, } | { "kind": "text", 
 /**
  * Text.
  */

@@ -3,4 +3,4 @@
 /**
  * Propagator.
  */
-export type Form = "constant_width" | "massless_channels" | "running_width";
+export type Form = "constant_width" | "massless_channels" | "running_width" | "flatte" | "gounaris_sakurai" | "dressed" | "free";

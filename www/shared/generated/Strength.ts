@@ -27,4 +27,8 @@ gamma_in: string,
 /**
  * Energy.
  */
-gamma_f: string, };
+gamma_f: string, } | { "kind": "one_width", 
+/**
+ * Energy.
+ */
+value: string, } | { "kind": "from_form" };

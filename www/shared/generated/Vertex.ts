@@ -3,7 +3,11 @@
 /**
  * Vertex.
  */
-export type Vertex = { "kind": "constant" } | { "kind": "one_photon" } | { "kind": "massless" } | { "kind": "running", 
+export type Vertex = { "kind": "constant" } | { "kind": "one_photon" } | { "kind": "massless" } | { "kind": "own", 
+/**
+ * Which.
+ */
+channel: number, } | { "kind": "running", 
 /**
  * Mass 1.
  */

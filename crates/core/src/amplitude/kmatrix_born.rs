@@ -32,18 +32,18 @@ impl KMatrixBorn {
     pub fn new(model: &KMatrix, beams: &Beams) -> Answer<Self> {
         use super::born::Checked;
         beams.check("beam")?;
-        check_spin(model.twice_j, beams)?;
+        check_spin(model.twice_j, beams, "model.j")?;
         for (field, channel) in [("entrance", model.entrance), ("exit", model.exit)] {
             if channel > 1 {
                 return Err(Refusal::new(
-                    format!("model.{field}"),
+                    format!("model.k_matrix.{field}"),
                     channel,
                     "channel 0 or 1",
                     "the K-matrix has two channels",
                 ));
             }
         }
-        let matrix = PreparedKMatrix::new(model, "model")?;
+        let matrix = PreparedKMatrix::new(model, "model.k_matrix")?;
         let (entrance, exit) = (usize::from(model.entrance), usize::from(model.exit));
         let (m1_gev, m2_gev) = (beams.first.mass_gev, beams.second.mass_gev);
         let [one, two] = matrix.channels();

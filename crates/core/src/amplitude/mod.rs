@@ -3,6 +3,7 @@
 mod background;
 pub mod born;
 pub mod diagrams;
+pub mod elastic;
 pub mod hypothesis;
 pub mod kmatrix_born;
 pub mod parameters;

@@ -70,10 +70,24 @@ impl PreparedPartialWave {
     /// # Errors
     /// The first thing that is wrong, named by its path in the sheet.
     pub fn new(wave: &PartialWave, beams: &Beams) -> Answer<Self> {
+        Self::numbered(wave, beams, 0, "model.j")
+    }
+
+    /// The same as one wave of several, whose resonances are numbered through: the first of this
+    /// one is `first`, and its spin stands at `j_path`.
+    ///
+    /// # Errors
+    /// As [`PreparedPartialWave::new`].
+    pub(crate) fn numbered(
+        wave: &PartialWave,
+        beams: &Beams,
+        first: usize,
+        j_path: &str,
+    ) -> Answer<Self> {
         use super::born::Checked;
         beams.check("beam")?;
         let path = "model";
-        check_spin(wave.twice_j, beams)?;
+        check_spin(wave.twice_j, beams, j_path)?;
         if wave.resonances.len() > MOST_RESONANCES {
             return Err(Refusal::new(
                 format!("{path}.resonances"),
@@ -96,7 +110,7 @@ impl PreparedPartialWave {
             .resonances
             .iter()
             .enumerate()
-            .map(|(i, resonance)| term(resonance, i, &format!("{path}.resonances[{i}]")))
+            .map(|(i, resonance)| term(resonance, i, &format!("{path}.resonances[{}]", first + i)))
             .collect::<Answer<Vec<_>>>()?;
         let coherent = Coherent::new(
             wave.coherent.as_ref(),
@@ -408,7 +422,7 @@ fn widths_product(strength: &Strength, mass: f64, width: f64, path: &str) -> Ans
 
 /// Two massive beams fix whether J is whole or half. (A massless beam's number of states does
 /// not tell its spin.)
-pub(crate) fn check_spin(twice_j: u8, beams: &Beams) -> Answer<()> {
+pub(crate) fn check_spin(twice_j: u8, beams: &Beams, path: &str) -> Answer<()> {
     if beams.first.mass_gev == 0.0 || beams.second.mass_gev == 0.0 {
         return Ok(());
     }
@@ -422,7 +436,7 @@ pub(crate) fn check_spin(twice_j: u8, beams: &Beams) -> Answer<()> {
         ("0, 1, 2, ...", "whole")
     };
     Err(Refusal::new(
-        "model.j",
+        path,
         f64::from(twice_j) / 2.0,
         allowed,
         format!("these two beams together have {have} angular momentum"),

@@ -130,6 +130,7 @@ impl PreparedWaves {
             ));
         }
         let mut waves = Vec::new();
+        let mut first = 0;
         for (i, wave) in model.waves.iter().enumerate() {
             let path = format!("model.waves[{i}]");
             if wave.wave.twice_j > MOST_TWICE_J {
@@ -157,7 +158,7 @@ impl PreparedWaves {
                 ));
             }
             waves.push(OneWave {
-                t: PreparedPartialWave::new(&wave.wave, beams)?,
+                t: PreparedPartialWave::numbered(&wave.wave, beams, first, &format!("{path}.j"))?,
                 phase: math::polar(1.0, wave.phase_rad),
                 twice_j: wave.wave.twice_j,
                 entrance: helicity_amplitudes(
@@ -167,6 +168,7 @@ impl PreparedWaves {
                 )?,
                 exit: helicity_amplitudes(&wave.exit, wave.wave.twice_j, &format!("{path}.exit"))?,
             });
+            first += wave.wave.resonances.len();
         }
         let mut overlaps = Vec::new();
         for a in &waves {
@@ -216,6 +218,45 @@ impl PreparedWaves {
             }
         }
         scale * total + 0.5 * self.incoherent.sigma_nb(at)
+    }
+
+    /// [`PreparedWaves::dsigma_dcos_nb`] over a grid, row by row in W (GeV): the angles do not
+    /// depend on W, so their d-functions are worked out once.
+    #[must_use]
+    pub fn dsigma_dcos_grid_nb(&self, w_gev: &[f64], cos_theta: &[f64]) -> Vec<f64> {
+        let n = self.waves.len();
+        let mut angles = Vec::with_capacity(cos_theta.len() * n * n);
+        for cos in cos_theta {
+            for a in &self.waves {
+                for b in &self.waves {
+                    angles.push(at_angle(a, b, *cos));
+                }
+            }
+        }
+        let mut out = Vec::with_capacity(w_gev.len() * cos_theta.len());
+        for w in w_gev {
+            let at = Energy::at(*w);
+            let Some((scale, t)) = self.amplitudes(at) else {
+                out.extend(cos_theta.iter().map(|_| 0.0));
+                continue;
+            };
+            let mut products = Vec::with_capacity(n * n);
+            for a in t.iter().take(n) {
+                for b in t.iter().take(n) {
+                    products.push(a * b.conj() * scale);
+                }
+            }
+            let isotropic = 0.5 * self.incoherent.sigma_nb(at);
+            for matrix in angles.chunks(n * n) {
+                let sum: f64 = products
+                    .iter()
+                    .zip(matrix)
+                    .map(|(t, d)| t.re * d.re - t.im * d.im)
+                    .sum();
+                out.push(sum + isotropic);
+            }
+        }
+        out
     }
 
     /// (flux/k^2, T^J e^{i phase}); `None` below threshold.

@@ -545,7 +545,7 @@ fn what_cannot_be_is_refused() {
     let phi = |mass, width| vec![mediator("scalar", mass, width, 1.0, 1.0)];
     assert_eq!(
         refusal("f fbar -> F Fbar", phi(3.0, 0.0), 0.5, 0.5, None).unwrap(),
-        "model.mediators[0].propagator"
+        "model.diagrams.mediators[0].propagator"
     );
     assert_eq!(
         refusal("f fbar -> F Fbar", phi(0.9, 0.0), 0.5, 0.5, None),
@@ -553,11 +553,11 @@ fn what_cannot_be_is_refused() {
     );
     assert_eq!(
         refusal("f phi -> f phi", phi(1.1, 0.0), 0.5, 0.5, None).unwrap(),
-        "model.mediators[0].mass"
+        "model.diagrams.mediators[0].mass"
     );
     assert_eq!(
         refusal("f F -> f F", vec![], 0.5, 0.5, None).unwrap(),
-        "model.mediators"
+        "model.diagrams.mediators"
     );
     assert_eq!(
         refusal("f F -> f F", phi(1.1, 0.0), 0.5, 0.5, Some(1.5)).unwrap(),

@@ -5,6 +5,7 @@
 //! not keep the curve from being drawn: beams, model and detection ([`Frame`]) are understood
 //! apart from the rows.
 
+mod amplitude;
 mod beam;
 mod channels;
 mod data;
@@ -151,9 +152,18 @@ fn frame_into(sheet: &Sheet, log: &mut Log) -> Option<Frame> {
     let beams = beam::beams(&sheet.beam, log);
     let calibration = beam::calibration(&sheet.beam.calibration, log);
     let hypothesis = model::hypothesis(&sheet.model, beams.as_ref(), log);
-    let w0 = hypothesis.as_ref().and_then(model::reference_gev);
-    let spread = beam::spread(&sheet.beam, beams.as_ref(), w0, log);
-    let chain = model::chain(sheet, beams.as_ref(), spread, w0, log);
+    let w0 = hypothesis.as_ref().and_then(model::resonance_gev);
+    let anchor = hypothesis
+        .as_ref()
+        .zip(beams.as_ref())
+        .map(|(hypothesis, beams)| model::anchor_gev(sheet, hypothesis, beams));
+    let spread = beam::spread(&sheet.beam, beams.as_ref(), anchor, log);
+    let above = |mass: &f64| {
+        beams
+            .as_ref()
+            .is_some_and(|b| *mass > b.first.mass_gev + b.second.mass_gev)
+    };
+    let chain = model::chain(sheet, beams.as_ref(), spread, w0.filter(above), log);
     let detection = detection::detection(sheet, log);
     let exits = channels::channels(sheet, beams.as_ref(), chain.as_ref(), log);
     let common = data::common_errors(sheet, log);

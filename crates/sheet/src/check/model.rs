@@ -1,13 +1,15 @@
 //! The hypothesis of a sheet, radiation and accuracy.
 
+use super::amplitude;
 use super::beam::twice;
 use super::log::Log;
 use super::resonance;
-use crate::doc::{self, Coherent, Incoherent, Sheet, Stage};
+use crate::doc::{self, Coherent, Incoherent, ModelKind, Sheet, Stage};
 use crate::particles;
 use crate::quantity::Dimension;
+use widthwise_core::amplitude::diagrams::Channel;
 use widthwise_core::amplitude::hypothesis::{
-    CoherentBackground, Hypothesis, IncoherentBackground, PartialWave,
+    CoherentBackground, Form, Hypothesis, IncoherentBackground, PartialWave,
 };
 use widthwise_core::beam::Beams;
 use widthwise_core::scan::{ChainSettings, Spread};
@@ -18,6 +20,74 @@ const ACCURACY: f64 = 1e-6;
 /// The hypothesis, checked against the beams.
 pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> Option<Hypothesis> {
     let before = log.problems.len();
+    let incoherent = model.incoherent.as_ref().and_then(|c| incoherent(c, log));
+    let cos_cut = log.optional("model.cos_cut", model.cos_cut.as_ref(), Dimension::Number);
+    let hypothesis = match model.hypothesis {
+        ModelKind::PartialWave | ModelKind::Waves => {
+            let whole = coherent_sum(model, beams, incoherent, log);
+            if log.problems.len() > before {
+                return None;
+            }
+            if model.hypothesis == ModelKind::Waves {
+                amplitude::waves(model, whole?, beams?, cos_cut, log).map(Hypothesis::Waves)
+            } else {
+                whole.map(Hypothesis::PartialWave)
+            }
+        }
+        ModelKind::KMatrix => {
+            let twice_j = spin(model, log);
+            let of = declared(model.k_matrix.as_ref(), "model.k_matrix", log);
+            of.and_then(|of| amplitude::k_matrix(of, twice_j?, incoherent, log))
+                .map(Hypothesis::KMatrix)
+        }
+        ModelKind::Diagrams => declared(model.diagrams.as_ref(), "model.diagrams", log)
+            .map(|of| amplitude::diagrams(of, cos_cut, incoherent, log))
+            .map(Hypothesis::Diagrams),
+    };
+    if log.problems.len() > before {
+        return None;
+    }
+    let (hypothesis, beams) = (hypothesis?, beams?);
+    let angles = matches!(model.hypothesis, ModelKind::Waves | ModelKind::Diagrams);
+    if cos_cut.is_some() && !angles {
+        log.warn(
+            "cut-without-angles",
+            "A cut on cos theta is given, but this hypothesis says nothing about angles: the cut does not act. Waves with helicities, or diagrams, have angles.",
+        );
+    }
+    match hypothesis.prepare(beams) {
+        Err(refusal) => log.problems.push(refusal),
+        Ok(born) => {
+            for warning in born.warnings() {
+                if !log.warnings.contains(&warning) {
+                    log.warnings.push(warning);
+                }
+            }
+            if model.radiation.on
+                && let Err(refusal) = born.radiation()
+            {
+                log.problems.push(refusal);
+            }
+        }
+    }
+    (log.problems.len() == before).then_some(hypothesis)
+}
+
+/// What this kind of hypothesis is made of, which has to be there.
+fn declared<'a, T>(of: Option<&'a T>, path: &str, log: &mut Log) -> Option<&'a T> {
+    if of.is_none() {
+        log.refuse(
+            path,
+            "nothing",
+            "what this kind of hypothesis is made of",
+            "the model says that it is of this kind, but nothing is declared for it",
+        );
+    }
+    of
+}
+
+/// 2J of the coherent sum.
+fn spin(model: &doc::Model, log: &mut Log) -> Option<u8> {
     let twice_j = twice(&model.j);
     if twice_j.is_none() {
         log.refuse(
@@ -27,6 +97,21 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
             "this is no angular momentum",
         );
     }
+    twice_j
+}
+
+/// All resonances with the backgrounds, as if they were one coherent sum.
+fn coherent_sum(
+    model: &doc::Model,
+    beams: Option<&Beams>,
+    incoherent: Option<IncoherentBackground>,
+    log: &mut Log,
+) -> Option<PartialWave> {
+    // Each of several waves brings its own J.
+    let twice_j = match model.hypothesis {
+        ModelKind::Waves => Some(0),
+        _ => spin(model, log),
+    };
     if model.resonances.is_empty() {
         log.refuse(
             "model.resonances",
@@ -45,7 +130,6 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
         })
         .collect();
     let coherent = model.coherent.as_ref().and_then(|c| coherent(c, log));
-    let incoherent = model.incoherent.as_ref().and_then(|c| incoherent(c, log));
     let final_threshold_gev = log
         .optional(
             "model.final_threshold",
@@ -60,10 +144,6 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
             Dimension::Number,
         )
         .unwrap_or(1.0);
-    if log.problems.len() > before {
-        return None;
-    }
-    let beams = beams?;
     let wave = PartialWave {
         twice_j: twice_j?,
         resonances,
@@ -72,21 +152,50 @@ pub fn hypothesis(model: &doc::Model, beams: Option<&Beams>, log: &mut Log) -> O
         final_threshold_gev,
         continuum_factor,
     };
-    above_threshold(&wave, beams, log);
-    let hypothesis = Hypothesis::PartialWave(wave);
-    if let Err(refusal) = hypothesis.prepare(beams) {
-        log.problems.push(refusal);
-    }
-    (log.problems.len() == before).then_some(hypothesis)
+    above_threshold(&wave, beams?, log);
+    Some(wave)
 }
 
-/// Where spreads and defaults are anchored: the first resonance's mass, GeV.
-pub fn reference_gev(hypothesis: &Hypothesis) -> Option<f64> {
+/// Mass of what is scanned: the first resonance, bare pole or s-channel mediator, GeV.
+pub fn resonance_gev(hypothesis: &Hypothesis) -> Option<f64> {
     match hypothesis {
         Hypothesis::PartialWave(wave) => wave.resonances.first().map(|r| r.mass_gev),
-        // The sheet does not declare these yet.
-        _ => None,
+        Hypothesis::Waves(waves) => {
+            let mut all = waves.waves.iter().flat_map(|wave| &wave.wave.resonances);
+            all.next().map(|r| r.mass_gev)
+        }
+        Hypothesis::KMatrix(model) => model.poles.first().map(|pole| pole.mass_gev),
+        Hypothesis::Diagrams(model) => {
+            let in_s = model.reaction.channels().contains(&Channel::S)
+                && !model.reaction.exchanges_fermion();
+            let mediator = model.mediators.first().filter(|_| in_s)?;
+            Some(mediator.mass_gev)
+        }
     }
+}
+
+/// Where a spread holds that is given without an energy: at what is scanned, else at the first
+/// row, else at twice the beams' threshold, GeV.
+pub fn anchor_gev(sheet: &Sheet, hypothesis: &Hypothesis, beams: &Beams) -> f64 {
+    let threshold = beams.first.mass_gev + beams.second.mass_gev;
+    let number = |text: &Option<String>, dimension| {
+        let reading = crate::quantity::read(text.as_ref()?, dimension).ok()?;
+        Some(reading.value)
+    };
+    let row = || {
+        let setting = super::dial_dimension(sheet.beam.dial);
+        sheet.data.rows.iter().find_map(|row| {
+            number(&row.w, Dimension::Energy).or_else(|| {
+                let setting = number(&row.setting, setting)?;
+                beams.w_gev(beams.dial, setting).ok()
+            })
+        })
+    };
+    resonance_gev(hypothesis)
+        .filter(|mass| *mass > threshold)
+        .or_else(row)
+        .filter(|w| *w > threshold)
+        .unwrap_or(2.0 * threshold)
 }
 
 fn above_threshold(wave: &PartialWave, beams: &Beams, log: &mut Log) {
@@ -97,9 +206,21 @@ fn above_threshold(wave: &PartialWave, beams: &Beams, log: &mut Log) {
         (wave.final_threshold_gev, "the final state's")
     };
     for (i, r) in wave.resonances.iter().enumerate() {
+        let path = format!("model.resonances[{i}]");
+        if r.form == Form::Free {
+            if r.mass_gev > threshold {
+                log.refuse(
+                    &format!("{path}.form"),
+                    "free",
+                    &format!("a form with a width, or a mass below {threshold} GeV"),
+                    "the scan reaches this state on shell, s = M^2, where the propagator without width has no value: a state that can decay is dressed by its own decay channels, and their width makes it finite",
+                );
+            }
+            continue;
+        }
         if r.mass_gev <= threshold {
             log.refuse(
-                &format!("model.resonances[{i}].mass"),
+                &format!("{path}.mass"),
                 &format!("{} GeV", r.mass_gev),
                 &format!("a mass above {threshold} GeV"),
                 format!("the mass lies below {whose} threshold, so there is no peak to scan"),

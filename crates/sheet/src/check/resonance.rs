@@ -2,10 +2,10 @@
 
 use super::log::Log;
 use crate::doc;
-use crate::quantity::Dimension::{Energy, Number, Radius};
+use crate::quantity::Dimension::{Energy, EnergySquared, Number, Radius};
 use widthwise_core::amplitude::default_vertices;
 use widthwise_core::amplitude::hypothesis::{
-    ChannelShape, Form, Resonance, Strength, TwoBody, Vertex, WidthChannel,
+    ChannelShape, FlatteChannel, Form, Loop, Resonance, Strength, TwoBody, Vertex, WidthChannel,
 };
 
 /// The resonance at `path`; `None` and refusals if it is not understood.
@@ -17,7 +17,7 @@ pub fn resonance(
 ) -> Option<Resonance> {
     let before = log.problems.len();
     let mass_gev = log.value(&format!("{path}.mass"), &resonance.mass, Energy);
-    let width_gev = log.value(&format!("{path}.width"), &resonance.width, Energy);
+    let width_gev = width(path, resonance.form, Some(&resonance.width), log);
     let strength = strength(&format!("{path}.strength"), &resonance.strength, log);
     let phase_rad = log
         .optional(
@@ -26,18 +26,18 @@ pub fn resonance(
             crate::quantity::Dimension::Angle,
         )
         .unwrap_or(0.0);
-    let form = form(path, resonance, log);
+    let form = form(path, &FormFields::of_resonance(resonance), log);
     let defaults = default_vertices(&form, lepton_pair);
     let mut vertex_of = |side: &str, typed: Option<&doc::Vertex>, default: Option<Vertex>| {
         let path = format!("{path}.{side}");
         match (typed, default) {
-            (Some(typed), _) => Some(vertex(&path, typed, log)),
+            (Some(typed), _) => Some(vertex(&path, typed, &form, log)),
             (None, Some(default)) => Some(default),
             (None, None) => {
                 log.refuse(
                     &path,
                     "",
-                    "constant, one photon, massless or running",
+                    "constant, one photon, massless, running, or a channel of the form",
                     "this form has no usual vertex here, so one has to be declared",
                 );
                 None
@@ -81,10 +81,79 @@ fn strength(path: &str, strength: &doc::Strength, log: &mut Log) -> Strength {
             gamma_in_gev: value("gamma_in", gamma_in, Energy),
             gamma_f_gev: value("gamma_f", gamma_f, Energy),
         },
+        doc::Strength::OneWidth { value: text } => Strength::OneWidth {
+            gev: value("value", text, Energy),
+        },
+        doc::Strength::FromForm => Strength::FromForm,
     }
 }
 
-fn form(path: &str, resonance: &doc::Resonance, log: &mut Log) -> Form {
+/// What a propagator is made of, in a resonance or a mediator.
+pub struct FormFields<'a> {
+    /// Form.
+    pub form: doc::Form,
+    /// Width channels.
+    pub channels: &'a [doc::Channel],
+    /// Flatte channels.
+    pub flatte: &'a [doc::FlatteChannel],
+    /// Daughters.
+    pub daughter: Option<&'a String>,
+    /// Loops.
+    pub loops: &'a [doc::Loop],
+    /// Couples with gamma5.
+    pub pseudoscalar: bool,
+}
+
+impl<'a> FormFields<'a> {
+    fn of_resonance(r: &'a doc::Resonance) -> Self {
+        Self {
+            form: r.form,
+            channels: &r.channels,
+            flatte: &r.flatte,
+            daughter: r.daughter.as_ref(),
+            loops: &r.loops,
+            pseudoscalar: r.pseudoscalar,
+        }
+    }
+
+    /// Of a mediator.
+    pub fn of_mediator(m: &'a doc::Mediator) -> Self {
+        Self {
+            form: m.form,
+            channels: &m.channels,
+            flatte: &m.flatte,
+            daughter: m.daughter.as_ref(),
+            loops: &m.loops,
+            pseudoscalar: m.pseudoscalar,
+        }
+    }
+}
+
+/// Forms whose width follows from their couplings.
+pub fn width_follows(form: doc::Form) -> bool {
+    matches!(
+        form,
+        doc::Form::Flatte | doc::Form::Dressed | doc::Form::Free
+    )
+}
+
+/// The width that the core takes: 0 where couplings make it.
+pub fn width(path: &str, form: doc::Form, text: Option<&String>, log: &mut Log) -> f64 {
+    let text = text.map_or("", String::as_str);
+    if !width_follows(form) {
+        return log.value(&format!("{path}.width"), text, Energy);
+    }
+    if !text.trim().is_empty() {
+        log.warn(
+            "width-unused",
+            "A width is written beside a form whose couplings make it: the written one does not count.",
+        );
+    }
+    0.0
+}
+
+/// The propagator at `path`.
+pub fn form(path: &str, resonance: &FormFields, log: &mut Log) -> Form {
     let running = resonance.form == doc::Form::RunningWidth;
     if running && resonance.channels.is_empty() {
         log.refuse(
@@ -111,7 +180,96 @@ fn form(path: &str, resonance: &doc::Resonance, log: &mut Log) -> Form {
                 .map(|(i, c)| channel(&format!("{path}.channels[{i}]"), c, log))
                 .collect(),
         },
+        doc::Form::Flatte => flatte(path, resonance.flatte, log),
+        doc::Form::GounarisSakurai => Form::GounarisSakurai {
+            m_gev: log.value(
+                &format!("{path}.daughter"),
+                resonance.daughter.map_or("", String::as_str),
+                Energy,
+            ),
+        },
+        doc::Form::Dressed => Form::Dressed {
+            pseudoscalar: resonance.pseudoscalar,
+            loops: loops(path, resonance.loops, log),
+        },
+        doc::Form::Free => Form::Free,
     }
+}
+
+fn flatte(path: &str, channels: &[doc::FlatteChannel], log: &mut Log) -> Form {
+    if channels.len() != 2 {
+        log.refuse(
+            &format!("{path}.flatte"),
+            &format!("{} channels", channels.len()),
+            "two channels",
+            "this form has exactly two channels; a running width takes any number",
+        );
+    }
+    let mut channel = |i: usize| {
+        let path = format!("{path}.flatte[{i}]");
+        let empty = doc::FlatteChannel {
+            name: String::new(),
+            g_squared: "0 GeV^2".into(),
+            m1: "0 GeV".into(),
+            m2: "0 GeV".into(),
+        };
+        let of = channels.get(i).unwrap_or(&empty);
+        FlatteChannel {
+            name: of.name.clone(),
+            g2_gev2: log.value(&format!("{path}.g_squared"), &of.g_squared, EnergySquared),
+            m1_gev: log.value(&format!("{path}.m1"), &of.m1, Energy),
+            m2_gev: log.value(&format!("{path}.m2"), &of.m2, Energy),
+        }
+    };
+    Form::Flatte {
+        channels: [channel(0), channel(1)],
+    }
+}
+
+/// Loops of a dressed mediator.
+pub fn loops(path: &str, loops: &[doc::Loop], log: &mut Log) -> Vec<Loop> {
+    let of = |(i, of): (usize, &doc::Loop)| {
+        let mut value = |field: &str, text: &str, dimension| {
+            log.value(&format!("{path}.loops[{i}].{field}"), text, dimension)
+        };
+        match of {
+            doc::Loop::Fermion {
+                name,
+                g,
+                mass,
+                colours,
+            } => Loop::Fermion {
+                name: name.clone(),
+                g: value("g", g, Number),
+                m_gev: value("mass", mass, Energy),
+                colours: {
+                    if *colours == Some(0) {
+                        log.refuse(
+                            &format!("{path}.loops[{i}].colours"),
+                            "0",
+                            "1 or more",
+                            "a colour factor is 1 where there is none",
+                        );
+                    }
+                    colours.unwrap_or(1)
+                },
+            },
+            doc::Loop::Scalar {
+                name,
+                h,
+                m1,
+                m2,
+                identical,
+            } => Loop::Scalar {
+                name: name.clone(),
+                h_gev: value("h", h, Energy),
+                m1_gev: value("m1", m1, Energy),
+                m2_gev: value("m2", m2, Energy),
+                identical: *identical,
+            },
+        }
+    };
+    loops.iter().enumerate().map(of).collect()
 }
 
 fn channel(path: &str, channel: &doc::Channel, log: &mut Log) -> WidthChannel {
@@ -143,8 +301,19 @@ fn channel(path: &str, channel: &doc::Channel, log: &mut Log) -> WidthChannel {
     }
 }
 
-fn vertex(path: &str, vertex: &doc::Vertex, log: &mut Log) -> Vertex {
+fn vertex(path: &str, vertex: &doc::Vertex, form: &Form, log: &mut Log) -> Vertex {
     match vertex {
+        doc::Vertex::Own { channel } => {
+            let Some(index) = channel.checked_sub(1) else {
+                log.refuse(path, "0", "1, 2, ...", "channels are counted from 1");
+                return Vertex::Constant;
+            };
+            if matches!(form, Form::Flatte { .. }) {
+                Vertex::Flatte { channel: index }
+            } else {
+                Vertex::Dressed { index }
+            }
+        }
         doc::Vertex::Constant => Vertex::Constant,
         doc::Vertex::OnePhoton => Vertex::OnePhoton,
         doc::Vertex::Massless => Vertex::Massless,

@@ -5,6 +5,7 @@
 //! half-typed field can be saved, and every number in the file carries its unit.
 //! What the text means is decided in one place (`quantity`), what is allowed in another (`limits`).
 
+mod amplitude;
 mod beam;
 mod channel;
 mod data;
@@ -14,6 +15,10 @@ mod model;
 mod plan;
 mod resonance;
 
+pub use amplitude::{
+    Couplings, Diagrams, HelicityTerm, KChannel, KMatrix, KPole, LsTerm, Mediator, ModelKind,
+    Reaction, Wave,
+};
 pub use beam::{Arrangement, Beam, Calibration, Dial, ParticleChoice, Spread, SpreadKind};
 pub use channel::ExitChannel;
 pub use data::{AngleBin, Data, LuminosityMonitor, LuminositySource, Row, Stage};
@@ -21,7 +26,7 @@ pub use detection::Detection;
 pub use fit::{Constraint, Fit};
 pub use model::{Coherent, Incoherent, Model, Radiation};
 pub use plan::{Plan, PlanComb, PlanGoal, PlanRival};
-pub use resonance::{Channel, Form, Resonance, Shape, Strength, Vertex};
+pub use resonance::{Channel, FlatteChannel, Form, Loop, Resonance, Shape, Strength, Vertex};
 use serde::{Deserialize, Serialize};
 
 /// Text of one number with its unit, as typed.

@@ -1,7 +1,6 @@
-//! The hypothesis: one partial wave with its backgrounds, and radiation.
+//! The hypothesis with its backgrounds, and radiation.
 
-use super::Quantity;
-use super::Resonance;
+use super::{Diagrams, KMatrix, ModelKind, Quantity, Resonance, Wave};
 use serde::{Deserialize, Serialize};
 
 /// Hypothesis.
@@ -10,10 +9,27 @@ use serde::{Deserialize, Serialize};
 #[cfg_attr(test, derive(schemars::JsonSchema))]
 #[serde(deny_unknown_fields)]
 pub struct Model {
-    /// J of the coherent sum ("0", "1/2", "1", ...).
+    /// What it is made of; absent = the resonances in one coherent sum.
+    #[serde(default, skip_serializing_if = "ModelKind::is_usual")]
+    pub hypothesis: ModelKind,
+    /// J of the coherent sum or the K-matrix ("0", "1/2", "1", ...).
+    #[serde(default)]
     pub j: String,
-    /// Resonances.
+    /// Resonances, those of one wave together and in the order of the waves.
+    #[serde(default)]
     pub resonances: Vec<Resonance>,
+    /// K-matrix.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub k_matrix: Option<KMatrix>,
+    /// Tree-level diagrams.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub diagrams: Option<Diagrams>,
+    /// Several partial waves.
+    #[serde(default, skip_serializing_if = "Vec::is_empty")]
+    pub waves: Vec<Wave>,
+    /// Total inside |cos theta| < this (diagrams, waves); absent = all angles.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub cos_cut: Option<Quantity>,
     /// Background inside the modulus.
     #[serde(default, skip_serializing_if = "Option::is_none")]
     pub coherent: Option<Coherent>,

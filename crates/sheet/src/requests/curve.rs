@@ -34,7 +34,11 @@ pub fn answer(sheet: &Sheet, from_gev: f64, to_gev: f64, points: u32) -> Answer<
         columns.push(nb(&name, values));
     }
     let mut warnings = ready.warnings;
-    warnings.extend(curve.warnings);
+    for warning in curve.warnings {
+        if !warnings.contains(&warning) {
+            warnings.push(warning);
+        }
+    }
     Ok(Reply {
         body: Body::Curve {
             accuracy: curve.accuracy,

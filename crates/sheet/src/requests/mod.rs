@@ -1,5 +1,6 @@
 //! What can be asked of a sheet, and the answers. Page and batch program send the same requests.
 
+mod amplitude;
 mod convert;
 mod csv;
 mod cursor;
@@ -19,6 +20,7 @@ mod tables;
 mod trials;
 mod window;
 
+pub use amplitude::{Elastic, Grid, PoleReading, Words};
 pub use csv::csv_of;
 pub use fit::settings as fit_settings;
 pub use judge::{At, SoFar};
@@ -257,6 +259,79 @@ pub enum Request {
         /// Rows of all ranges.
         rows: Vec<TrialRow>,
     },
+    /// One propagator (or the K-matrix) over energies: Delta, Argand path, poles, conventions.
+    Amplitude {
+        /// The sheet.
+        sheet: Sheet,
+        /// Which propagator, counted from 0.
+        of: u16,
+        /// Energies, GeV.
+        grid: Grid,
+    },
+    /// |Delta| over the complex plane of sqrt(s), GeV.
+    Plane {
+        /// The sheet.
+        sheet: Sheet,
+        /// Which propagator, counted from 0.
+        of: u16,
+        /// Signs of Im q per threshold (true: +); empty: the sheet next to the real axis at M.
+        signs: Vec<bool>,
+        /// Real part.
+        re: Grid,
+        /// Imaginary part.
+        im: Grid,
+    },
+    /// |M|^2 or dsigma/dcos over the (W, cos theta) plane.
+    Image {
+        /// The sheet.
+        sheet: Sheet,
+        /// Energies, GeV.
+        w: Grid,
+        /// cos theta.
+        cos: Grid,
+        /// dsigma/dcos in nb instead of |M|^2.
+        cross_section: bool,
+    },
+    /// |M|^2 by diagram and interference along one line of that plane.
+    Slice {
+        /// The sheet.
+        sheet: Sheet,
+        /// Along which axis.
+        along: Along,
+        /// Where on the other one.
+        at: f64,
+        /// Places.
+        grid: Grid,
+    },
+    /// Partial waves of the diagrams at one energy, and where they break unitarity.
+    PartialWaves {
+        /// The sheet.
+        sheet: Sheet,
+        /// W, GeV.
+        w_gev: f64,
+        /// Range of energies of the report, GeV.
+        grid: Grid,
+    },
+    /// A mass and a width in every convention.
+    Reword {
+        /// What they mean.
+        convention: MassConvention,
+        /// Mass as typed.
+        mass: String,
+        /// Width as typed.
+        width: String,
+    },
+    /// Coupling, partial width and lifetime of a decay, from one of them.
+    Coupling {
+        /// Mass of the mediator as typed.
+        mass: String,
+        /// Into what.
+        decay: Decay,
+        /// Which one is given.
+        known: Known,
+        /// It, as typed.
+        value: String,
+    },
     /// Limits and significances over a window of masses.
     Window {
         /// The sheet.
@@ -292,6 +367,70 @@ fn unreadable(field: &str, reason: &str) -> Refusal {
         "a request of this version",
         format!("the request could not be read: {reason}"),
     )
+}
+
+/// Axis of a slice.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+#[serde(rename_all = "snake_case")]
+pub enum Along {
+    /// W in GeV, at fixed cos theta.
+    W,
+    /// cos theta, at fixed W.
+    Cos,
+}
+
+/// What a mass and a width mean.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+#[serde(rename_all = "snake_case")]
+pub enum MassConvention {
+    /// 1/(s - M^2 + i M Gamma).
+    ConstantWidth,
+    /// 1/(s - M^2 + i s Gamma/M).
+    MasslessChannels,
+    /// sqrt(s_R) = M - i Gamma/2.
+    PoleInW,
+    /// s_R = M^2 - i M Gamma.
+    PoleInS,
+}
+
+/// A two-body decay of a scalar or pseudoscalar mediator.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+#[serde(tag = "kind", rename_all = "snake_case")]
+pub enum Decay {
+    /// Dirac pair: Gamma = g^2 N M beta^3/(8 pi), pseudoscalar beta.
+    Fermions {
+        /// Couples with gamma5.
+        pseudoscalar: bool,
+        /// Mass of each, as typed.
+        m: String,
+        /// Colour factor.
+        colours: u8,
+    },
+    /// Two scalars: M Gamma = h^2 2q/(16 pi M).
+    Scalars {
+        /// Mass 1, as typed.
+        m1: String,
+        /// Mass 2, as typed.
+        m2: String,
+        /// One real field twice: half.
+        identical: bool,
+    },
+}
+
+/// Which of three numbers that say the same is given.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+#[serde(rename_all = "snake_case")]
+pub enum Known {
+    /// Coupling.
+    Coupling,
+    /// Partial width.
+    Width,
+    /// Lifetime against this decay.
+    Lifetime,
 }
 
 /// Tables that can be taken away.
@@ -369,6 +508,40 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
         Request::Trials { sheet, range } => trials::run(sheet, range, progress),
         Request::Summary { sheet, rows } => trials::merge(sheet, rows),
         Request::Window { sheet, window } => window::answer(sheet, window),
+        Request::Amplitude { sheet, of, grid } => amplitude::line(sheet, *of, grid),
+        Request::Plane {
+            sheet,
+            of,
+            signs,
+            re,
+            im,
+        } => amplitude::plane(sheet, *of, signs, re, im),
+        Request::Image {
+            sheet,
+            w,
+            cos,
+            cross_section,
+        } => amplitude::image(sheet, w, cos, *cross_section),
+        Request::Slice {
+            sheet,
+            along,
+            at,
+            grid,
+        } => amplitude::slice(sheet, *along, *at, grid),
+        Request::PartialWaves { sheet, w_gev, grid } => {
+            amplitude::partial_waves(sheet, *w_gev, grid)
+        }
+        Request::Reword {
+            convention,
+            mass,
+            width,
+        } => amplitude::reword(*convention, mass, width),
+        Request::Coupling {
+            mass,
+            decay,
+            known,
+            value,
+        } => amplitude::coupling(mass, decay, *known, value),
         Request::Curve {
             sheet,
             from_gev,

@@ -1,7 +1,7 @@
 //! Parameters of a fit by id: where their text stands in the sheet, what they measure.
 
 use crate::check;
-use crate::doc::{Coherent, Incoherent, Sheet, SpreadKind, Strength};
+use crate::doc::{Coherent, Form, Incoherent, Loop, ModelKind, Sheet, SpreadKind, Strength};
 use crate::quantity::unit::{Unit, read_unit};
 use crate::quantity::{Dimension, read};
 use widthwise_core::error::{Answer, Refusal};
@@ -79,11 +79,30 @@ type Place<'a> = (String, Dimension, Option<&'a String>);
 
 fn place<'a>(sheet: &'a Sheet, id: &str) -> Option<Place<'a>> {
     let (owner, name) = id.split_once('.').unwrap_or((id, ""));
-    if let Some(number) = owner
-        .strip_prefix('r')
-        .and_then(|n| n.parse::<usize>().ok())
+    let numbered = |prefix: char| {
+        let number = owner.strip_prefix(prefix)?.parse::<usize>().ok()?;
+        number.checked_sub(1)
+    };
+    let kind = sheet.model.hypothesis;
+    if matches!(kind, ModelKind::PartialWave | ModelKind::Waves)
+        && let Some(i) = numbered('r')
     {
-        return resonance(sheet, number.checked_sub(1)?, name);
+        return resonance(sheet, i, name);
+    }
+    match (kind, owner) {
+        (ModelKind::KMatrix, "k") => return k_constant(sheet, name),
+        (ModelKind::KMatrix, _) if owner.starts_with('k') => {
+            return k_pole(sheet, numbered('k')?, name);
+        }
+        (ModelKind::Diagrams, _) if owner.starts_with('d') => {
+            return mediator(sheet, numbered('d')?, name);
+        }
+        (ModelKind::Waves, _) if owner.starts_with('w') && name == "phase" => {
+            let i = numbered('w')?;
+            let text = sheet.model.waves.get(i)?.phase.as_ref();
+            return Some((format!("model.waves[{i}].phase"), Dimension::Angle, text));
+        }
+        _ => {}
     }
     match (owner, name) {
         ("spread", "") => {
@@ -125,6 +144,7 @@ fn resonance<'a>(sheet: &'a Sheet, index: usize, name: &str) -> Option<Place<'a>
     match (name, &r.strength) {
         ("mass", _) => energy("mass", &r.mass),
         ("width", _) => energy("width", &r.width),
+        ("strength", Strength::OneWidth { value }) => energy("strength.value", value),
         ("phase", _) => Some((format!("{path}.phase"), Dimension::Angle, r.phase.as_ref())),
         ("strength", Strength::GammaInBf { value }) => energy("strength.value", value),
         ("strength", Strength::BinBf { value }) => number("strength.value", value),
@@ -134,8 +154,71 @@ fn resonance<'a>(sheet: &'a Sheet, index: usize, name: &str) -> Option<Place<'a>
             energy("strength.gamma_in", gamma_in)
         }
         ("gamma_f", Strength::PartialWidths { gamma_f, .. }) => energy("strength.gamma_f", gamma_f),
+        _ => own_coupling(&path, r.form, (&r.flatte, &r.loops), name),
+    }
+}
+
+/// Coupling "g1", "g2", ... of a form: a Flatte channel's or a loop's.
+fn own_coupling<'a>(
+    path: &str,
+    form: Form,
+    (flatte, loops): (&'a [crate::doc::FlatteChannel], &'a [Loop]),
+    name: &str,
+) -> Option<Place<'a>> {
+    let n = name
+        .strip_prefix('g')?
+        .parse::<usize>()
+        .ok()?
+        .checked_sub(1)?;
+    match form {
+        Form::Flatte => Some((
+            format!("{path}.flatte[{n}].g_squared"),
+            Dimension::EnergySquared,
+            Some(&flatte.get(n)?.g_squared),
+        )),
+        Form::Dressed => Some(match loops.get(n)? {
+            Loop::Fermion { g, .. } => (format!("{path}.loops[{n}].g"), Dimension::Number, Some(g)),
+            Loop::Scalar { h, .. } => (format!("{path}.loops[{n}].h"), Dimension::Energy, Some(h)),
+        }),
         _ => None,
     }
+}
+
+fn k_constant<'a>(sheet: &'a Sheet, name: &str) -> Option<Place<'a>> {
+    let model = sheet.model.k_matrix.as_ref()?;
+    let text = match name {
+        "c11" => &model.c11,
+        "c12" => &model.c12,
+        "c22" => &model.c22,
+        _ => return None,
+    };
+    let field = format!("model.k_matrix.{name}");
+    Some((field, Dimension::Number, text.as_ref()))
+}
+
+fn k_pole<'a>(sheet: &'a Sheet, i: usize, name: &str) -> Option<Place<'a>> {
+    let pole = sheet.model.k_matrix.as_ref()?.poles.get(i)?;
+    let text = match name {
+        "mass" => &pole.mass,
+        "g1" => &pole.g1,
+        "g2" => &pole.g2,
+        _ => return None,
+    };
+    let field = format!("model.k_matrix.poles[{i}].{name}");
+    Some((field, Dimension::Energy, Some(text)))
+}
+
+fn mediator<'a>(sheet: &'a Sheet, i: usize, name: &str) -> Option<Place<'a>> {
+    let of = sheet.model.diagrams.as_ref()?.mediators.get(i)?;
+    let path = format!("model.diagrams.mediators[{i}]");
+    let (dimension, text) = match name {
+        "mass" => (Dimension::Energy, Some(&of.mass)),
+        "width" => (Dimension::Energy, of.width.as_ref()),
+        "g" => (Dimension::Number, Some(&of.g)),
+        "g_other" => (Dimension::Number, of.g_other.as_ref()),
+        _ => return own_coupling(&path, of.form, (&of.flatte, &of.loops), name),
+    };
+    Some((format!("{path}.{name}"), dimension, text))
 }
 
 fn coherent<'a>(background: &'a Coherent, name: &str) -> Option<Place<'a>> {
@@ -170,6 +253,9 @@ fn incoherent<'a>(background: &'a Incoherent, name: &str) -> Option<Place<'a>> {
             Dimension::CrossSection,
             Some(c0),
         )),
+        (Incoherent::Power { n, .. }, "1") => {
+            Some(("model.incoherent.n".into(), Dimension::Number, Some(n)))
+        }
         (Incoherent::Polynomial { coefficients, .. }, index) => {
             let i: u8 = index.parse().ok()?;
             let text = coefficients.get(usize::from(i))?;

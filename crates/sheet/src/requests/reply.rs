@@ -1,5 +1,6 @@
 //! Answers.
 
+use super::amplitude::{Elastic, PoleReading, Words};
 use super::judge::SoFar;
 use super::plan::{Changes, CombReading, ForecastReading};
 use super::statistics::{DerivedReading, ParameterIntervals, PointInfluence, Separated, Solution};
@@ -250,11 +251,110 @@ pub enum Body {
         /// The comb and its chance.
         reading: Box<CombReading>,
     },
+    /// One propagator; its lines over W are in the columns.
+    Amplitude {
+        /// Names of all propagators of the hypothesis.
+        names: Vec<String>,
+        /// M of this one, GeV.
+        mass_gev: f64,
+        /// Gamma(M), GeV; 0 where nothing is open, and for a K-matrix.
+        width_gev: f64,
+        /// hbar/Gamma, s.
+        lifetime_s: Option<f64>,
+        /// Below every threshold.
+        stable: bool,
+        /// Thresholds that separate sheets: (channel, W in GeV).
+        thresholds: Vec<(String, f64)>,
+        /// Signs of Im q of the sheet next to the real axis at M (true: +).
+        sheet: Vec<bool>,
+        /// Mass and width in every convention.
+        words: Vec<Words>,
+        /// Poles.
+        poles: Vec<PoleReading>,
+        /// What the search found, one sentence.
+        pole_note: String,
+        /// Unitarity of the sum beside the K-matrix, where it can be told.
+        elastic: Option<Elastic>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// An image; values row by row and both axes are in the columns.
+    Image {
+        /// Values in a row.
+        columns: u32,
+        /// Rows.
+        rows: u32,
+        /// Least value.
+        least: f64,
+        /// Largest value.
+        most: f64,
+        /// Sheet of a complex plane (signs of Im q).
+        sheet: Vec<bool>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// Along one line of the (W, cos theta) plane; numbers in the columns.
+    Slice {
+        /// 1/2 for identical particles in the final state: belongs to totals only.
+        identical_factor: f64,
+        /// Diagrams, in the order of the columns.
+        diagrams: Vec<DiagramReading>,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// Partial waves of the diagrams.
+    PartialWaves {
+        /// Waves at the energy asked for.
+        waves: Vec<WaveReading>,
+        /// Waves that leave |Re a| <= 1/2, each at its first place.
+        breaches: Vec<WaveReading>,
+        /// One plain sentence.
+        note: String,
+        /// Warnings.
+        warnings: Vec<Warning>,
+    },
+    /// The same state in other words.
+    Words {
+        /// Mass and width in every convention.
+        words: Vec<Words>,
+        /// Coupling, width, lifetime.
+        values: Vec<Named>,
+    },
     /// Text of a file.
     Text {
         /// Text.
         text: String,
     },
+}
+
+/// One diagram.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct DiagramReading {
+    /// s, t or u.
+    pub channel: String,
+    /// Mediator, or the external scalar.
+    pub mediator: String,
+    /// The line in the middle is the fermion.
+    pub fermion_exchanged: bool,
+}
+
+/// One partial wave between states of definite J and parity.
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
+#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
+pub struct WaveReading {
+    /// J.
+    pub j: String,
+    /// Incoming state.
+    pub initial: String,
+    /// Outgoing state.
+    pub outgoing: String,
+    /// Re a.
+    pub re: f64,
+    /// Im a.
+    pub im: f64,
+    /// Where it first leaves |Re a| <= 1/2, GeV.
+    pub w_gev: Option<f64>,
 }
 
 /// A number with its name and unit.

@@ -3,6 +3,7 @@
 
 mod bad_input;
 mod channels;
+mod hypotheses;
 mod judge;
 mod plan;
 mod properties;

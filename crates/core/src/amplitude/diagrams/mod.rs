@@ -140,7 +140,7 @@ impl PreparedDiagrams {
         };
         if model.mediators.is_empty() || model.mediators.len() > most {
             return Err(Refusal::new(
-                format!("{path}.mediators"),
+                format!("{path}.diagrams.mediators"),
                 model.mediators.len(),
                 format!("1 to {most}"),
                 if most == 1 {
@@ -158,7 +158,7 @@ impl PreparedDiagrams {
         let masses = prepare::check_beams(model, beams, phi)?;
         if reaction == Reaction::Compton && phi >= 2.0 * m {
             return Err(Refusal::new(
-                format!("{path}.mediators[0].mass"),
+                format!("{path}.diagrams.mediators[0].mass"),
                 phi,
                 format!("below 2 m = {} GeV", 2.0 * m),
                 "a scalar that can decay into its own fermion pair is no asymptotic state and cannot be a beam",
@@ -174,7 +174,7 @@ impl PreparedDiagrams {
                     mediator,
                     m,
                     masses,
-                    &format!("{path}.mediators[{i}]"),
+                    &format!("{path}.diagrams.mediators[{i}]"),
                 )
             })
             .collect::<Answer<Vec<_>>>()?;

@@ -63,7 +63,7 @@ pub(super) fn check_beams(model: &Diagrams, beams: &Beams, phi: f64) -> Answer<F
         && !(model.other_mass_gev.is_finite() && model.other_mass_gev >= 0.0)
     {
         return Err(Refusal::new(
-            "model.other_mass",
+            "model.diagrams.other_mass",
             model.other_mass_gev,
             "0 or more",
             "the mass of the second fermion is a number, 0 or more",
