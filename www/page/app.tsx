@@ -2,6 +2,8 @@
 import type { JSX } from "preact";
 import { useSignal } from "@preact/signals";
 import { useEffect } from "preact/hooks";
+import { Amplitude } from "./amplitude/amplitude";
+import { stage, Stages } from "./amplitude/stage";
 import { DataTable } from "./data/table";
 import { HandOver } from "./hand-over/hand-over";
 import { Bar } from "./header/bar";
@@ -39,7 +41,8 @@ export function App(): JSX.Element {
       <Stripe />
       <main class="desk" id="scan" tabIndex={-1}>
         <div class="axis">
-          <Lanes />
+          <Stages />
+          {stage.value === "amplitude" ? <Amplitude /> : <Lanes />}
           {late.value && <DataTable />}
         </div>
         {late.value && <Rooms />}

@@ -14,14 +14,20 @@ Commands
   fit      parameters, errors, correlation, pulls
   trials   pseudo-experiments of the sheet, a range of them
   plan     timetable of the hours left, forecasts, guaranteed efficiency
+  amplitude  propagators, poles and conventions; or --part plane, image, slice, waves
   rows     the data rows (with --csv: as a table)
   log      lines for an electronic log
 
 Options
-  --csv            CSV instead of JSON (curve, points, fit, rows, trials, plan)
+  --csv            CSV instead of JSON (curve, points, fit, rows, trials, plan, amplitude)
   --from 2840MeV   least W of a curve (default: the data's range)
   --to 2.89GeV     largest W of a curve
   --energies 500   number of energies of a curve
+  --part line      amplitude: line (Delta against W, poles), plane (|Delta| over complex
+                   energies), image (|M|^2 over W and cos theta), slice (by diagram along
+                   cos theta at --at W), waves (partial waves at --at W, unitarity)
+  --of 1           amplitude: which propagator
+  --at 3.1GeV      amplitude: W of a slice or of partial waves (default: the middle)
   --first 0        number of the first trial
   --count 100      how many trials
   --seed 1         seed of the trials
@@ -65,6 +71,12 @@ pub struct Options {
     pub to: Option<String>,
     /// Energies of a curve.
     pub energies: u32,
+    /// Part of the amplitude.
+    pub part: String,
+    /// Which propagator, counted from 1.
+    pub of: u16,
+    /// W of a slice as typed.
+    pub at: Option<String>,
     /// First trial.
     pub first: u64,
     /// How many trials.
@@ -77,9 +89,10 @@ pub struct Options {
     pub costs: bool,
 }
 
-const COMMANDS: [&str; 8] = [
-    "check", "curve", "points", "fit", "trials", "plan", "rows", "log",
+const COMMANDS: [&str; 9] = [
+    "check", "curve", "points", "fit", "trials", "plan", "amplitude", "rows", "log",
 ];
+const PARTS: [&str; 5] = ["line", "plane", "image", "slice", "waves"];
 
 fn usage(message: impl Into<String>) -> Failure {
     Failure {
@@ -102,6 +115,9 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
         from: None,
         to: None,
         energies: 500,
+        part: "line".into(),
+        of: 1,
+        at: None,
         first: 0,
         count: 100,
         seed: 1,
@@ -118,6 +134,9 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
             Long("from") => options.from = Some(text(&mut parser)?),
             Long("to") => options.to = Some(text(&mut parser)?),
             Long("energies") => options.energies = number(&mut parser)?,
+            Long("part") => options.part = text(&mut parser)?,
+            Long("of") => options.of = number(&mut parser)?,
+            Long("at") => options.at = Some(text(&mut parser)?),
             Long("first") => options.first = number(&mut parser)?,
             Long("count") => options.count = number(&mut parser)?,
             Long("seed") => options.seed = number(&mut parser)?,
@@ -135,6 +154,13 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
         return Err(usage(format!(
             "\"{command}\" is no command; there are {}",
             COMMANDS.join(", ")
+        )));
+    }
+    if !PARTS.contains(&options.part.as_str()) {
+        return Err(usage(format!(
+            "\"{}\" is no part of an amplitude; there are {}",
+            options.part,
+            PARTS.join(", ")
         )));
     }
     options.command = command;
@@ -178,6 +204,11 @@ mod tests {
             ("curve", true, 50)
         );
         assert_eq!(options.from.as_deref(), Some("2.87GeV"));
+        let Job::Run(options) = parsed("amplitude s.json --part waves --of 2 --at 3GeV").unwrap()
+        else {
+            panic!("help");
+        };
+        assert_eq!((options.part.as_str(), options.of), ("waves", 2));
         assert_eq!(parsed("--help").unwrap(), Job::Help);
         assert_eq!(parsed("").unwrap(), Job::Help);
         for wrong in [
@@ -186,6 +217,7 @@ mod tests {
             "fit a b",
             "curve s.json --energies many",
             "fit s.json --what",
+            "amplitude s.json --part whole",
         ] {
             assert_eq!(parsed(wrong).unwrap_err().exit, 2, "{wrong}");
         }

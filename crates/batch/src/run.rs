@@ -8,7 +8,7 @@ use widthwise_core::trials::{Ensemble, TrialSettings, summarise};
 use widthwise_sheet::doc::Sheet;
 use widthwise_sheet::quantity::{Dimension, read};
 use widthwise_sheet::requests::{
-    Body, Column, Reply, Request, Table, answer, csv_of, energy_range, fit_settings,
+    Along, Body, Column, Grid, Reply, Request, Table, answer, csv_of, energy_range, fit_settings,
 };
 use widthwise_sheet::table::write;
 use widthwise_sheet::{check, json as file};
@@ -106,13 +106,73 @@ fn request(command: &str, sheet: Sheet, options: &Options) -> Result<Request, Fa
                 (Some(_), Some(_)) => (0.0, 0.0),
                 _ => energy_range(&sheet).map_err(|r| refused(&r))?,
             };
+            let from_gev = energy("--from", options.from.as_ref(), low)?;
+            let to_gev = energy("--to", options.to.as_ref(), high)?;
+            if command == "amplitude" {
+                return amplitude(sheet, options, (from_gev, to_gev));
+            }
             Request::Curve {
-                from_gev: energy("--from", options.from.as_ref(), low)?,
-                to_gev: energy("--to", options.to.as_ref(), high)?,
+                from_gev,
+                to_gev,
                 points: options.energies,
                 sheet,
             }
         }
+    })
+}
+
+/// Places of an angle or of an imaginary part.
+const SIDE: u32 = 101;
+
+fn amplitude(sheet: Sheet, options: &Options, (from, to): (f64, f64)) -> Result<Request, Failure> {
+    let energies = Grid {
+        from,
+        to,
+        places: options.energies,
+    };
+    let grid = |from: f64, to: f64| Grid {
+        from,
+        to,
+        places: SIDE,
+    };
+    let w_gev = energy("--at", options.at.as_ref(), 0.5 * (from + to))?;
+    let of = options.of.checked_sub(1).ok_or_else(|| Failure {
+        exit: 2,
+        message: "--of counts from 1".into(),
+    })?;
+    Ok(match options.part.as_str() {
+        "plane" => Request::Plane {
+            sheet,
+            of,
+            signs: Vec::new(),
+            re: energies,
+            im: grid(-0.5 * (to - from), 0.5 * (to - from)),
+        },
+        "image" => Request::Image {
+            sheet,
+            w: energies,
+            cos: grid(-1.0, 1.0),
+            cross_section: true,
+        },
+        "slice" => Request::Slice {
+            sheet,
+            along: Along::Cos,
+            at: w_gev,
+            grid: grid(-1.0, 1.0),
+        },
+        "waves" => Request::PartialWaves {
+            sheet,
+            w_gev,
+            grid: Grid {
+                places: options.energies.min(100),
+                ..energies
+            },
+        },
+        _ => Request::Amplitude {
+            sheet,
+            of,
+            grid: energies,
+        },
     })
 }
 

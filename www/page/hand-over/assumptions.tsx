@@ -22,7 +22,15 @@ export function Assumptions(): JSX.Element {
 
 const ARRANGEMENTS = { equal_beams: "two beams dialled alike", unequal_beams: "beam 1 dialled, beam 2 fixed", fixed_target: "beam on a target at rest" };
 const STAGES = { observed: "as observed", radiation_removed: "radiation removed", born: "radiation and spread removed" };
-const FORMS = { constant_width: "constant width", massless_channels: "massless channels", running_width: "running width" };
+const FORMS = {
+  constant_width: "constant width",
+  massless_channels: "massless channels",
+  running_width: "running width",
+  flatte: "Flatté",
+  gounaris_sakurai: "Gounaris–Sakurai",
+  dressed: "dressed by loops",
+  free: "free",
+};
 
 /** Name and text of each assumption. */
 export function assumptionsOf(now: Sheet): [string, string][] {
@@ -32,13 +40,24 @@ export function assumptionsOf(now: Sheet): [string, string][] {
     ["Spread", spreadOf(beam.spread)],
     ["Luminosity", beam.luminosity || "not given"],
   ];
-  model.resonances.forEach((resonance, i) => {
+  const kind = model.hypothesis ?? "partial_wave";
+  if (kind !== "partial_wave") found.push(["Hypothesis", kind.replace("_", "-")]);
+  if (kind === "diagrams" && model.diagrams) {
+    found.push(["Reaction", model.diagrams.reaction.replace(/_/g, " ")]);
+    for (const { name, pseudoscalar, mass, width, form, g, g_other } of model.diagrams.mediators) {
+      found.push([name, `${pseudoscalar ? "pseudoscalar" : "scalar"}, ${mass}, ${width ? `${width}, ` : ""}${FORMS[form]}, g ${g}${g_other ? `, g_F ${g_other}` : ""}`]);
+    }
+  }
+  if (kind === "k_matrix") model.k_matrix?.poles.forEach((pole, i) => found.push([`Bare pole ${i + 1}`, `${pole.mass}, couplings ${pole.g1} and ${pole.g2}`]));
+  if (kind === "waves") model.waves?.forEach((wave, i) => found.push([`Wave ${i + 1}`, `J = ${wave.j}${wave.pc ? `, PC = ${wave.pc}` : ""}${wave.phase ? `, phase ${wave.phase}` : ""}`]));
+  if (model.cos_cut) found.push(["Cut", `|cos θ| below ${model.cos_cut}`]);
+  (kind === "partial_wave" || kind === "waves" ? model.resonances : []).forEach((resonance, i) => {
     const strength = Object.entries(resonance.strength)
       .filter(([key]) => key !== "kind")
       .map(([, text]) => text)
       .join(", ");
     const phase = i === 0 ? "" : `, phase ${resonance.phase || "0"}`;
-    found.push([resonance.name, `${resonance.mass}, ${resonance.width}, ${FORMS[resonance.form]}, strength ${strength}${phase}`]);
+    found.push([resonance.name, `${resonance.mass}, ${resonance.width ? `${resonance.width}, ` : ""}${FORMS[resonance.form]}${strength ? `, strength ${strength}` : ""}${phase}`]);
   });
   if (model.coherent) found.push(["Coherent background", listed(model.coherent)]);
   if (model.incoherent) found.push(["Incoherent background", listed(model.incoherent)]);

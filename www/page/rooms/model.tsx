@@ -3,6 +3,11 @@ import type { JSX } from "preact";
 import { Icon } from "../parts/icon";
 import { Choice, Field, Switch } from "../parts/field";
 import { around, Slider, within } from "../parts/slider";
+import { DiagramFields, CosCut } from "../model/diagrams";
+import { choose, KINDS, kindOf } from "../model/kinds";
+import { KMatrixFields } from "../model/k-matrix";
+import { WaveFields } from "../model/waves";
+import { stage } from "../amplitude/stage";
 import { change, setField, sheet } from "../state/sheet";
 import type { Coherent, Incoherent, Resonance } from "../state/types";
 import { ResonanceCard } from "./resonance";
@@ -12,25 +17,51 @@ type IncoherentKind = "none" | Incoherent["kind"];
 
 /** The room. */
 export function ModelRoom(): JSX.Element {
-  const { resonances, radiation } = sheet.value.model;
+  const { resonances, radiation, k_matrix, diagrams, waves } = sheet.value.model;
+  const kind = kindOf(sheet.value);
+  const summed = kind === "partial_wave" || kind === "waves";
   return (
     <>
-      {resonances.map((resonance, i) => (
-        <ResonanceCard key={i} index={i} resonance={resonance} only={resonances.length === 1} />
-      ))}
-      <p>
-        <button type="button" class="button" onClick={addResonance}>
-          <Icon name="plus" /> Add a resonance
-        </button>
-      </p>
-      <CoherentFields />
+      <div class="fields">
+        <Choice wide label="Hypothesis" value={kind} options={KINDS} onChange={choose} />
+      </div>
+      {stage.value === "scan" && (
+        <p>
+          <button type="button" class="button" onClick={() => (stage.value = "amplitude")}>
+            Show the amplitude and its poles
+          </button>
+        </p>
+      )}
+      {kind === "k_matrix" && k_matrix && <KMatrixFields model={k_matrix} />}
+      {kind === "diagrams" && diagrams && <DiagramFields model={diagrams} />}
+      {kind === "waves" && (
+        <>
+          <WaveFields waves={waves ?? []} />
+          <div class="fields">
+            <CosCut />
+          </div>
+        </>
+      )}
+      {summed && (
+        <>
+          {resonances.map((resonance, i) => (
+            <ResonanceCard key={i} index={i} resonance={resonance} only={resonances.length === 1} />
+          ))}
+          <p>
+            <button type="button" class="button" onClick={addResonance}>
+              <Icon name="plus" /> Add a resonance
+            </button>
+          </p>
+          <CoherentFields />
+        </>
+      )}
       <IncoherentFields />
       <fieldset>
         <legend>Final state and radiation</legend>
         <div class="fields">
           <Field path="model.final_state" label="Final state" example="hadrons" />
           <Field optional path="model.final_threshold" label="Its threshold" example="279.2 MeV" />
-          <Field path="model.j" label={<span>Spin <span class="sym">J</span> of the wave</span>} name="spin of the wave" example="1" />
+          {kind === "partial_wave" && <Field path="model.j" label={<span>Spin <span class="sym">J</span> of the wave</span>} name="spin of the wave" example="1" />}
           <Field optional path="model.accuracy" label="Relative accuracy" example="1e-6" />
           <div class="field field-wide">
             <Switch label="Initial-state radiation" on={radiation.on} onChange={(on) => setField("model.radiation.on", on, "radiation")} />

@@ -1,23 +1,22 @@
 /** One resonance: mass, width, strength, phase on sliders; form, vertices and channels below. */
 import type { JSX } from "preact";
-import { Choice, Field } from "../parts/field";
+import { Choice, Field, Switch } from "../parts/field";
 import { around, Slider, within } from "../parts/slider";
 import { Sym } from "../parts/sym";
 import { typed, unitOf } from "../format/typed";
-import { change, setField } from "../state/sheet";
-import type { Channel, Form, Resonance, Shape, Strength, Vertex } from "../state/types";
-
-const FORMS = [
-  ["constant_width", "Constant width"],
-  ["massless_channels", "Massless channels, Γ·s/M²"],
-  ["running_width", "Running width"],
-] as const satisfies readonly (readonly [Form, string])[];
+import { chooseForm, FORMS, FormFields, TwoBodies, widthFollows } from "../model/forms";
+import { kindOf } from "../model/kinds";
+import { WaveOf } from "../model/waves";
+import { change, setField, sheet } from "../state/sheet";
+import type { Resonance, Strength, Vertex } from "../state/types";
 
 const STRENGTHS = [
   ["gamma_in_bf", "Γin · Bf"],
   ["bin_bf", "Bin · Bf"],
   ["branchings", "Bin and Bf"],
   ["partial_widths", "Γin and Γf"],
+  ["one_width", "One width, the other from the form"],
+  ["from_form", "Both from the form's couplings"],
 ] as const satisfies readonly (readonly [Strength["kind"], string])[];
 
 type VertexKind = "default" | Vertex["kind"];
@@ -27,14 +26,8 @@ const VERTICES = [
   ["one_photon", "One photon, M²/s"],
   ["massless", "Massless, s/M²"],
   ["running", "Running, two bodies"],
+  ["own", "A channel of the form"],
 ] as const satisfies readonly (readonly [VertexKind, string])[];
-
-const SHAPES = [
-  ["constant", "Constant"],
-  ["massless", "Massless, s/M²"],
-  ["two_body", "Two bodies"],
-  ["tabulated", "Tabulated"],
-] as const satisfies readonly (readonly [Shape["kind"], string])[];
 
 /** The card of one resonance. */
 export function ResonanceCard(props: { index: number; resonance: Resonance; only: boolean }): JSX.Element {
@@ -49,7 +42,7 @@ export function ResonanceCard(props: { index: number; resonance: Resonance; only
       <legend>{who}</legend>
       <div class="fields">
         <Field path={`${path}.name`} label="Name" />
-        <Choice label="Form" value={resonance.form} options={FORMS} onChange={(form) => setField(`${path}.form`, form, `form of ${who}`)} />
+        <Choice label="Form" value={resonance.form} options={FORMS} onChange={(form) => chooseForm(path, resonance, form)} />
         <div class="with-slider">
           <Field path={`${path}.mass`} label={<span>Mass <span class="sym">M</span></span>} name={`mass of ${who}`} />
           <Slider
@@ -62,10 +55,18 @@ export function ResonanceCard(props: { index: number; resonance: Resonance; only
             }}
           />
         </div>
-        <div class="with-slider">
-          <Field path={`${path}.width`} label={<span>Width <span class="sym">Γ</span></span>} name={`width of ${who}`} />
-          <Slider path={`${path}.width`} name={`Width of ${who}`} reach={around(5)} />
-        </div>
+        {!widthFollows(resonance.form) && (
+          <div class="with-slider">
+            <Field path={`${path}.width`} label={<span>Width <span class="sym">Γ</span></span>} name={`width of ${who}`} />
+            <Slider path={`${path}.width`} name={`Width of ${who}`} reach={around(5)} />
+          </div>
+        )}
+        {resonance.form === "dressed" && (
+          <div class="field">
+            <Switch label="Pseudoscalar (γ₅)" on={resonance.pseudoscalar === true} onChange={(on) => setField(`${path}.pseudoscalar`, on || undefined, `parity of ${who}`)} />
+          </div>
+        )}
+        {kindOf(sheet.value) === "waves" && <WaveOf index={index} />}
         <StrengthFields path={`${path}.strength`} strength={resonance.strength} who={who} />
         {index > 0 && (
           <div class="with-slider">
@@ -74,7 +75,7 @@ export function ResonanceCard(props: { index: number; resonance: Resonance; only
           </div>
         )}
       </div>
-      {resonance.form === "running_width" && <Channels path={`${path}.channels`} list={resonance.channels ?? []} />}
+      <FormFields path={path} of={resonance} />
       <details>
         <summary>Vertices{resonance.entrance || resonance.exit ? ", chosen" : ""}</summary>
         <div class="fields">
@@ -99,13 +100,17 @@ function StrengthFields({ path, strength, who }: { path: string; strength: Stren
     bin_bf: () => ({ kind: "bin_bf", value: "1e-6" }),
     branchings: () => ({ kind: "branchings", b_in: "1e-4", b_f: "10 %" }),
     partial_widths: () => ({ kind: "partial_widths", gamma_in: "1 keV", gamma_f: "0.1 MeV" }),
+    one_width: () => ({ kind: "one_width", value: "1 keV" }),
+    from_form: () => ({ kind: "from_form" }),
   };
   const texts: [string, string][] =
     strength.kind === "branchings"
       ? [["b_in", "B_in"], ["b_f", "B_f"]]
       : strength.kind === "partial_widths"
         ? [["gamma_in", "Γ_in"], ["gamma_f", "Γ_f"]]
-        : [["value", strength.kind === "bin_bf" ? "B_in·B_f" : "Γ_in·B_f"]];
+        : strength.kind === "from_form"
+          ? []
+          : [["value", strength.kind === "one_width" ? "Γ" : strength.kind === "bin_bf" ? "B_in·B_f" : "Γ_in·B_f"]];
   return (
     <>
       <Choice label="Strength given as" value={strength.kind} options={STRENGTHS} onChange={(kind) => setField(path, make[kind](), `strength of ${who}`)} />
@@ -125,54 +130,15 @@ function VertexFields({ path, label, vertex }: { path: string; label: string; ve
     constant: () => ({ kind: "constant" }),
     one_photon: () => ({ kind: "one_photon" }),
     massless: () => ({ kind: "massless" }),
+    own: () => ({ kind: "own", channel: 1 }),
     running: () => ({ kind: "running", m1: "139.570 MeV", m2: "139.570 MeV", l: 1 }),
   };
   return (
     <>
       <Choice<VertexKind> wide label={label} value={vertex?.kind ?? "default"} options={VERTICES} onChange={(kind) => setField(path, make[kind](), `${label.toLowerCase()} vertex`)} />
       {vertex?.kind === "running" && <TwoBodies path={path} l={vertex.l} />}
+      {vertex?.kind === "own" && <Choice label="Channel or loop" value={String(vertex.channel)} options={["1", "2", "3", "4"].map((n) => [n, n] as const)} onChange={(n) => setField(`${path}.channel`, Number(n), "channel of a vertex")} />}
     </>
-  );
-}
-
-function TwoBodies({ path, l }: { path: string; l: number }): JSX.Element {
-  return (
-    <>
-      <Field path={`${path}.m1`} label="Mass 1" />
-      <Field path={`${path}.m2`} label="Mass 2" />
-      <Choice label="Orbital momentum l" value={String(l)} options={[["0", "0"], ["1", "1"], ["2", "2"], ["3", "3"], ["4", "4"]]} onChange={(value) => setField(`${path}.l`, Number(value), "orbital momentum")} />
-      <Field optional path={`${path}.radius`} label="Barrier radius" example="none" />
-    </>
-  );
-}
-
-function Channels({ path, list }: { path: string; list: readonly Channel[] }): JSX.Element {
-  const make: Record<Shape["kind"], () => Shape> = {
-    constant: () => ({ kind: "constant" }),
-    massless: () => ({ kind: "massless" }),
-    two_body: () => ({ kind: "two_body", m1: "139.570 MeV", m2: "139.570 MeV", l: 1 }),
-    tabulated: () => ({ kind: "tabulated", rows: [] }),
-  };
-  return (
-    <div class="channels">
-      <h3>Width channels</h3>
-      {list.map((channel, i) => (
-        <div class="fields channel" key={i}>
-          <Field path={`${path}[${i}].name`} label="Channel" />
-          <Field path={`${path}[${i}].fraction`} label="Share of Γ at M" example="50 %" />
-          <Choice label="Runs as" value={channel.shape.kind} options={SHAPES} onChange={(kind) => setField(`${path}[${i}].shape`, make[kind](), "shape of a channel")} />
-          {channel.shape.kind === "two_body" && <TwoBodies path={`${path}[${i}].shape`} l={channel.shape.l} />}
-          <div class="field field-buttons">
-            <button type="button" class="link" onClick={() => setField(path, list.filter((_, j) => j !== i), "remove a channel")}>
-              Remove {channel.name || `channel ${i + 1}`}
-            </button>
-          </div>
-        </div>
-      ))}
-      <button type="button" class="button" onClick={() => setField(path, [...list, { name: `channel ${list.length + 1}`, fraction: list.length === 0 ? "100 %" : "0 %", shape: { kind: "constant" } } satisfies Channel], "add a channel")}>
-        Add a channel
-      </button>
-    </div>
   );
 }
 

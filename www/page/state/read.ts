@@ -123,14 +123,22 @@ const ALONE = 1.2;
 function energiesOf(sheet: Sheet, read: readonly answers.PointView[]): number[] {
   const energies = read.map((point) => point.w).sort((a, b) => a - b);
   if (energies.length >= 2 && energies[0] !== energies.at(-1)) return energies;
-  for (const resonance of sheet.model.resonances) {
-    const mass = gev(resonance.mass);
-    const width = gev(resonance.width) ?? 0;
+  for (const { mass: typedMass, width: typedWidth } of states(sheet)) {
+    const mass = gev(typedMass);
+    const width = gev(typedWidth ?? "") ?? 0.05 * (mass ?? 0);
     if (mass === null) continue;
     const reach = Math.max(8 * width, 1.5e-3 * mass);
     energies.push(mass - reach, mass + reach);
   }
   return energies.sort((a, b) => a - b);
+}
+
+/** Masses and widths of what the hypothesis is made of. */
+function states(sheet: Sheet): readonly { mass: string; width?: string | null | undefined }[] {
+  const { hypothesis, diagrams, k_matrix, resonances } = sheet.model;
+  if (hypothesis === "diagrams") return diagrams?.mediators ?? [];
+  if (hypothesis === "k_matrix") return k_matrix?.poles.map(({ mass }) => ({ mass })) ?? [];
+  return resonances;
 }
 
 /** Leaves out one point at each end if it lies far off on its own. */

@@ -7,6 +7,18 @@ import type { Channel as WholeChannel } from "../../shared/generated/Channel";
 import type { Coherent as WholeCoherent } from "../../shared/generated/Coherent";
 import type { Data as WholeData } from "../../shared/generated/Data";
 import type { Incoherent as WholeIncoherent } from "../../shared/generated/Incoherent";
+import type { Couplings as WholeCouplings } from "../../shared/generated/Couplings";
+import type { Diagrams as WholeDiagrams } from "../../shared/generated/Diagrams";
+import type { Decay as WholeDecay } from "../../shared/generated/Decay";
+import type { FlatteChannel as WholeFlatteChannel } from "../../shared/generated/FlatteChannel";
+import type { HelicityTerm as WholeHelicityTerm } from "../../shared/generated/HelicityTerm";
+import type { KMatrix as WholeKMatrix } from "../../shared/generated/KMatrix";
+import type { Loop as WholeLoop } from "../../shared/generated/Loop";
+import type { LsTerm as WholeLsTerm } from "../../shared/generated/LsTerm";
+import type { Mediator as WholeMediator } from "../../shared/generated/Mediator";
+import type { Wave as WholeWave } from "../../shared/generated/Wave";
+import type { PoleReading as WholePoleReading } from "../../shared/generated/PoleReading";
+import type { WaveReading as WholeWaveReading } from "../../shared/generated/WaveReading";
 import type { Request as WholeRequest } from "../../shared/generated/Request";
 import type { Resonance as WholeResonance } from "../../shared/generated/Resonance";
 import type { Row as WholeRow } from "../../shared/generated/Row";
@@ -33,7 +45,12 @@ type LeftOut =
   | "constraints"
   | "left_out"
   | "running"
-  | "comment";
+  | "comment"
+  | "hypothesis"
+  | "waves"
+  | "flatte"
+  | "loops"
+  | "pseudoscalar";
 
 type MayBeAbsent<T, K extends keyof T> = null extends T[K] ? K : K extends LeftOut ? K : never;
 
@@ -54,6 +71,18 @@ export type Channel = Loose<WholeChannel>;
 export type Coherent = Loose<WholeCoherent>;
 export type Data = Loose<WholeData>;
 export type Incoherent = Loose<WholeIncoherent>;
+export type Couplings = Loose<WholeCouplings>;
+export type Diagrams = Loose<WholeDiagrams>;
+export type Decay = Loose<WholeDecay>;
+export type FlatteChannel = Loose<WholeFlatteChannel>;
+export type HelicityTerm = Loose<WholeHelicityTerm>;
+export type KMatrix = Loose<WholeKMatrix>;
+export type Loop = Loose<WholeLoop>;
+export type LsTerm = Loose<WholeLsTerm>;
+export type Mediator = Loose<WholeMediator>;
+export type Wave = Loose<WholeWave>;
+export type PoleReading = Loose<WholePoleReading>;
+export type WaveReading = Loose<WholeWaveReading>;
 export type Request = Loose<WholeRequest>;
 export type Resonance = Loose<WholeResonance>;
 export type Row = Loose<WholeRow>;
@@ -68,6 +97,12 @@ export type { Form } from "../../shared/generated/Form";
 export type { KnownLimit } from "../../shared/generated/KnownLimit";
 export type { KnownParticle } from "../../shared/generated/KnownParticle";
 export type { Named } from "../../shared/generated/Named";
+export type { Known } from "../../shared/generated/Known";
+export type { ModelKind } from "../../shared/generated/ModelKind";
+export type { Reaction } from "../../shared/generated/Reaction";
+export type { MassConvention } from "../../shared/generated/MassConvention";
+export type { DiagramReading } from "../../shared/generated/DiagramReading";
+export type { Words } from "../../shared/generated/Words";
 export type { Refusal } from "../../shared/generated/Refusal";
 export type { SpreadKind } from "../../shared/generated/SpreadKind";
 export type { Table } from "../../shared/generated/Table";

@@ -123,7 +123,7 @@ function same(before: readonly object[], now: readonly object[]): boolean {
  * A curve needs no rows; leaving them at home keeps a drag quick with ten thousand of them. One stays: the unit in
  * which its setting was typed is the unit of the number to dial.
  */
-function withoutRows(now: Sheet): Sheet {
+export function withoutRows(now: Sheet): Sheet {
   const { covariance: _, ...data } = now.data;
   return { ...now, data: { ...data, rows: now.data.rows.filter((row) => row.setting).slice(0, 1) } };
 }

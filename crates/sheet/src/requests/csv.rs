@@ -43,9 +43,29 @@ pub fn csv_of(reply: &Reply) -> Answer<String> {
             Ok(text)
         }
         Body::Plan { plan, dial, .. } => Ok(timetable(&plan.rows, dial)),
+        Body::Image { .. } => Ok(write::columns(&long(&reply.columns))),
         _ if !reply.columns.is_empty() => Ok(write::columns(&reply.columns)),
         _ => Err(Refusal::new("", "", "", "this answer is no table")),
     }
+}
+
+/// An image as a long table: each place of the grid with its value.
+fn long(columns: &[Column]) -> Vec<Column> {
+    let [values, x, y] = columns else {
+        return columns.to_vec();
+    };
+    let column = |of: &Column, values: Vec<f64>| Column {
+        values,
+        ..of.clone()
+    };
+    let n = x.values.len();
+    let across = x.values.iter().copied().cycle();
+    let down = y.values.iter().flat_map(|y| core::iter::repeat_n(*y, n));
+    vec![
+        column(x, across.take(values.values.len()).collect()),
+        column(y, down.collect()),
+        values.clone(),
+    ]
 }
 
 /// The timetable of a plan, with the number to dial as text beside each row.
