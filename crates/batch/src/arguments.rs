@@ -90,7 +90,15 @@ pub struct Options {
 }
 
 const COMMANDS: [&str; 9] = [
-    "check", "curve", "points", "fit", "trials", "plan", "amplitude", "rows", "log",
+    "check",
+    "curve",
+    "points",
+    "fit",
+    "trials",
+    "plan",
+    "amplitude",
+    "rows",
+    "log",
 ];
 const PARTS: [&str; 5] = ["line", "plane", "image", "slice", "waves"];
 

@@ -136,7 +136,13 @@ fn keep_known(w: &mut Vec<f64>, propagator: &Propagator, warnings: &mut Vec<Warn
             format!("The tabulated width ends at {last} GeV: beyond it the propagator is not known and not shown."),
         ));
     }
-    let on_shell = |w: &f64| propagator.delta_per_gev2(Energy::at(*w)).err();
+    let mass = propagator.mass_gev();
+    let on_shell = |w: &f64| {
+        // A place that is M but for rounding has no value either.
+        let near = (w - mass).abs() <= 1e-12 * mass;
+        let w = if near { mass } else { *w };
+        propagator.delta_per_gev2(Energy::at(w)).err()
+    };
     if let Some(refusal) = w.iter().find_map(on_shell) {
         w.retain(|w| on_shell(w).is_none());
         warnings.push(Warning::new("on-shell", refusal.message));
