@@ -6,9 +6,8 @@ import { Choice } from "../parts/field";
 import { Quantity } from "../parts/quantity";
 import { textAt } from "../state/path";
 import { setField, sheet } from "../state/sheet";
-import { particles } from "../state/tables";
-import type { Decay, Known, Named } from "../state/types";
-import { ask } from "../state/work";
+import type { Given, Named, Request } from "../state/types";
+import { ask, withoutRows } from "../state/work";
 
 interface DoorsProps {
   mass: string;
@@ -17,12 +16,10 @@ interface DoorsProps {
   into: readonly (readonly [string, string, string])[];
 }
 
-/** Mass of beam 1 as a text. */
-function beamMass(): string {
+/** Beam 1 as a particle of the table, or its mass. */
+function beam(): string {
   const { name, mass } = sheet.value.beam.first;
-  if (mass) return mass;
-  const known = particles.value.find((particle) => particle.name === name);
-  return known === undefined ? "" : `${known.mass_gev} GeV`;
+  return mass || name;
 }
 
 /** One line per decay: g, Γ and τ, any of which may be typed. */
@@ -31,7 +28,7 @@ export function Doors({ mass, pseudoscalar, into }: DoorsProps): JSX.Element {
     <details class="doors-of">
       <summary>Couplings as widths and lifetimes</summary>
       {into.map(([name, m, path]) => (
-        <Door key={path} name={name} mass={mass} decay={{ kind: "fermions", pseudoscalar, m: m || beamMass(), colours: 1 }} path={path} />
+        <Door key={path} name={name} mass={mass} pseudoscalar={pseudoscalar} fermion={m || beam()} path={path} />
       ))}
     </details>
   );
@@ -40,20 +37,21 @@ export function Doors({ mass, pseudoscalar, into }: DoorsProps): JSX.Element {
 const KNOWN = [
   ["width", "Partial width"],
   ["lifetime", "Lifetime"],
-] as const satisfies readonly (readonly [Known, string])[];
+] as const satisfies readonly (readonly [Given, string])[];
 
-function Door({ name, mass, decay, path }: { name: string; mass: string; decay: Decay; path: string }): JSX.Element {
+function Door({ name, mass, pseudoscalar, fermion, path }: { name: string; mass: string; pseudoscalar: boolean; fermion: string; path: string }): JSX.Element {
   const told = useSignal<readonly Named[]>([]);
   const why = useSignal("");
-  const known = useSignal<Known>("width");
+  const known = useSignal<Given>("width");
   const typed = useSignal("");
   const g = textAt(sheet.value, path);
-  const key = JSON.stringify([mass, decay, g]);
+  const key = JSON.stringify([mass, pseudoscalar, fermion, g]);
+  const request = (given: Given, value: string): Request => ({ kind: "look_up", sheet: withoutRows(sheet.peek()), what: { of: "coupling", pseudoscalar, mass, fermion, colours: 1, given, value } });
   useEffect(() => {
     let off = false;
-    ask({ kind: "coupling", mass, decay, known: "coupling", value: g.replace(/\(.*?\)/, "") }).then(
+    ask(request("coupling", g.replace(/\(.*?\)/, "").replace(/^-/, ""))).then(
       ({ body }) => {
-        if (off || body.kind !== "words") return;
+        if (off || body.kind !== "looked_up") return;
         told.value = body.values;
         why.value = "";
       },
@@ -68,9 +66,9 @@ function Door({ name, mass, decay, path }: { name: string; mass: string; decay: 
     };
   }, [key]);
   const take = (): void => {
-    ask({ kind: "coupling", mass, decay, known: known.value, value: typed.value }).then(
+    ask(request(known.value, typed.value)).then(
       ({ body }) => {
-        const found = body.kind === "words" ? body.values[0] : undefined;
+        const found = body.kind === "looked_up" ? body.values[0] : undefined;
         if (found !== undefined) setField(path, found.text, `coupling to ${name}`);
       },
       (reason: unknown) => (why.value = messageOf(reason)),
@@ -81,11 +79,11 @@ function Door({ name, mass, decay, path }: { name: string; mass: string; decay: 
       <p>
         {name}:{" "}
         {told.value
-          .filter((value) => value.name !== "coupling g" && value.name !== "width per squared coupling")
+          .filter((value) => value.name !== "coupling g")
           .map((value, i) => (
             <span key={value.name}>
               {i > 0 && ", "}
-              {value.name === "partial width" ? "Γ = " : value.name === "lifetime" ? "τ = " : ""}
+              {value.name === "width" ? "Γ = " : value.name === "lifetime" ? "τ = " : ""}
               <Quantity text={value.text} />
             </span>
           ))}

@@ -321,17 +321,6 @@ pub enum Request {
         /// Width as typed.
         width: String,
     },
-    /// Coupling, partial width and lifetime of a decay, from one of them.
-    Coupling {
-        /// Mass of the mediator as typed.
-        mass: String,
-        /// Into what.
-        decay: Decay,
-        /// Which one is given.
-        known: Known,
-        /// It, as typed.
-        value: String,
-    },
     /// Limits and significances over a window of masses.
     Window {
         /// The sheet.
@@ -393,44 +382,6 @@ pub enum MassConvention {
     PoleInW,
     /// s_R = M^2 - i M Gamma.
     PoleInS,
-}
-
-/// A two-body decay of a scalar or pseudoscalar mediator.
-#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
-#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
-#[serde(tag = "kind", rename_all = "snake_case")]
-pub enum Decay {
-    /// Dirac pair: Gamma = g^2 N M beta^3/(8 pi), pseudoscalar beta.
-    Fermions {
-        /// Couples with gamma5.
-        pseudoscalar: bool,
-        /// Mass of each, as typed.
-        m: String,
-        /// Colour factor.
-        colours: u8,
-    },
-    /// Two scalars: M Gamma = h^2 2q/(16 pi M).
-    Scalars {
-        /// Mass 1, as typed.
-        m1: String,
-        /// Mass 2, as typed.
-        m2: String,
-        /// One real field twice: half.
-        identical: bool,
-    },
-}
-
-/// Which of three numbers that say the same is given.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
-#[cfg_attr(feature = "typescript", derive(ts_rs::TS))]
-#[serde(rename_all = "snake_case")]
-pub enum Known {
-    /// Coupling.
-    Coupling,
-    /// Partial width.
-    Width,
-    /// Lifetime against this decay.
-    Lifetime,
 }
 
 /// Tables that can be taken away.
@@ -536,12 +487,6 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
             mass,
             width,
         } => amplitude::reword(*convention, mass, width),
-        Request::Coupling {
-            mass,
-            decay,
-            known,
-            value,
-        } => amplitude::coupling(mass, decay, *known, value),
         Request::Curve {
             sheet,
             from_gev,

@@ -297,34 +297,27 @@ fn unitarity_report_of_the_diagrams() {
 }
 
 #[test]
-fn coupling_width_and_lifetime_are_one_thing() {
-    let ask = |decay: Value, known: &str, mass: &str, value: &str| {
-        let request = json!({ "kind": "coupling", "mass": mass, "decay": decay, "known": known, "value": value });
-        answer(&Request::read(request).unwrap(), &mut |_, _| ()).map(|reply| match reply.body {
-            Body::Words { values, .. } => values,
-            other => panic!("{other:?}"),
-        })
+fn what_no_convention_can_write_is_refused() {
+    let reword = |convention: &str, width: &str| {
+        let request =
+            json!({ "kind": "reword", "convention": convention, "mass": "1 GeV", "width": width });
+        answer(&Request::read(request).unwrap(), &mut |_, _| ())
     };
-    // Invented scenario C: g = 4.0e-4 to the muon at 47.3042 GeV is 0.301 keV.
-    let muons =
-        json!({ "kind": "fermions", "pseudoscalar": false, "m": "105.6583755 MeV", "colours": 1 });
-    let from_g = ask(muons.clone(), "coupling", "47.3042 GeV", "4.0e-4").unwrap();
-    assert!((from_g[1].value * 1e6 - 0.301).abs() < 5e-4);
-    let seconds = from_g.iter().find(|v| v.name == "lifetime").unwrap().value;
-    for (known, text) in [
-        ("width", format!("{} GeV", from_g[1].value)),
-        ("lifetime", format!("{seconds} s")),
-    ] {
-        let back = ask(muons.clone(), known, "47.3042 GeV", &text).unwrap();
-        assert!((back[0].value / 4.0e-4 - 1.0).abs() < 1e-12, "{known}");
-    }
-    // Below threshold: stable, and no coupling makes a width.
-    let closed = ask(muons.clone(), "coupling", "0.2 GeV", "0.3").unwrap();
-    assert!(closed.iter().any(|v| v.name == "stable"));
-    let refused = ask(muons, "width", "0.2 GeV", "1 keV").unwrap_err();
-    assert!(refused.message.contains("stable"));
-    let reword =
-        json!({ "kind": "reword", "convention": "pole_in_w", "mass": "1 GeV", "width": "3 GeV" });
-    let refused = answer(&Request::read(reword).unwrap(), &mut |_, _| ()).unwrap_err();
+    let refused = reword("pole_in_w", "3 GeV").unwrap_err();
     assert!(refused.message.contains("wide"), "{}", refused.message);
+    match reword("pole_in_s", "0.1 GeV").unwrap().body {
+        Body::Words { words, values } => {
+            assert_eq!(words.len(), 4);
+            assert!((values[0].value - 6.582_119_569_509e-24).abs() < 1e-29);
+        }
+        other => panic!("{other:?}"),
+    }
+}
+
+#[test]
+fn a_coupling_makes_no_width_below_threshold() {
+    let sheet = sheet("mu", &f0());
+    let what = json!({ "of": "coupling", "pseudoscalar": false, "mass": "0.2 GeV", "fermion": "mu-", "colours": 1, "given": "coupling", "value": "0.3" });
+    let refused = ask(json!({ "kind": "look_up", "what": what }), &sheet).unwrap_err();
+    assert!(refused.message.contains("stable"), "{}", refused.message);
 }

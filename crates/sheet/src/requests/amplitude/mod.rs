@@ -11,7 +11,7 @@ pub use angles::{image, slice};
 pub use line::line;
 pub use plane::plane;
 pub use waves::partial_waves;
-pub use words::{coupling, reword};
+pub use words::reword;
 
 use crate::check::{self, Frame};
 use crate::doc::Sheet;

@@ -1,12 +1,11 @@
-//! The same state in other words: conventions of mass and width, coupling, width and lifetime.
+//! The same state in other words: conventions of mass and width.
 
 use super::Words;
 use crate::quantity::{Dimension, format, read};
-use crate::requests::{Body, Decay, Known, MassConvention, Named, Reply};
+use crate::requests::{Body, MassConvention, Named, Reply};
 use widthwise_core::amplitude::hypothesis::Form;
-use widthwise_core::error::{Answer, Refusal};
-use widthwise_core::propagator::conventions::{self, Convention, MassAndWidth, lifetime_s};
-use widthwise_core::units::HBAR_GEV_S;
+use widthwise_core::error::Answer;
+use widthwise_core::propagator::conventions::{Convention, MassAndWidth};
 
 const ALL: [(Convention, &str); 4] = [
     (Convention::ConstantWidth, "constant width"),
@@ -88,106 +87,4 @@ fn lifetime(seconds: f64) -> Named {
         unit: "s".into(),
         text: format!("{} s", format::significant(seconds, 5)),
     }
-}
-
-/// Coupling, partial width and lifetime of a two-body decay, from any one of them.
-pub fn coupling(mass: &str, decay: &Decay, known: Known, value: &str) -> Answer<Reply> {
-    let number = |field: &str, text: &str, dimension| {
-        read(text, dimension)
-            .map(|r| r.value)
-            .map_err(|p| p.at(field, text))
-    };
-    let mass_gev = number("mass", mass, Dimension::Energy)?;
-    if mass_gev <= 0.0 {
-        return Err(Refusal::new(
-            "mass",
-            mass,
-            "above 0",
-            "a mass has to be above 0",
-        ));
-    }
-    let scalars = matches!(decay, Decay::Scalars { .. });
-    let of = match decay {
-        Decay::Fermions {
-            pseudoscalar,
-            m,
-            colours,
-        } => {
-            let m_gev = number("m", m, Dimension::Energy)?;
-            if *pseudoscalar {
-                conventions::Decay::PseudoscalarToFermions {
-                    m_gev,
-                    colours: *colours,
-                }
-            } else {
-                conventions::Decay::ScalarToFermions {
-                    m_gev,
-                    colours: *colours,
-                }
-            }
-        }
-        Decay::Scalars { m1, m2, identical } => conventions::Decay::ToScalars {
-            m1_gev: number("m1", m1, Dimension::Energy)?,
-            m2_gev: number("m2", m2, Dimension::Energy)?,
-            identical: *identical,
-        },
-    };
-    let dimension = if scalars {
-        Dimension::Energy
-    } else {
-        Dimension::Number
-    };
-    let g = match known {
-        Known::Coupling => number("value", value, dimension)?,
-        Known::Width => of.coupling(mass_gev, number("value", value, Dimension::Energy)?)?,
-        Known::Lifetime => {
-            let hours = number("value", value, Dimension::Time)?;
-            if hours <= 0.0 {
-                return Err(Refusal::new(
-                    "value",
-                    value,
-                    "above 0",
-                    "a lifetime has to be above 0",
-                ));
-            }
-            of.coupling(mass_gev, HBAR_GEV_S / (hours * 3600.0))?
-        }
-    };
-    let width = of.width_gev(mass_gev, g);
-    let factor = of.width_per_coupling2(mass_gev);
-    let name = if scalars { "coupling h" } else { "coupling g" };
-    let mut values = vec![
-        Named::new(name, g, dimension, None, 9),
-        Named::new("partial width", width, Dimension::Energy, None, 9),
-        Named {
-            name: "width per squared coupling".into(),
-            value: factor,
-            error: None,
-            unit: if scalars { "1/GeV" } else { "GeV" }.into(),
-            text: if scalars {
-                format!("{} /GeV", format::significant(factor, 6))
-            } else {
-                energy(factor, 6)
-            },
-        },
-    ];
-    if let Some(seconds) = lifetime_s(width) {
-        values.push(lifetime(seconds));
-    } else {
-        values.push(Named {
-            name: "stable".into(),
-            value: 0.0,
-            error: None,
-            unit: String::new(),
-            text: "the mediator lies at or below this channel's threshold: it is stable against it"
-                .into(),
-        });
-    }
-    Ok(Reply {
-        body: Body::Words {
-            words: Vec::new(),
-            values,
-        },
-        columns: Vec::new(),
-    })
 }
