@@ -257,7 +257,8 @@ fn selection(path: &str, of: &doc::Wave, twice_j: u8, beams: &Beams, log: &mut L
     };
     let signs: Vec<Option<i8>> = text.trim().chars().map(sign).collect();
     let field = format!("{path}.pc");
-    let ([Some(parity), Some(c_parity)], true) = (signs.as_slice(), twice_j % 2 == 0) else {
+    let ([Some(parity), Some(c_parity)], true) = (signs.as_slice(), twice_j.is_multiple_of(2))
+    else {
         log.refuse(
             &field,
             text,

@@ -56,7 +56,7 @@ pub fn partial_waves(sheet: &Sheet, w_gev: f64, grid: &Grid) -> Answer<Reply> {
         )
     };
     let of = |wave: &Wave, w_gev: Option<f64>| WaveReading {
-        j: if wave.twice_j % 2 == 0 {
+        j: if wave.twice_j.is_multiple_of(2) {
             (wave.twice_j / 2).to_string()
         } else {
             format!("{}/2", wave.twice_j)
