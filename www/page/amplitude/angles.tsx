@@ -36,7 +36,10 @@ function drawImage(paper: Paper): void {
   // A line needs no more places than the eye has between two ticks.
   const [sx, sy] = [Math.max(1, Math.floor(nw / 100)), Math.max(1, Math.floor(nc / 75))];
   const [mx, my] = [Math.floor((nw - 1) / sx) + 1, Math.floor((nc - 1) / sy) + 1];
-  for (const level of levels(least, most)) {
+  const written: [number, number][] = [];
+  levels(least, most).forEach((level, nth) => {
+    // Labels of neighbours stand at different heights, so that they do not run into each other.
+    const height = box.top + box.height * (0.12 + 0.76 * ((nth * 0.38) % 1));
     ctx.strokeStyle = share(level) > 0.55 ? ink("--paper", root) : ink("--ink-2", root);
     ctx.lineWidth = 1;
     ctx.beginPath();
@@ -46,10 +49,12 @@ function drawImage(paper: Paper): void {
       const [a, b] = [place(x1, y1), place(x2, y2)];
       ctx.moveTo(...a);
       ctx.lineTo(...b);
-      if (label === null || Math.abs(a[1] - (box.top + box.height / 3)) < Math.abs(label[1] - (box.top + box.height / 3))) label = a;
+      if (label === null || Math.abs(a[1] - height) < Math.abs(label[1] - height)) label = a;
     }
     ctx.stroke();
-    if (label !== null) {
+    const crowded = (place: [number, number]): boolean => written.some(([x, y]) => Math.abs(x - place[0]) < 44 && Math.abs(y - place[1]) < 15);
+    if (label !== null && !crowded(label)) {
+      written.push(label);
       ctx.lineWidth = 3;
       ctx.strokeStyle = ink("--paper", root);
       ctx.fillStyle = ink("--ink", root);
@@ -57,7 +62,7 @@ function drawImage(paper: Paper): void {
       ctx.strokeText(digits(level, 2), ...label);
       ctx.fillText(digits(level, 2), ...label);
     }
-  }
+  });
   // Where the cuts are taken.
   ctx.strokeStyle = ink("--accent", root);
   ctx.lineWidth = 1;

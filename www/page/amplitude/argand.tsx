@@ -76,8 +76,9 @@ function energies(paper: Paper, box: Box, w: Float64Array, x: Float64Array, y: F
     ctx.beginPath();
     ctx.arc(px, py, 2.5, 0, 2 * Math.PI);
     ctx.fill();
-    ctx.textAlign = Math.cos(out) > 0.3 ? "left" : Math.cos(out) < -0.3 ? "right" : "center";
-    ctx.fillText(`${fixed((w[i] ?? 0) / per, decimals)} ${k === 1 ? unit : ""}`.trim(), px + 8 * Math.cos(out), py + 11 * Math.sin(out));
+    // Towards the middle of the circle, where there is room on every screen.
+    ctx.textAlign = Math.cos(out) > 0.3 ? "right" : Math.cos(out) < -0.3 ? "left" : "center";
+    ctx.fillText(`${fixed((w[i] ?? 0) / per, decimals)} ${k === 1 ? unit : ""}`.trim(), px - 9 * Math.cos(out), py - 12 * Math.sin(out));
   }
   ctx.restore();
 }

@@ -147,7 +147,7 @@ export function AmplitudeLanes(): JSX.Element {
   const box = useRef<HTMLDivElement>(null);
   useLayoutEffect(() => (box.current === null ? undefined : listen(box.current)), []);
   const matrix = column(line.value, "|T|^2") !== null;
-  const shown: readonly LaneOf[] = matrix ? T_LANES : [MODULUS, PARTS, PHASE, ...(line.value?.elastic ? [ELASTIC] : [])];
+  const shown: readonly LaneOf[] = matrix ? T_LANES : [MODULUS, PARTS, PHASE, ...(line.value?.elastic && line.value.names.length > 1 ? [ELASTIC] : [])];
   const { from, to } = view.value;
   return (
     <div>

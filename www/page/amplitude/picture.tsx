@@ -102,7 +102,9 @@ export function ramp(colours: readonly string[]): Uint8ClampedArray {
 }
 
 function channels(colour: string): [number, number, number] {
-  const hex = colour.replace("#", "");
+  const short = colour.replace("#", "");
+  // The style sheet comes shortened: #fff is #ffffff.
+  const hex = short.length === 3 ? [...short].map((digit) => digit + digit).join("") : short;
   const read = (at: number): number => Number.parseInt(hex.slice(at, at + 2), 16);
   return [read(0), read(2), read(4)];
 }

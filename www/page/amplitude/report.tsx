@@ -10,6 +10,7 @@ function energy(gev: number): string {
 }
 
 function complex([re, im]: readonly [number, number]): string {
+  if (Math.abs(im) < 1e-12 * Math.abs(re)) return digits(re, 4);
   return `${digits(re, 4)} ${im < 0 ? "−" : "+"} ${digits(Math.abs(im), 4)} i`;
 }
 

@@ -72,6 +72,6 @@ export function choose(kind: ModelKind): void {
     if (kind === "diagrams" && !model.diagrams) model.diagrams = diagrams(mass, width);
     if (kind === "waves" && (model.waves ?? []).length === 0) model.waves = [newWave(model.j)];
     // What is left free belongs to the parameters of a kind.
-    return { ...before, model, fit: { ...before.fit, free: before.fit.free.filter((id) => !/^[rkdw]\d*\./.test(id)) } };
+    return { ...before, model, fit: { ...before.fit, free: before.fit.free.filter((id) => !/^([rkdw]\d*|coherent)\./.test(id)) } };
   });
 }

@@ -2,6 +2,7 @@
 import { effect } from "@preact/signals";
 import { Refused, Trapped } from "../bridge/failures";
 import type { Progress, Reply } from "../../shared/protocol";
+import { stage } from "../amplitude/stage";
 import * as answers from "./answers";
 import { readCursor, readCurve, readFit, readNoPoints, readPoints } from "./read";
 import { Curves } from "./curves";
@@ -89,7 +90,8 @@ export function work(on: Bridge): () => void {
       else resting = window.setTimeout(() => readAll(now), STILL_MS);
     }),
     effect(() => {
-      if (!opened.value || !placed.value) return;
+      // Behind the amplitude nobody sees the curve, and its work would stand in the way of the hand.
+      if (!opened.value || !placed.value || stage.value === "amplitude") return;
       const { from, to } = view.value;
       curve.ask(withoutRows(sheet.value), from, to, readCurve, (reason) => {
         if (reason instanceof Refused) answers.curve.value = null;

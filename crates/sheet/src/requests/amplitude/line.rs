@@ -5,7 +5,7 @@ use super::{Elastic, Grid, PoleReading, Subject, Subjects, column, resonances, w
 use crate::doc::Sheet;
 use crate::requests::{Body, Column, Reply};
 use widthwise_core::amplitude::born::Energy;
-use widthwise_core::amplitude::hypothesis::Hypothesis;
+use widthwise_core::amplitude::hypothesis::{Hypothesis, MediatorPropagator};
 use widthwise_core::amplitude::partial_wave::PreparedPartialWave;
 use widthwise_core::error::{Answer, Refusal, Warning};
 use widthwise_core::math;
@@ -212,7 +212,8 @@ fn beside(
         )
     } else {
         format!(
-            "The sum of resonances keeps unitarity here: the elastic |T|^2 reaches {worst:.4}, and 1 is the most.{how}"
+            "The sum of resonances keeps unitarity here: the elastic |T|^2 reaches {}, and 1 is the most.{how}",
+            crate::quantity::format::significant(worst, 4)
         )
     };
     Elastic {
@@ -236,12 +237,28 @@ fn reading(pole: &Pole) -> PoleReading {
 
 /// Mass and width in all conventions: from the form's own where it has one, else from its pole.
 fn in_other_words(hypothesis: &Hypothesis, of: u16, pole: Option<&Pole>) -> Vec<super::Words> {
-    let own = resonances(hypothesis).nth(usize::from(of)).and_then(|r| {
-        let convention = convention_of(&r.form)?;
+    let index = usize::from(of);
+    let declared = match hypothesis {
+        Hypothesis::Diagrams(model) => {
+            model
+                .mediators
+                .get(index)
+                .and_then(|m| match &m.propagator {
+                    MediatorPropagator::Form { form, width_gev } => {
+                        Some((form, m.mass_gev, *width_gev))
+                    }
+                    MediatorPropagator::Dressed { .. } => None,
+                })
+        }
+        _ => resonances(hypothesis)
+            .nth(index)
+            .map(|r| (&r.form, r.mass_gev, r.width_gev)),
+    };
+    let own = declared.and_then(|(form, mass_gev, width_gev)| {
         Some(MassAndWidth {
-            convention,
-            mass_gev: r.mass_gev,
-            width_gev: r.width_gev,
+            convention: convention_of(form)?,
+            mass_gev,
+            width_gev,
         })
     });
     let from_pole = || {
