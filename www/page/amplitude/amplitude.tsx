@@ -2,14 +2,46 @@
 import type { JSX } from "preact";
 import { useEffect } from "preact/hooks";
 import { Choice } from "../parts/field";
-import { ReadOut } from "../lanes/read-out";
 import { AmplitudeLanes } from "./lanes";
 import { Angles } from "./angles";
 import { Argand } from "./argand";
 import { Diagrams } from "./drawn";
 import { Plane } from "./plane";
 import { InOtherWords, Poles, Unitarity } from "./report";
-import { angular, line, of, refused, signs, watch } from "./state";
+import { axisScale, digits, fixed } from "../format/number";
+import { nearestIndex } from "./argand";
+import { angular, column, here, line, of, refused, signs, watch } from "./state";
+
+/** Value of a line at the cursor. */
+function AtCursor(): JSX.Element | null {
+  const answer = line.value;
+  const w = column(answer, "W");
+  if (w === null) return null;
+  const i = nearestIndex(w, here.value);
+  const { unit, per } = axisScale(here.value, here.value);
+  const told = [
+    ["|Δ|²", "|Delta|^2", " GeV⁻⁴"],
+    ["|T|²", "|T|^2", ""],
+    ["Re Δ", "Re Delta", " GeV⁻²"],
+    ["Im Δ", "Im Delta", " GeV⁻²"],
+    ["phase", "phase", "°"],
+  ] as const;
+  return (
+    <p class="at-cursor" role="status" aria-live="off">
+      <span class="sym">W</span> = {fixed(here.value / per, 3)} {unit}
+      {told.map(([name, key, of]) => {
+        const values = column(answer, key);
+        return values === null ? null : (
+          <span key={key}>
+            {" "}
+            · {name} {digits(values[i] ?? 0, 4)}
+            {of}
+          </span>
+        );
+      })}
+    </p>
+  );
+}
 
 /** Everything there is to see of it. */
 export function Amplitude(): JSX.Element {
@@ -21,7 +53,7 @@ export function Amplitude(): JSX.Element {
       <h2 id="amplitude-title" class="unseen">
         Amplitude
       </h2>
-      <ReadOut />
+      <AtCursor />
       {refused.value && (
         <p class="problem" role="status">
           {refused.value}

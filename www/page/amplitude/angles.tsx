@@ -5,9 +5,9 @@ import { ink } from "../lanes/ink";
 import { Switch } from "../parts/field";
 import { look } from "../state/prefs";
 import { cursor } from "../state/view";
-import { contour, levels } from "./contours";
+import { contours, levels } from "./contours";
 import { frame, path } from "./frame";
-import { Picture, ramp, raster, type Paper } from "./picture";
+import { kept, Picture, ramp, raster, type Paper } from "./picture";
 import { alongCos, alongW, asCrossSection, column, cos, here, image, type Answer } from "./state";
 
 /** Decades of an image that are told apart. */
@@ -28,7 +28,8 @@ function drawImage(paper: Paper): void {
   const table = ramp([ink("--well", root), ink("--c-observed", root), ink("--ink", root)]);
   const at = (x: number, y: number): number => values[x * nc + y] ?? 0;
   const share = (value: number): number => (value > 0 && most > 0 ? Math.max(0, 1 + Math.log10(value / most) / DECADES) : -1);
-  raster(paper, box, nw, nc, (x, y) => share(at(x, y)), table);
+  const bitmap = kept(answer, look.value, () => raster(nw, nc, (x, y) => share(at(x, y)), table));
+  if (bitmap !== null) ctx.drawImage(bitmap, box.left, box.top, box.width, box.height);
   ctx.save();
   ctx.beginPath();
   ctx.rect(box.left, box.top, box.width, box.height);
@@ -37,14 +38,16 @@ function drawImage(paper: Paper): void {
   const [sx, sy] = [Math.max(1, Math.floor(nw / 100)), Math.max(1, Math.floor(nc / 75))];
   const [mx, my] = [Math.floor((nw - 1) / sx) + 1, Math.floor((nc - 1) / sy) + 1];
   const written: [number, number][] = [];
-  levels(least, most).forEach((level, nth) => {
+  const heights = levels(least, most);
+  const lines = kept(answer, "lines", () => contours(mx, my, (x, y) => at(x * sx, y * sy), heights));
+  heights.forEach((level, nth) => {
     // Labels of neighbours stand at different heights, so that they do not run into each other.
     const height = box.top + box.height * (0.12 + 0.76 * ((nth * 0.38) % 1));
     ctx.strokeStyle = share(level) > 0.55 ? ink("--paper", root) : ink("--ink-2", root);
     ctx.lineWidth = 1;
     ctx.beginPath();
     let label: [number, number] | null = null;
-    for (const [x1 = 0, y1 = 0, x2 = 0, y2 = 0] of contour(mx, my, (x, y) => at(x * sx, y * sy), level)) {
+    for (const [x1 = 0, y1 = 0, x2 = 0, y2 = 0] of lines[nth] ?? []) {
       const place = (x: number, y: number): [number, number] => [box.left + ((x * sx) / (nw - 1)) * box.width, box.top + (1 - (y * sy) / (nc - 1)) * box.height];
       const [a, b] = [place(x1, y1), place(x2, y2)];
       ctx.moveTo(...a);

@@ -52,7 +52,8 @@ function draw(paper: Paper): void {
   if (a !== null && re !== null && im !== null) dot(paper, box, w, re, im, here.value, 4);
 }
 
-function index(w: Float64Array, at: number): number {
+/** Place of the energy next to `at`. */
+export function nearestIndex(w: Float64Array, at: number): number {
   let best = 0;
   for (let i = 1; i < w.length; i += 1) if (Math.abs((w[i] ?? 0) - at) < Math.abs((w[best] ?? 0) - at)) best = i;
   return best;
@@ -84,7 +85,7 @@ function energies(paper: Paper, box: Box, w: Float64Array, x: Float64Array, y: F
 }
 
 function dot(paper: Paper, box: Box, w: Float64Array, x: Float64Array, y: Float64Array, at: number, size: number): void {
-  const i = index(w, at);
+  const i = nearestIndex(w, at);
   paper.ctx.fillStyle = ink("--accent", paper.root);
   paper.ctx.beginPath();
   paper.ctx.arc(box.x(x[i] ?? 0), box.y(y[i] ?? 0), size, 0, 2 * Math.PI);

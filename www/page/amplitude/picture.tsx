@@ -109,13 +109,23 @@ function channels(colour: string): [number, number, number] {
   return [read(0), read(2), read(4)];
 }
 
-/** An image of `nx` by `ny` shares (0 to 1; below 0: nothing there) on the paper; `at(x, y)` with y from the bottom. */
-export function raster(paper: Paper, box: { left: number; top: number; width: number; height: number }, nx: number, ny: number, at: (x: number, y: number) => number, table: Uint8ClampedArray): void {
+const made = new WeakMap<object, Map<string, unknown>>();
+
+/** What has been made of an answer, once for each `key` (the look of the page, say). */
+export function kept<T>(answer: object, key: string, make: () => T): T {
+  const known = made.get(answer) ?? new Map<string, unknown>();
+  made.set(answer, known);
+  if (!known.has(key)) known.set(key, make());
+  return known.get(key) as T;
+}
+
+/** An image of `nx` by `ny` shares (0 to 1; below 0: nothing there), from `at(x, y)` with y from the bottom. */
+export function raster(nx: number, ny: number, at: (x: number, y: number) => number, table: Uint8ClampedArray): HTMLCanvasElement | null {
   const small = document.createElement("canvas");
   small.width = nx;
   small.height = ny;
   const ctx = small.getContext("2d");
-  if (ctx === null || nx === 0 || ny === 0) return;
+  if (ctx === null || nx === 0 || ny === 0) return null;
   const pixels = ctx.createImageData(nx, ny);
   for (let y = 0; y < ny; y += 1) {
     for (let x = 0; x < nx; x += 1) {
@@ -127,6 +137,5 @@ export function raster(paper: Paper, box: { left: number; top: number; width: nu
     }
   }
   ctx.putImageData(pixels, 0, 0);
-  paper.ctx.imageSmoothingEnabled = true;
-  paper.ctx.drawImage(small, box.left, box.top, box.width, box.height);
+  return small;
 }

@@ -4,7 +4,7 @@ import { ink } from "../lanes/ink";
 import { axisScale, digits } from "../format/number";
 import { look } from "../state/prefs";
 import { frame } from "./frame";
-import { Picture, ramp, raster, type Paper } from "./picture";
+import { kept, Picture, ramp, raster, type Paper } from "./picture";
 import { column, line, plane, signs } from "./state";
 
 function draw(paper: Paper): void {
@@ -15,14 +15,16 @@ function draw(paper: Paper): void {
   const [from, to, low, high] = [re[0] ?? 0, re[nx - 1] ?? 1, im[0] ?? -1, im[ny - 1] ?? 1];
   const { unit } = axisScale(from, to);
   const box = frame(paper, { from, to, name: `Re √s (${unit})`, energy: true }, { from: low, to: high, name: "Im √s (MeV)", energy: true });
-  void look.value;
   const { root, ctx } = paper;
   const table = ramp([ink("--well", root), ink("--c-observed", root), ink("--ink", root)]);
   // Brightest where a pole is; the ends of the scale are what is usual, so that one pixel next to a pole does not take all of it.
-  const sorted = Float64Array.from(values).sort();
-  const [dark, bright] = [sorted[Math.floor(sorted.length * 0.02)] ?? 0, sorted[Math.floor(sorted.length * 0.998)] ?? 1];
-  const span = bright > dark ? bright - dark : 1;
-  raster(paper, box, nx, ny, (x, y) => Math.max(0, Math.min(1, ((values[y * nx + x] ?? 0) - dark) / span)), table);
+  const bitmap = kept(answer, look.value, () => {
+    const sorted = Float64Array.from(values).sort();
+    const [dark, bright] = [sorted[Math.floor(sorted.length * 0.02)] ?? 0, sorted[Math.floor(sorted.length * 0.998)] ?? 1];
+    const span = bright > dark ? bright - dark : 1;
+    return raster(nx, ny, (x, y) => Math.max(0, Math.min(1, ((values[y * nx + x] ?? 0) - dark) / span)), table);
+  });
+  if (bitmap !== null) ctx.drawImage(bitmap, box.left, box.top, box.width, box.height);
   ctx.save();
   ctx.beginPath();
   ctx.rect(box.left, box.top, box.width, box.height);

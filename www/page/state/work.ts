@@ -86,7 +86,8 @@ export function work(on: Bridge): () => void {
       // New rows are wanted at once; the same rows under a moving slider are not.
       const fresh = now.data.rows.length !== rows;
       rows = now.data.rows.length;
-      if (rows <= MANY_ROWS || fresh) readAll(now);
+      // Nor do they stand in the way while the amplitude follows the hand.
+      if (fresh || (rows <= MANY_ROWS && stage.value !== "amplitude")) readAll(now);
       else resting = window.setTimeout(() => readAll(now), STILL_MS);
     }),
     effect(() => {
@@ -99,7 +100,7 @@ export function work(on: Bridge): () => void {
       });
     }),
     effect(() => {
-      if (!opened.value || !placed.value) return;
+      if (!opened.value || !placed.value || stage.value === "amplitude") return;
       const w = cursor.value ?? answers.runningPoint.value?.w ?? answers.points.value.at(-1)?.w ?? middleOfInterest();
       live.put("cursor", { kind: "cursor", sheet: withoutRows(sheet.value), w_gev: w }, readCursor, (reason) => {
         if (reason instanceof Refused) answers.atCursor.value = null;
