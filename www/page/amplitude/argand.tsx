@@ -68,6 +68,7 @@ function energies(paper: Paper, box: Box, w: Float64Array, x: Float64Array, y: F
   if (!(all > 0)) return;
   const { unit, per } = axisScale(view.value.from, view.value.to);
   const decimals = Math.max(0, Math.min(6, Math.ceil(-Math.log10((view.value.to - view.value.from) / per / 300))));
+  const written: [number, number][] = [];
   ctx.save();
   ctx.fillStyle = ink("--ink-2", root);
   for (let k = 1; k < MARKS; k += 1) {
@@ -79,7 +80,10 @@ function energies(paper: Paper, box: Box, w: Float64Array, x: Float64Array, y: F
     ctx.fill();
     // Towards the middle of the circle, where there is room on every screen.
     ctx.textAlign = Math.cos(out) > 0.3 ? "right" : Math.cos(out) < -0.3 ? "left" : "center";
-    ctx.fillText(`${fixed((w[i] ?? 0) / per, decimals)} ${k === 1 ? unit : ""}`.trim(), px - 9 * Math.cos(out), py - 12 * Math.sin(out));
+    const place: [number, number] = [px - 9 * Math.cos(out), py - 12 * Math.sin(out)];
+    if (written.some(([x, y]) => Math.abs(x - place[0]) < 62 && Math.abs(y - place[1]) < 14)) continue;
+    written.push(place);
+    ctx.fillText(`${fixed((w[i] ?? 0) / per, decimals)} ${k === 1 ? unit : ""}`.trim(), ...place);
   }
   ctx.restore();
 }
