@@ -1,6 +1,6 @@
 // Somebody who has never seen the page: from the empty sheet over a plan and five points to a fit and a printed
 // hand-over, with what the page itself says and nothing else; at a desk and on a tablet.
-import { By, Key, type WebDriver } from "selenium-webdriver";
+import { By, Key, type WebDriver, type WebElement } from "selenium-webdriver";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { engines, open } from "./support/engines";
 import { enter, field, press, text, type, until } from "./support/hand";
@@ -25,7 +25,8 @@ describe.each(engines)("a newcomer in %s", (engine) => {
 
   const fill = async (path: string, value: string): Promise<void> => type(driver, await field(driver, path), value);
   const choose = async (label: string, words: string): Promise<void> => {
-    const option = await driver.findElement(By.xpath(`//label[normalize-space()="${label}"]/following-sibling::select/option[contains(., "${words}")]`));
+    const found = By.xpath(`//label[normalize-space()="${label}"]/following-sibling::select/option[contains(., "${words}")]`);
+    const option = (await driver.wait(async () => (await driver.findElements(found))[0] ?? null, 10_000, `no ${words} in ${label}`)) as NonNullable<unknown> as WebElement;
     await driver.executeScript("arguments[0].parentElement.scrollIntoView({ block: 'center' })", option);
     await option.click();
   };
@@ -55,8 +56,7 @@ describe.each(engines)("a newcomer in %s", (engine) => {
     await enter(driver, "Model");
     await fill("model.resonances[0].mass", "2874.2 MeV");
     await fill("model.resonances[0].width", "0.62 MeV");
-    const strength = await driver.findElement(By.css('[data-path^="model.resonances[0].strength."]'));
-    await type(driver, strength as never, "24.6 eV");
+    await fill("model.resonances[0].strength.value", "24.6 eV");
     await enter(driver, "Detection");
     await fill("detection.efficiency", "0.42");
     await until(driver, "no curve", "return document.querySelector('.read-out dd') !== null && /nb/.test(document.querySelector('.read-out').innerText)");

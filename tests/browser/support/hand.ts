@@ -8,9 +8,10 @@ export async function enter(driver: WebDriver, room: string): Promise<void> {
   await door.click();
 }
 
-/** The field of the sheet with this path. */
-export function field(driver: WebDriver, path: string): Promise<WebElement> {
-  return driver.findElement(By.css(`[data-path="${path}"]`)) as unknown as Promise<WebElement>;
+/** The field of the sheet with this path, as soon as it is there: a room that has just been opened may still be coming. */
+export async function field(driver: WebDriver, path: string): Promise<WebElement> {
+  const found = await driver.wait(async () => (await driver.findElements(By.css(`[data-path="${path}"]`)))[0] ?? null, 10_000, `no field ${path}`);
+  return found as unknown as WebElement;
 }
 
 /** Replaces a field's text by typing. */
