@@ -2,6 +2,7 @@
 //!
 //! JSON on stdout, or CSV with `--csv`. Exit codes: 0 done, 1 the sheet is refused (message on
 //! stderr), 2 the command line is not understood, 3 a file cannot be read, 4 the fit did not converge.
+#![deny(clippy::indexing_slicing)]
 
 mod arguments;
 mod run;

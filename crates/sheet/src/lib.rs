@@ -9,6 +9,7 @@
 //! * [`json`], [`demos`] - the sheet as a file, invented examples.
 //! * [`requests`] - what can be asked of a sheet, and the answers; the page's worker and the
 //!   batch program are thin shells over it.
+#![deny(clippy::indexing_slicing)]
 
 pub mod check;
 pub mod demos;

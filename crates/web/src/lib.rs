@@ -1,5 +1,6 @@
 //! The WebAssembly surface: free functions over [`widthwise_sheet::requests`], nothing to free
 //! by hand, no state. It runs inside a worker and reaches the browser through its scope only.
+#![deny(clippy::indexing_slicing)]
 
 mod answer;
 mod scope;

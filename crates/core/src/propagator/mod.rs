@@ -8,6 +8,10 @@ pub mod conventions;
 pub mod dressed;
 pub mod flatte;
 pub mod gounaris_sakurai;
+#[allow(
+    clippy::indexing_slicing,
+    reason = "numeric kernels: vectors and matrices whose shape is fixed where they are made; fuzzed (crates/fuzz)"
+)]
 pub mod kmatrix;
 pub mod loops;
 pub mod poles;

@@ -5,6 +5,10 @@
 //! closed polynomials of `structures`; everything else is sums of c. Fermion-number signs and
 //! the products between scalar and pseudoscalar mediators in different channels are in them.
 
+#[allow(
+    clippy::indexing_slicing,
+    reason = "numeric kernels: vectors and matrices whose shape is fixed where they are made; fuzzed (crates/fuzz)"
+)]
 mod helicity;
 mod prepare;
 mod structures;
