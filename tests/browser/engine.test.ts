@@ -51,6 +51,26 @@ describe.each(engines.flatMap((engine) => [[engine, "file"] as const, [engine, "
     expect(outcome).toBe("Cancelled");
   });
 
+  it.each(["throws", "fails while it loads"])("says so when a worker is refused to start (it %s)", async (how) => {
+    const outcome = await inPage<string[]>(
+      driver,
+      `const broken = URL.createObjectURL(new Blob(["throw new Error('refused')"], { type: "text/javascript" }));
+       const refuse = values[0] === "throws" ? () => { throw new Error("refused"); } : () => new Worker(broken);
+       const told = (work) => work.then(() => "answered", (error) => error.name);
+       const never = new pool.constructor(pool.module, refuse, 2);
+       const first = await told(never.run({ kind: "tables" }));
+       never.close();
+       // Refused twice, then let in: the request is still there.
+       let tries = 0;
+       const later = new pool.constructor(pool.module, () => (++tries < 3 ? refuse() : pool.spawn()), 1);
+       const second = await told(later.run({ kind: "tables" }));
+       later.close();
+       return [first, second, await told(pool.run({ kind: "tables" }))];`,
+      how,
+    );
+    expect(outcome).toEqual(["BootFailed", "answered", "answered"]);
+  });
+
   it("asks the network for nothing", async () => {
     expect(await outgoing(driver, url)).toEqual([]);
     expect(served.requests.filter((path) => path !== "/")).toEqual([]);

@@ -7,7 +7,7 @@ use widthwise_sheet::requests::{Request, energy_range};
 use widthwise_sheet::{doc::Sheet, json as file};
 
 /// Kinds of requests, as they are named in JSON; a test compares the list with the page's types.
-pub const KINDS: [&str; 20] = [
+pub const KINDS: [&str; 25] = [
     "tables",
     "open",
     "check",
@@ -28,6 +28,11 @@ pub const KINDS: [&str; 20] = [
     "summary",
     "window",
     "look_up",
+    "compare",
+    "goodness",
+    "against_time",
+    "limit",
+    "looks",
 ];
 
 /// A request as JSON; small enough to be answered in a moment.
@@ -36,6 +41,10 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
     let fits = matches!(
         kind,
         "intervals"
+            | "compare"
+            | "goodness"
+            | "against_time"
+            | "limit"
             | "profile"
             | "contour"
             | "solutions"
@@ -100,6 +109,18 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
             let unit = *c.one(&["GeV", "MeV", "GeV/c", "eV", ""]);
             let value = format!("{:e} {unit}", energy(c));
             json!({ "kind": kind, "sheet": sheet, "from": from, "value": value })
+        }
+        "compare" => {
+            json!({ "kind": kind, "null": sheet.clone(), "alternative": sheet, "trials": c.below(3), "seed": 1 })
+        }
+        "goodness" => {
+            json!({ "kind": kind, "sheet": sheet, "trials": c.below(4), "seed": c.below(99) })
+        }
+        "limit" => {
+            json!({ "kind": kind, "parameter": id(c), "sheet": sheet, "places": 4 + c.below(3) })
+        }
+        "looks" => {
+            json!({ "kind": kind, "rate_per_look": 20.0 * c.fraction(), "looks": 1 + c.below(12), "p": 0.1 * c.fraction() })
         }
         "look_up" => json!({ "kind": kind, "what": look_up(mood, c) }),
         "plan" => json!({ "kind": kind, "sheet": sheet, "costs": c.rarely(4) }),
