@@ -63,10 +63,10 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
         c,
     );
     // Many fits of many parameters would make the golden set a matter of minutes.
-    if mood == Mood::Calm
-        && let Some(free) = sheet.pointer_mut("/fit/free").and_then(Value::as_array_mut)
-    {
-        free.truncate(if kind == "fit" { 3 } else { 2 });
+    if fits && mood == Mood::Calm {
+        shorten(&mut sheet, "/fit/free", if kind == "fit" { 3 } else { 2 });
+        shorten(&mut sheet, "/data/rows", 6);
+        sheet["model"]["accuracy"] = json!("1e-4");
     }
     let (low, high) = range(&sheet);
     let energy = |c: &mut Choices| {
@@ -122,7 +122,7 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
         "looks" => {
             json!({ "kind": kind, "rate_per_look": 20.0 * c.fraction(), "looks": 1 + c.below(12), "p": 0.1 * c.fraction() })
         }
-        "look_up" => json!({ "kind": kind, "what": look_up(mood, c) }),
+        "look_up" => json!({ "kind": kind, "what": look_up(mood, c), "sheet": sheet }),
         "plan" => json!({ "kind": kind, "sheet": sheet, "costs": c.rarely(4) }),
         "read_table" => {
             let text = table(&sheet, mood, c);
@@ -202,6 +202,12 @@ fn trial(k: usize, parameters: usize, c: &mut Choices) -> Value {
         .map(|_| (!c.rarely(5)).then(|| c.fraction()))
         .collect();
     json!({ "k": k, "converged": !c.rarely(5), "statistic": 20.0 * c.fraction(), "values": values, "errors": errors, "rise_at_truth": [] })
+}
+
+fn shorten(sheet: &mut Value, list: &str, most: usize) {
+    if let Some(list) = sheet.pointer_mut(list).and_then(Value::as_array_mut) {
+        list.truncate(most);
+    }
 }
 
 /// JSON has no infinity: a number that is none becomes one that no limit allows.
