@@ -170,7 +170,9 @@ fn repeated_points_are_compared() {
     let found = repeats(&all, &result);
     assert_eq!(found.len(), 1);
     assert_eq!(found[0].ids, ["4", "again"]);
-    let wanted = 2.0 * (100.0 * (100.0_f64 / 130.0).ln() + 160.0 * (160.0_f64 / 130.0).ln());
+    let wanted = 2.0
+        * (100.0 * widthwise_core::math::ln(100.0 / 130.0)
+            + 160.0 * widthwise_core::math::ln(160.0 / 130.0));
     assert!((found[0].statistic - wanted).abs() < 1e-9);
     assert!((found[0].p_value - chi2_sf(wanted, 1.0)).abs() < 1e-12);
     // Of different channels they are no repetition.
