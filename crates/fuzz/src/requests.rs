@@ -7,7 +7,7 @@ use widthwise_sheet::requests::{Request, energy_range};
 use widthwise_sheet::{doc::Sheet, json as file};
 
 /// Kinds of requests, as they are named in JSON; a test compares the list with the page's types.
-pub const KINDS: [&str; 25] = [
+pub const KINDS: [&str; 29] = [
     "tables",
     "open",
     "check",
@@ -33,6 +33,10 @@ pub const KINDS: [&str; 25] = [
     "against_time",
     "limit",
     "looks",
+    "comb",
+    "plan_trials",
+    "plan_summary",
+    "design",
 ];
 
 /// A request as JSON; small enough to be answered in a moment.
@@ -42,6 +46,9 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
         kind,
         "intervals"
             | "compare"
+            | "comb"
+            | "plan_trials"
+            | "plan_summary"
             | "goodness"
             | "against_time"
             | "limit"
@@ -110,6 +117,18 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
             let value = format!("{:e} {unit}", energy(c));
             json!({ "kind": kind, "sheet": sheet, "from": from, "value": value })
         }
+        "comb" => {
+            json!({ "kind": kind, "sheet": sheet, "trials": c.below(3), "seed": c.below(99) })
+        }
+        "plan_trials" => {
+            let row = |k: usize, c: &mut Choices| json!({ "fill": k, "start_h": k, "w_gev": finite(energy(c)), "live_h": 1.0, "settle_h": 0.1, "expected_counts": 50.0, "why": "" });
+            let rows: Vec<Value> = (0..=c.below(2)).map(|k| row(k, c)).collect();
+            // Planning again after each point is a plan a point: left to the tests of the plan.
+            let steering = *c.one(&["timetable", "uniform"]);
+            json!({ "kind": kind, "sheet": sheet, "rows": rows, "steering": steering, "range": { "seed": 1, "first": c.below(9), "count": c.below(3) } })
+        }
+        "plan_summary" => json!({ "kind": kind, "sheet": sheet, "rows": [] }),
+        "design" => json!({ "kind": kind, "design": design(c) }),
         "compare" => {
             json!({ "kind": kind, "null": sheet.clone(), "alternative": sheet, "trials": c.below(3), "seed": 1 })
         }
@@ -202,6 +221,29 @@ fn trial(k: usize, parameters: usize, c: &mut Choices) -> Value {
         .map(|_| (!c.rarely(5)).then(|| c.fraction()))
         .collect();
     json!({ "k": k, "converged": !c.rarely(5), "statistic": 20.0 * c.fraction(), "values": values, "errors": errors, "rise_at_truth": [] })
+}
+
+/// A convex problem: energies, parameters, what is known before.
+fn design(c: &mut Choices) -> Value {
+    let (energies, parameters) = (2 + c.below(6), 1 + c.below(3));
+    let mut list = |count: usize| -> Vec<f64> { (0..count).map(|_| 0.1 + c.fraction()).collect() };
+    let gradients: Vec<Vec<f64>> = (0..energies).map(|_| list(parameters)).collect();
+    let prior: Vec<Vec<f64>> = (0..parameters)
+        .map(|i| {
+            (0..parameters)
+                .map(|j| f64::from(u8::from(i == j)))
+                .collect()
+        })
+        .collect();
+    json!({
+        "rate_per_h": list(energies),
+        "gradient_per_h": gradients,
+        "prior": prior,
+        "hours": 10.0,
+        "combination": list(parameters),
+        "moved_by": [],
+        "wanted": 0.99,
+    })
 }
 
 fn shorten(sheet: &mut Value, list: &str, most: usize) {
