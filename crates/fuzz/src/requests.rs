@@ -7,7 +7,7 @@ use widthwise_sheet::requests::{Request, energy_range};
 use widthwise_sheet::{doc::Sheet, json as file};
 
 /// Kinds of requests, as they are named in JSON; a test compares the list with the page's types.
-pub const KINDS: [&str; 29] = [
+pub const KINDS: [&str; 35] = [
     "tables",
     "open",
     "check",
@@ -37,6 +37,20 @@ pub const KINDS: [&str; 29] = [
     "plan_trials",
     "plan_summary",
     "design",
+    "amplitude",
+    "plane",
+    "image",
+    "slice",
+    "partial_waves",
+    "reword",
+];
+
+/// What a mass and a width may mean.
+const CONVENTIONS: [&str; 4] = [
+    "constant_width",
+    "massless_channels",
+    "pole_in_w",
+    "pole_in_s",
 ];
 
 /// A request as JSON; small enough to be answered in a moment.
@@ -116,6 +130,35 @@ pub fn request(kind: &str, mood: Mood, c: &mut Choices) -> Value {
             let unit = *c.one(&["GeV", "MeV", "GeV/c", "eV", ""]);
             let value = format!("{:e} {unit}", energy(c));
             json!({ "kind": kind, "sheet": sheet, "from": from, "value": value })
+        }
+        "amplitude" => {
+            let grid = grid((low, high), c);
+            json!({ "kind": kind, "sheet": sheet, "of": c.below(2), "grid": grid })
+        }
+        "plane" => {
+            let (re, im) = (grid((low, high), c), grid((low - high, high - low), c));
+            json!({ "kind": kind, "sheet": sheet, "of": c.below(2), "signs": [], "re": re, "im": im })
+        }
+        "image" => {
+            let (w, cos) = (grid((low, high), c), grid((-1.0, 1.0), c));
+            json!({ "kind": kind, "sheet": sheet, "w": w, "cos": cos, "cross_section": c.rarely(2) })
+        }
+        "slice" => {
+            let along = *c.one(&["w", "cos"]);
+            let span = if along == "w" {
+                (low, high)
+            } else {
+                (-1.0, 1.0)
+            };
+            let at = if along == "w" { 0.5 } else { energy(c) };
+            json!({ "kind": kind, "sheet": sheet, "along": along, "at": finite(at), "grid": grid(span, c) })
+        }
+        "partial_waves" => {
+            json!({ "kind": kind, "sheet": sheet, "w_gev": finite(energy(c)), "grid": grid((low, high), c) })
+        }
+        "reword" => {
+            let convention = *c.one(&CONVENTIONS);
+            json!({ "kind": kind, "convention": convention, "mass": "91.1876 GeV", "width": "2.4952 GeV" })
         }
         "comb" => {
             json!({ "kind": kind, "sheet": sheet, "trials": c.below(3), "seed": c.below(99) })
@@ -221,6 +264,11 @@ fn trial(k: usize, parameters: usize, c: &mut Choices) -> Value {
         .map(|_| (!c.rarely(5)).then(|| c.fraction()))
         .collect();
     json!({ "k": k, "converged": !c.rarely(5), "statistic": 20.0 * c.fraction(), "values": values, "errors": errors, "rise_at_truth": [] })
+}
+
+/// A few places over a span.
+fn grid((from, to): (f64, f64), c: &mut Choices) -> Value {
+    json!({ "from": finite(from), "to": finite(to), "places": 2 + c.below(8) })
 }
 
 /// A convex problem: energies, parameters, what is known before.
