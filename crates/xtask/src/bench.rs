@@ -117,6 +117,10 @@ pub fn bench(words: &[&str]) -> Outcome {
         say(format!("recorded in {RECORDED}"));
         return shell::write(&file, &lines);
     }
+    if !file.exists() {
+        println!("nothing is recorded yet: cargo xtask bench --record on a quiet machine");
+        return Ok(());
+    }
     compare(&tabbed(&shell::read(&file)?), &ratios)
 }
 
