@@ -8,7 +8,7 @@ import { collect, missing, seriesOf, textOf, type Collected } from "./series";
 
 const seconds = Number(import.meta.env["VITE_CARRY_SECONDS"] ?? 0);
 const how = seconds > 0 ? { interruptAfterTimeLimit: 1000 * seconds, numRuns: 1e9 } : { numRuns: 300 };
-const timeout = 30_000 + 2000 * seconds;
+const timeout = 30_000 + 5000 * seconds;
 
 /** Whether the work ended, or was refused as it should be. */
 function readOrRefused(work: () => unknown): void {
