@@ -13,6 +13,7 @@ Commands
   points   per row: expected, seen, pull, p-value, rate, time to 10 %
   fit      parameters, errors, correlation, pulls
   trials   pseudo-experiments of the sheet, a range of them
+  merge    joins files that trials wrote for ranges: SHEET.json RANGE.json ...
   plan     timetable of the hours left, forecasts, guaranteed efficiency
   amplitude  propagators, poles and conventions; or --part plane, image, slice, waves
   rows     the data rows (with --csv: as a table)
@@ -63,6 +64,8 @@ pub struct Options {
     pub command: String,
     /// Path of the sheet.
     pub sheet: OsString,
+    /// Further files (merge).
+    pub files: Vec<OsString>,
     /// CSV wanted.
     pub csv: bool,
     /// Least W as typed.
@@ -89,12 +92,13 @@ pub struct Options {
     pub costs: bool,
 }
 
-const COMMANDS: [&str; 9] = [
+const COMMANDS: [&str; 10] = [
     "check",
     "curve",
     "points",
     "fit",
     "trials",
+    "merge",
     "plan",
     "amplitude",
     "rows",
@@ -119,6 +123,7 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
     let mut options = Options {
         command: String::new(),
         sheet: OsString::new(),
+        files: Vec::new(),
         csv: false,
         from: None,
         to: None,
@@ -152,6 +157,7 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
                 command = Some(value.string().map_err(wrong)?);
             }
             Value(value) if sheet.is_none() => sheet = Some(value),
+            Value(value) if command.as_deref() == Some("merge") => options.files.push(value),
             other => return Err(wrong(other.unexpected())),
         }
     }
@@ -226,6 +232,7 @@ mod tests {
             "curve s.json --energies many",
             "fit s.json --what",
             "amplitude s.json --part whole",
+            "trials s.json other.json",
         ] {
             assert_eq!(parsed(wrong).unwrap_err().exit, 2, "{wrong}");
         }

@@ -4,7 +4,7 @@ use crate::arguments::{Failure, Options};
 use serde_json::{Value, json};
 use std::io::Read;
 use widthwise_core::error::Refusal;
-use widthwise_core::trials::{Ensemble, TrialSettings, summarise};
+use widthwise_core::trials::{Ensemble, TrialRow, TrialSettings, summarise};
 use widthwise_sheet::doc::Sheet;
 use widthwise_sheet::quantity::{Dimension, read};
 use widthwise_sheet::requests::{
@@ -43,6 +43,7 @@ pub fn run(options: &Options) -> Result<Output, Failure> {
     match options.command.as_str() {
         "check" => check_sheet(&sheet),
         "trials" => trials(&sheet, options),
+        "merge" => merge(&sheet, options),
         "rows" if options.csv => text(&sheet, Table::Rows),
         "rows" => done(pretty(&json!(sheet.data.rows))),
         "log" => text(&sheet, Table::Log),
@@ -228,23 +229,7 @@ fn trials(sheet: &Sheet, options: &Options) -> Result<Output, Failure> {
             ),
         });
     }
-    let problems = |list: Vec<Refusal>| {
-        let first = list.into_iter().next();
-        first.map_or_else(
-            || Failure {
-                exit: 1,
-                message: "the sheet cannot be computed with".into(),
-            },
-            |r| refused(&r),
-        )
-    };
-    let scan = check::understand(sheet).scan().map_err(problems)?;
-    let settings = fit_settings(sheet).map_err(|r| refused(&r))?;
-    let trial = TrialSettings {
-        seed: options.seed,
-        profiles: options.profiles,
-    };
-    let mut ensemble = Ensemble::new(&scan, &settings, trial).map_err(|r| refused(&r))?;
+    let mut ensemble = ensemble(sheet, options.seed, options.profiles)?;
     let last = options.first.saturating_add(options.count);
     let rows: Vec<_> = (options.first..last).map(|k| ensemble.trial(k)).collect();
     let ids = ensemble.ids();
@@ -265,11 +250,8 @@ fn trials(sheet: &Sheet, options: &Options) -> Result<Output, Failure> {
             column("2 NLL".into(), rows.iter().map(|r| r.statistic).collect()),
         ];
         for (i, id) in ids.iter().enumerate() {
-            let value =
-                |r: &widthwise_core::trials::TrialRow| r.values.get(i).copied().unwrap_or(f64::NAN);
-            let error = |r: &widthwise_core::trials::TrialRow| {
-                r.errors.get(i).copied().flatten().unwrap_or(f64::NAN)
-            };
+            let value = |r: &TrialRow| r.values.get(i).copied().unwrap_or(f64::NAN);
+            let error = |r: &TrialRow| r.errors.get(i).copied().flatten().unwrap_or(f64::NAN);
             columns.push(column(id.clone(), rows.iter().map(value).collect()));
             columns.push(column(
                 format!("error of {id}"),
@@ -278,14 +260,81 @@ fn trials(sheet: &Sheet, options: &Options) -> Result<Output, Failure> {
         }
         return done(write::columns(&columns));
     }
-    let summary = summarise(&rows, &ids, ensemble.truth());
+    told(options.seed, &ensemble, &rows)
+}
+
+/// Trials as JSON: the same text whether they were made in one run or in ranges.
+fn told(seed: u64, ensemble: &Ensemble, rows: &[TrialRow]) -> Result<Output, Failure> {
+    let ids = ensemble.ids();
+    let summary = summarise(rows, &ids, ensemble.truth());
     done(pretty(&json!({
-        "seed": options.seed,
+        "seed": seed,
         "parameters": ids,
         "truth": ensemble.truth(),
         "rows": rows,
         "summary": summary,
     })))
+}
+
+fn ensemble(sheet: &Sheet, seed: u64, profiles: bool) -> Result<Ensemble, Failure> {
+    let problems = |list: Vec<Refusal>| {
+        let first = list.into_iter().next();
+        first.map_or_else(
+            || Failure {
+                exit: 1,
+                message: "the sheet cannot be computed with".into(),
+            },
+            |r| refused(&r),
+        )
+    };
+    let scan = check::understand(sheet).scan().map_err(problems)?;
+    let settings = fit_settings(sheet).map_err(|r| refused(&r))?;
+    let trial = TrialSettings { seed, profiles };
+    Ensemble::new(&scan, &settings, trial).map_err(|r| refused(&r))
+}
+
+/// Joins ranges of one seed, in whatever order they are given.
+fn merge(sheet: &Sheet, options: &Options) -> Result<Output, Failure> {
+    let unusable = |path: &std::ffi::OsString, why: String| Failure {
+        exit: 3,
+        message: format!("{}: {why}", path.display()),
+    };
+    let mut rows: Vec<TrialRow> = Vec::new();
+    let mut seed = None;
+    for path in &options.files {
+        let text = std::fs::read_to_string(path).map_err(|e| unusable(path, e.to_string()))?;
+        let mut range: Value =
+            serde_json::from_str(&text).map_err(|e| unusable(path, e.to_string()))?;
+        let Some(own) = range.get("seed").and_then(Value::as_u64) else {
+            return Err(unusable(path, "trials did not write this file".into()));
+        };
+        if *seed.get_or_insert(own) != own {
+            return Err(unusable(
+                path,
+                "another seed than the files before it".into(),
+            ));
+        }
+        let more: Vec<TrialRow> = serde_json::from_value(range["rows"].take())
+            .map_err(|e| unusable(path, e.to_string()))?;
+        rows.extend(more);
+    }
+    let Some(seed) = seed else {
+        return Err(Failure {
+            exit: 2,
+            message: "merge needs the files that trials wrote".into(),
+        });
+    };
+    rows.sort_by_key(|row| row.k);
+    if let Some(k) = rows.windows(2).find_map(|pair| match pair {
+        [a, b] if a.k == b.k => Some(a.k),
+        _ => None,
+    }) {
+        return Err(Failure {
+            exit: 1,
+            message: format!("trial {k} is in two of the files: ranges may not overlap"),
+        });
+    }
+    told(seed, &ensemble(sheet, seed, false)?, &rows)
 }
 
 fn reply_json(reply: &Reply) -> Value {

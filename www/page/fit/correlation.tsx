@@ -1,6 +1,6 @@
-/** Correlation of the fitted parameters, and the nuisances that went along. */
+/** Correlation of the fitted parameters. */
 import type { JSX } from "preact";
-import { fixed, signed } from "../format/number";
+import { fixed } from "../format/number";
 import { Sym } from "../parts/sym";
 import type { FitView } from "../state/answers";
 
@@ -32,28 +32,6 @@ export function Correlation({ fit }: { fit: FitView }): JSX.Element | null {
                   {j > i ? "" : fixed(fit.correlation[i]?.[j] ?? Number.NaN, 2)}
                 </td>
               ))}
-            </tr>
-          ))}
-        </tbody>
-      </table>
-    </details>
-  );
-}
-
-/** Pulls of the nuisances. */
-export function Nuisances({ fit }: { fit: FitView }): JSX.Element | null {
-  if (fit.nuisances.length === 0) return null;
-  return (
-    <details>
-      <summary>Nuisances</summary>
-      <table class="plain">
-        <tbody>
-          {fit.nuisances.map((nuisance) => (
-            <tr key={nuisance.name}>
-              <th scope="row">{nuisance.name}</th>
-              <td class="number">
-                {signed(nuisance.pull, 2)} ± {fixed(nuisance.error, 2)}
-              </td>
             </tr>
           ))}
         </tbody>

@@ -4,8 +4,10 @@ import { useId } from "preact/hooks";
 import { signal, type Signal } from "@preact/signals";
 import type { GlobalSignificance } from "../../shared/generated/GlobalSignificance";
 import type { Reply } from "../../shared/protocol";
-import { axisScale, fixed, pValue } from "../format/number";
+import { axisScale, digits, fixed, pValue } from "../format/number";
 import { Sym } from "../parts/sym";
+import { sheet } from "../state/sheet";
+import type { Sheet } from "../state/types";
 import { ask } from "../state/work";
 import { view } from "../state/view";
 import { Numbers, Plot } from "./plot";
@@ -26,6 +28,7 @@ interface Made {
 const EV_PER_GEV = 1e9;
 
 const search = study<Made>();
+const profiled = study<{ interferes: boolean; columns: Reply["columns"]; width: boolean }>();
 /** As typed; empty: what the axis shows. */
 const from = signal("");
 const to = signal("");
@@ -66,6 +69,7 @@ export function NoPeak(): JSX.Element {
       {!ok && <p class="problem">Allowed: two masses above 0, the second larger, and 2 to 2,000 masses between them.</p>}
       <StudyBar study={search} words="Search the window" onRun={run} disabled={!ok} />
       {made && <Limits made={made} />}
+      <Profiled />
     </fieldset>
   );
 }
@@ -123,7 +127,47 @@ function inWords(found: GlobalSignificance | null): string {
   const { unit, per } = axisScale(found.mass_gev, found.mass_gev);
   return (
     `The strongest excess is at ${fixed(found.mass_gev / per, 2)} ${unit}: locally ${fixed(found.local_significance, 1)} standard deviations ` +
-    `(p ${pValue(found.local_p)}). Having looked over the whole window, globally ${fixed(Math.max(0, found.global_significance), 1)} ` +
-    `(p ${pValue(found.global_p)}; ${TRIALS} background-only trials, Gross and Vitells, arXiv:1005.1891).`
+    `(p ${small(found.ln_local_p)}). Having looked over the whole window, globally ${fixed(Math.max(0, found.global_significance), 1)} ` +
+    `(p ${small(found.ln_global_p)}; ${TRIALS} background-only trials, Gross and Vitells, arXiv:1005.1891).`
   );
+}
+
+/** A p-value by its natural logarithm: as a power of ten where it is too small to be a number. */
+function small(ln: number): string {
+  return ln > -7 ? pValue(Math.exp(ln)) : `10^${fixed(ln / Math.LN10, 1)}`;
+}
+
+/** Limit with every error and everything else that is free profiled; with a continuum, against its phase. */
+function Profiled(): JSX.Element {
+  const id = strengthOf(sheet.value);
+  const run = (): void => {
+    void profiled.run(async (now, options) => {
+      const { body, columns } = await ask({ kind: "limit", sheet: now, parameter: id, places: 24 }, options);
+      if (body.kind !== "limit") throw new Error("no limit in the answer");
+      return { interferes: body.interferes, columns, width: id.endsWith("strength") && now.model.resonances[0]?.strength.kind === "gamma_in_bf" };
+    });
+  };
+  const made = profiled.made.value?.value;
+  const [phase, limit] = made?.columns ?? [];
+  const values = limit ? Array.from(limit.values, (v) => (made?.width ? v * EV_PER_GEV : v)) : [];
+  const unit = made?.width ? " eV" : "";
+  return (
+    <>
+      <p class="note">At the present mass and width, with interference, all errors and all else that is free profiled:</p>
+      <StudyBar study={profiled} words="Limit with every error" onRun={run} disabled={id === ""} />
+      {made && phase && !made.interferes && <p class="limit">Upper limit (95 % CLs, asymptotic): {digits(values[0] ?? Number.NaN, 3)}{unit}.</p>}
+      {made && phase && made.interferes && (
+        <>
+          <Plot words="Limit on the strength against the phase of the continuum." x="phase of the continuum (deg)" y={`limit, 95 % CLs${unit && ` (${unit.trim()})`}`} from={0} lines={[{ x: phase.values, y: values, look: "main" }]} />
+          <Numbers name="Limit against the phase" columns={[phase, { name: "limit", unit: unit.trim(), values }]} most={24} />
+        </>
+      )}
+    </>
+  );
+}
+
+function strengthOf(now: Sheet): string {
+  const kind = now.model.resonances[0]?.strength.kind;
+  if (kind === "gamma_in_bf" || kind === "bin_bf") return "r1.strength";
+  return kind === "branchings" ? "r1.b_in" : kind === "partial_widths" ? "r1.gamma_in" : "";
 }

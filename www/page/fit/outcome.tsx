@@ -7,8 +7,9 @@ import { Why } from "../parts/why";
 import * as answers from "../state/answers";
 import { withAt } from "../state/path";
 import { change } from "../state/sheet";
-import { Correlation, Nuisances } from "./correlation";
+import { Correlation } from "./correlation";
 import { Covariance, Goodness } from "./goodness";
+import { Nuisances } from "./nuisances";
 import { WhyParameter } from "./why-parameter";
 
 /** The result of the newest fit, or why there is none. */

@@ -1,13 +1,15 @@
 /** Other parameter sets that describe the data as well, side by side. */
 import type { JSX } from "preact";
-import { fixed, THIN, withError } from "../format/number";
-import { units } from "../parts/quantity";
+import { axisScale, fixed, hours, THIN, withError } from "../format/number";
+import { Quantity, units } from "../parts/quantity";
 import { Sym } from "../parts/sym";
 import { symbolOf } from "../state/parameters";
 import { withAt } from "../state/path";
 import { change, sheet } from "../state/sheet";
 import type { Body } from "../state/types";
 import { ask } from "../state/work";
+import { view } from "../state/view";
+import { Plot } from "./plot";
 import { study } from "./study";
 import { Cautions, StudyBar } from "./study-bar";
 
@@ -17,7 +19,13 @@ type Solution = Found["solutions"][number];
 /** Below that difference in 2 NLL the data do not tell two solutions apart (one standard deviation). */
 const NOT_TOLD_APART = 1;
 
+interface Drawn {
+  x: ArrayLike<number>;
+  y: ArrayLike<number>;
+}
+
 const solutions = study<Found>();
+const curves = study<Drawn[]>();
 
 function run(): void {
   void solutions.run(async (now, options) => {
@@ -97,8 +105,53 @@ function SideBySide({ made }: { made: Found }): JSX.Element {
           {alike} solutions describe the data equally well. Quote all of them; the energies of this scan do not tell them apart.
         </p>
       )}
+      {made.separated.map((at) => (
+        <p class="note separated" key={at.solution}>
+          Solution {at.solution + 1} is told from the best one soonest at <Quantity text={at.dial} />: {at.hours > 0.05 ? hours(at.hours) : "minutes"} there to 3 standard
+          deviations if nothing else is adjusted meanwhile, so at least
+          {at.affordable === false && "; that is more than the plan has"}.
+        </p>
+      ))}
+      {!made.exact && sets.length > 1 && made.separated.length === 0 && (
+        <p class="note">Without a luminosity of the beam it cannot be told how many hours would separate them.</p>
+      )}
       <p class="note">{made.note}</p>
+      <Overlay made={made} />
       <Cautions warnings={made.warnings} />
+    </>
+  );
+}
+
+/** Curves of the solutions over each other. */
+function Overlay({ made }: { made: Found }): JSX.Element | null {
+  const drawn = curves.made.value?.value;
+  if (made.solutions.length < 2) return null;
+  const draw = (): void => {
+    void curves.run(async (now, options) => {
+      const { from, to } = view.peek();
+      const found: Drawn[] = [];
+      for (const set of made.solutions) {
+        const other = set.parameters.reduce((next, parameter) => withAt(next, parameter.field, parameter.text), now);
+        const { columns } = await ask({ kind: "curve", sheet: other, from_gev: from, to_gev: to, points: 161 }, options);
+        found.push({ x: columns[0]?.values ?? [], y: columns.find((column) => column.name === "observed")?.values ?? [] });
+      }
+      return found;
+    });
+  };
+  const { unit, per } = axisScale(view.value.from, view.value.to);
+  const looks = ["main", "second", "faint"] as const;
+  return (
+    <>
+      <StudyBar study={curves} words="Draw them over each other" onRun={draw} />
+      {drawn && (
+        <Plot
+          words="Observed cross sections of the solutions over each other."
+          x={`W (${unit})`}
+          y="observed (nb)"
+          from={0}
+          lines={drawn.map((line, i) => ({ x: Array.from(line.x, (w) => w / per), y: line.y, look: looks[Math.min(i, 2)] ?? "faint" }))}
+        />
+      )}
     </>
   );
 }

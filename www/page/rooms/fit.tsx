@@ -1,6 +1,8 @@
 /** Fit: what is left free, what is known beforehand, and what comes out with how much trust. */
 import type { JSX } from "preact";
 import { Beyond } from "../fit/beyond";
+import { AngularBins } from "../fit/bins";
+import { Channels } from "../fit/channels";
 import { FreeParameters } from "../fit/free";
 import { Outcome } from "../fit/outcome";
 
@@ -10,6 +12,8 @@ export function FitRoom(): JSX.Element {
     <>
       <Outcome />
       <FreeParameters />
+      <Channels />
+      <AngularBins />
       <Beyond />
     </>
   );

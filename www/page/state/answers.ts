@@ -60,7 +60,7 @@ export interface FitView {
   /** Counts are large enough for the p-value to be taken from the chi-squared distribution. */
   pHolds: boolean;
   why: string;
-  nuisances: { name: string; pull: number; error: number }[];
+  nuisances: { name: string; pull: number; error: number; impacts: number[] }[];
   converged: boolean;
   /** Pull of each point: (row id, pull). */
   pulls: [string, number][];

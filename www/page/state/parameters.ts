@@ -152,6 +152,45 @@ export function parametersOf(sheet: Sheet): Parameter[] {
   if (sheet.detection.background_rate) {
     found.push({ id: "background.rate", path: "detection.background_rate", symbol: "r_bg", name: "Background rate" });
   }
+  (sheet.channels ?? []).forEach((channel, c) => found.push(...ofChannel(sheet, channel, c)));
+  return found;
+}
+
+type Channel = NonNullable<Sheet["channels"]>[number];
+
+/** Parameters of a further exit channel that are its own. */
+function ofChannel(sheet: Sheet, channel: Channel, c: number): Parameter[] {
+  const path = `channels[${c}]`;
+  const own = (id: string, at: string, symbol: string, name: string): Parameter => ({
+    id: `c${c + 1}.${id}`,
+    path: `${path}.${at}`,
+    symbol: `${symbol}${subscript(c + 1)}`,
+    name: `${name} (${channel.name})`,
+  });
+  const found: Parameter[] = [];
+  const resonances = channel.model?.resonances ?? sheet.model.resonances;
+  resonances.forEach((resonance, i) => {
+    const kind = resonance.strength.kind;
+    const id = kind === "branchings" ? "b_f" : kind === "partial_widths" ? "gamma_f" : "strength";
+    const symbol = kind === "branchings" ? "B_f" : kind === "partial_widths" ? "Γ_f" : kind === "bin_bf" ? "B_in·B_f" : "Γ_in·B_f";
+    const of = resonances.length > 1 ? ` of ${resonance.name}` : "";
+    if (channel.model) {
+      const at = `model.resonances[${i}]`;
+      found.push(own(`r${i + 1}.mass`, `${at}.mass`, "M", `Mass${of}`), own(`r${i + 1}.width`, `${at}.width`, "Γ", `Width${of}`));
+      found.push(own(`r${i + 1}.${id}`, `${at}.strength.${id === "strength" ? "value" : id}`, symbol, `Strength${of}`));
+    } else {
+      found.push(own(`r${i + 1}.${id}`, `strengths[${i}]`, symbol, `Strength${of}`));
+    }
+  });
+  const coherent = channel.model ? undefined : channel.coherent;
+  if (coherent?.kind === "one_photon") {
+    found.push(own("coherent.0", "coherent.c", "c", "Continuum"), own("coherent.phase", "coherent.phase", "φ_bg", "Phase of the continuum"));
+  }
+  if (!channel.model && channel.incoherent?.kind === "power") found.push(own("incoherent.0", "incoherent.c0", "c₀", "Incoherent background"));
+  if (channel.detection.background_cross_section) {
+    found.push(own("background.cross_section", "detection.background_cross_section", "σ_bg", "Background cross section"));
+  }
+  if (channel.detection.background_rate) found.push(own("background.rate", "detection.background_rate", "r_bg", "Background rate"));
   return found;
 }
 
