@@ -142,7 +142,7 @@ function Profiled(): JSX.Element {
   const id = strengthOf(sheet.value);
   const run = (): void => {
     void profiled.run(async (now, options) => {
-      const { body, columns } = await ask({ kind: "limit", sheet: now, parameter: id, places: 24 }, options);
+      const { body, columns } = await ask({ kind: "limit", sheet: now, parameter: id, places: 8 }, options);
       if (body.kind !== "limit") throw new Error("no limit in the answer");
       return { interferes: body.interferes, columns, width: id.endsWith("strength") && now.model.resonances[0]?.strength.kind === "gamma_in_bf" };
     });
@@ -159,7 +159,7 @@ function Profiled(): JSX.Element {
       {made && phase && made.interferes && (
         <>
           <Plot words="Limit on the strength against the phase of the continuum." x="phase of the continuum (deg)" y={`limit, 95 % CLs${unit && ` (${unit.trim()})`}`} from={0} lines={[{ x: phase.values, y: values, look: "main" }]} />
-          <Numbers name="Limit against the phase" columns={[phase, { name: "limit", unit: unit.trim(), values }]} most={24} />
+          <Numbers name="Limit against the phase" columns={[phase, { name: "limit", unit: unit.trim(), values }]} most={8} />
         </>
       )}
     </>
