@@ -73,15 +73,6 @@ describe.each(engines)("judging a fit in %s", (engine) => {
     PATIENCE_MS,
   );
 
-  it("limits the strength against the phase with every error", async () => {
-    await press(driver, "Limit with every error");
-    await driver.wait(
-      () => driver.executeScript<boolean>("return document.querySelectorAll('svg[aria-label^=\"Limit on the strength against\"]').length > 0"),
-      PATIENCE_MS,
-      "no limits",
-    );
-  }, PATIENCE_MS);
-
   it(
     "fits a second exit channel that is typed in, and takes it away again",
     async () => {

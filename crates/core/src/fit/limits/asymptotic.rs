@@ -97,7 +97,7 @@ fn one_limit(scan: &Scan, settings: &FitSettings, level: f64) -> Answer<Option<f
     let best = |fitter: &mut Fitter| -> Answer<(f64, f64)> {
         let mut found: Option<(f64, f64)> = None;
         // Interference can give two minima in the strength.
-        for start in [1e-4, 1e-2, 0.3, 1.0, 5.0] {
+        for start in [1e-3, 0.3, 3.0] {
             let x = pad(fitter, start * reference);
             let m = minimise(fitter.likelihood(), &x, Tolerance::default())?;
             if found.is_none_or(|f| m.expansion.value < f.1) {
@@ -107,17 +107,21 @@ fn one_limit(scan: &Scan, settings: &FitSettings, level: f64) -> Answer<Option<f
         Ok(found.unwrap_or((0.0, 0.0)))
     };
     let (data_best, asimov_best) = (best(&mut data)?, best(&mut asimov)?);
+    // Each fit starts where the one before it ended: what is profiled hardly moves between strengths.
+    let mut places = (pad(&data, reference), pad(&asimov, reference));
     let mut cls = |v: f64| -> Answer<f64> {
-        let q = |fitter: &mut Fitter, best: (f64, f64)| -> Answer<f64> {
+        let q = |fitter: &mut Fitter, best: (f64, f64), place: &mut Vec<f64>| -> Answer<f64> {
             if v <= best.0 {
                 return Ok(0.0);
             }
-            let x = pad(fitter, v);
-            Ok((fitter.held(0, v, &x)?.expansion.value - best.1).max(0.0))
+            place[0] = v;
+            let found = fitter.held(0, v, place)?;
+            *place = found.x;
+            Ok((found.expansion.value - best.1).max(0.0))
         };
         Ok(asymptotic_cls(
-            q(&mut data, data_best)?,
-            q(&mut asimov, asimov_best)?,
+            q(&mut data, data_best, &mut places.0)?,
+            q(&mut asimov, asimov_best, &mut places.1)?,
         ))
     };
     let wanted = 1.0 - level;
@@ -130,7 +134,7 @@ fn one_limit(scan: &Scan, settings: &FitSettings, level: f64) -> Answer<Option<f
             return Ok(None);
         }
     }
-    while (high - low) > 1e-4 * high {
+    while (high - low) > 1e-3 * high {
         let middle = 0.5 * (low + high);
         if cls(middle)? > wanted {
             low = middle;
