@@ -1,7 +1,7 @@
 //! The sheet as a file: versioned JSON.
 
 use crate::doc::Sheet;
-use serde::de::{DeserializeOwned, Error as _, MapAccess, SeqAccess, Visitor};
+use serde::de::{Error as _, MapAccess, SeqAccess, Visitor};
 use serde::{Deserialize, Deserializer};
 use serde_json::Value;
 use widthwise_core::error::{Answer, Refusal};
@@ -77,20 +77,8 @@ pub fn open(text: &str) -> Answer<Sheet> {
         )
     })?;
     check_header(format, version)?;
-    typed(value).map_err(|(path, reason)| {
+    crate::plain::typed(value).map_err(|(path, reason)| {
         Refusal::new(path, "", "what the scan sheet's schema allows", reason)
-    })
-}
-
-/// Plain JSON as one of our types; where it does not fit, the path and the reason.
-///
-/// Everything is read on this one road, files and requests alike: each further one would make the
-/// compiler write the reader of every type again.
-pub(crate) fn typed<T: DeserializeOwned>(value: Value) -> Result<T, (String, String)> {
-    serde_path_to_error::deserialize(value).map_err(|e| {
-        let path = e.path().to_string();
-        let path = if path == "." { String::new() } else { path };
-        (path, e.into_inner().to_string())
     })
 }
 

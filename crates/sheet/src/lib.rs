@@ -17,6 +17,7 @@ pub mod doc;
 pub mod json;
 pub mod limits;
 pub mod particles;
+mod plain;
 pub mod quantity;
 pub mod requests;
 #[cfg(test)]

@@ -345,7 +345,7 @@ impl Request {
         // An enum tagged from outside reads its fields in place; a tag among the fields would make
         // the compiler write every reader a second time, for a buffered copy.
         let tagged = serde_json::Map::from_iter([(kind, fields.into())]);
-        crate::json::typed(tagged.into()).map_err(|(path, reason)| unreadable(&path, &reason))
+        crate::plain::typed(tagged.into()).map_err(|(path, reason)| unreadable(&path, &reason))
     }
 }
 
