@@ -54,7 +54,7 @@ pub enum Job {
     /// The help text.
     Help,
     /// Something to do.
-    Run(Options),
+    Run(Box<Options>),
 }
 
 /// What is asked of a sheet.
@@ -179,7 +179,7 @@ pub fn parse(arguments: impl Iterator<Item = OsString>) -> Result<Job, Failure> 
     }
     options.command = command;
     options.sheet = sheet.ok_or_else(|| usage("a sheet is missing"))?;
-    Ok(Job::Run(options))
+    Ok(Job::Run(Box::new(options)))
 }
 
 fn text(parser: &mut lexopt::Parser) -> Result<String, Failure> {

@@ -314,8 +314,9 @@ fn merge(sheet: &Sheet, options: &Options) -> Result<Output, Failure> {
                 "another seed than the files before it".into(),
             ));
         }
-        let more: Vec<TrialRow> = serde_json::from_value(range["rows"].take())
-            .map_err(|e| unusable(path, e.to_string()))?;
+        let more: Vec<TrialRow> =
+            serde_json::from_value(range.get_mut("rows").map_or(Value::Null, Value::take))
+                .map_err(|e| unusable(path, e.to_string()))?;
         rows.extend(more);
     }
     let Some(seed) = seed else {

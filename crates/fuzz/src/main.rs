@@ -1,5 +1,5 @@
 //! `widthwise-fuzz run TARGET [--seconds N] [--seed N]`: fuzzes a target with a mutator that needs nothing but
-//! stable Rust (crates/fuzz/libfuzzer has the same targets for cargo-fuzz). `widthwise-fuzz replay`: the kept corpus.
+//! stable Rust. `widthwise-fuzz replay`: the kept corpus.
 //! `widthwise-fuzz golden FILE`: the golden set with the native fingerprints.
 
 use std::panic::{AssertUnwindSafe, catch_unwind};

@@ -99,7 +99,7 @@ impl ScanPlanner {
     /// The plan and everything beside it. `with_costs` makes the plan again without each demand.
     ///
     /// # Errors
-    /// As [`Planner::plan`].
+    /// As [`crate::plan::task::Planner::plan`].
     pub fn report(
         &self,
         with_costs: bool,
