@@ -349,6 +349,25 @@ impl Request {
     }
 }
 
+fn looks_of(rate_per_look: f64, looks: u32, p: f64) -> Answer<Reply> {
+    let refused = |field: &str, value: String, allowed: &str| {
+        let reason = format!("{field} is {value}; allowed: {allowed}");
+        Err(Refusal::new(field, value, allowed, reason))
+    };
+    if !(rate_per_look > 0.0 && rate_per_look <= 1e3) {
+        let allowed = "more than 0, at most 1000 counts between two looks";
+        return refused("rate_per_look", rate_per_look.to_string(), allowed);
+    }
+    if !(1..=1000).contains(&looks) {
+        return refused("looks", looks.to_string(), "1 to 1000");
+    }
+    if !(1e-15..=0.5).contains(&p) {
+        return refused("p", p.to_string(), "1e-15 to 0.5");
+    }
+    let p = p_value_of_looks(rate_per_look, looks, p);
+    Ok(Body::Looks { p }.into())
+}
+
 fn unreadable(field: &str, reason: &str) -> Refusal {
     Refusal::new(
         field,
@@ -452,10 +471,7 @@ pub fn answer(request: &Request, progress: &mut dyn FnMut(u32, u32)) -> Answer<R
             rate_per_look,
             looks,
             p,
-        } => Ok(Body::Looks {
-            p: p_value_of_looks(rate_per_look.min(1e3), (*looks).min(1000), *p),
-        }
-        .into()),
+        } => looks_of(*rate_per_look, *looks, *p),
         Request::Trials { sheet, range } => trials::run(sheet, range, progress),
         Request::Summary { sheet, rows } => trials::merge(sheet, rows),
         Request::Window { sheet, window } => window::answer(sheet, window),

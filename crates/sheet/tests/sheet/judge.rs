@@ -160,3 +160,25 @@ fn traps_are_named() {
     assert!(found.contains(&"luminosity-fed-by-resonance".to_string()));
     assert!(found.contains(&"efficiency-of-another-cut".to_string()));
 }
+
+#[test]
+fn looks_outside_their_range_are_refused_with_the_field() {
+    for (rate_per_look, looks, p, field) in [
+        (0.0, 24, 0.02, "rate_per_look"),
+        (f64::NAN, 24, 0.02, "rate_per_look"),
+        (1e6, 24, 0.02, "rate_per_look"),
+        (0.5, 0, 0.02, "looks"),
+        (0.5, 1001, 0.02, "looks"),
+        (0.5, 24, -1.0, "p"),
+        (0.5, 24, f64::NAN, "p"),
+    ] {
+        let request = Request::Looks {
+            rate_per_look,
+            looks,
+            p,
+        };
+        let refusal = answer(&request, &mut |_, _| ()).unwrap_err();
+        assert_eq!(refusal.field, field);
+        assert!(!refusal.allowed.is_empty() && !refusal.message.is_empty());
+    }
+}
