@@ -55,6 +55,7 @@ describe.each(engines)("lanes in %s", (engine) => {
     await driver.executeScript("arguments[0].focus()", grip);
     await grip.sendKeys(Key.ARROW_DOWN, Key.ARROW_DOWN);
     await driver.wait(async () => (await height("pulls")) === before + 32, 5000, "the keys did nothing");
+    await driver.executeScript("arguments[0].scrollIntoView({ block: 'center' })", grip);
     await driver.actions().move({ origin: grip }).press().move({ origin: grip, y: 40 }).release().perform();
     await driver.wait(async () => (await height("pulls")) > before + 60, 5000, "the drag did nothing");
     const now = await height("pulls");

@@ -104,9 +104,15 @@ export function closeRow(index: number, comment: string): void {
   changeRow(index, `close ${id}`, (row) => ({
     ...row,
     running: false,
-    stop: row.stop ?? nowWithZone(),
+    stop: row.stop ?? stopNow(row.start),
     ...(comment.trim() === "" ? {} : { comment: row.comment ? `${row.comment}; ${comment.trim()}` : comment.trim() }),
   }));
+}
+
+/** This moment, and no sooner than a second after the start: the sheet counts whole seconds. */
+function stopNow(start: string | null | undefined): string {
+  const begun = Date.parse(start ?? "");
+  return nowWithZone(new Date(Number.isNaN(begun) ? Date.now() : Math.max(Date.now(), begun + 1000)));
 }
 
 /** A bare number gets the unit that the column has had so far; anything else stays as typed. */
